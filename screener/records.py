@@ -1,0 +1,208 @@
+"""Frozen facts passed between packages, and the schemas of the result frames.
+
+Readings are `float64[channels, rows]`, C-contiguous, one channel contiguous in memory; NaN means missing.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from enum import StrEnum
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+if TYPE_CHECKING:
+    import numpy as np
+    from numpy.typing import NDArray
+
+    FloatArray = NDArray[np.float64]
+    IntArray = NDArray[np.int64]
+
+
+class Control(StrEnum):
+    """What a flag means when many channels are tested at once."""
+
+    EACH = "each"
+    """r is below its critical value at alpha, channel by channel."""
+    FDR = "fdr"
+    """The Benjamini-Hochberg adjusted p (q) is below alpha."""
+
+
+class Verdict(StrEnum):
+    """The outcome for one channel."""
+
+    FLAGGED = "flagged"
+    CLEAR = "clear"
+    NOT_SCORED = "not scored"
+
+
+@dataclass(frozen=True, slots=True)
+class Plan:
+    """What a run is asked to do."""
+
+    family: str = "normal"
+    alpha: float = 0.05
+    control: Control = Control.EACH
+    positions: str = "filliben"
+    channels: tuple[str, ...] = ()
+    """Name patterns of the columns to screen; empty means all."""
+    skip: tuple[str, ...] = ()
+    """Name patterns of the columns to leave aside."""
+    missing: tuple[str, ...] = ()
+    """Cell texts that mean a missing reading, beside the usual ones."""
+    seed: int = 1
+
+
+@dataclass(frozen=True, slots=True)
+class Channel:
+    """One measurement channel of a table."""
+
+    position: int
+    """0, 1, ... among the channels of the table, in column order."""
+    name: str
+    """Unique within the table and safe to show: control characters made visible."""
+    unit: str = ""
+
+
+@dataclass(frozen=True, slots=True)
+class SetAside:
+    """A column that is not screened, and why."""
+
+    name: str
+    reason: str
+
+
+@dataclass(frozen=True, slots=True)
+class TableFacts:
+    """What was read from a measurement table."""
+
+    path: Path
+    format: str
+    rows: int
+    channels: tuple[Channel, ...]
+    set_aside: tuple[SetAside, ...]
+    fingerprint: str
+    """Changes when the content that was read changes."""
+    remarks: tuple[str, ...] = ()
+    """What the reader did that the user should know, one sentence each."""
+
+
+@dataclass(frozen=True, slots=True, order=True)
+class Span:
+    """The channels first, first + 1, ..., stop - 1 of a table."""
+
+    first: int
+    stop: int
+
+
+@dataclass(frozen=True, slots=True)
+class Block:
+    """The readings of the channels of one span."""
+
+    span: Span
+    readings: FloatArray
+    """float64[stop - first, rows], owned by the receiver, who may sort it in place."""
+
+
+@dataclass(frozen=True, slots=True)
+class BlockScores:
+    """The scores of the C channels of a span against F families."""
+
+    span: Span
+    families: tuple[str, ...]
+    n: IntArray
+    """[C] finite readings."""
+    missing: IntArray
+    """[C] readings absent or infinite."""
+    reasons: tuple[str, ...]
+    """[C] why the channel is not scored; empty where it is."""
+    r: FloatArray
+    """[C, F]; NaN where not scored or outside the family's support."""
+    critical_r: FloatArray
+    plain_critical_r: FloatArray
+    p: FloatArray
+    extrapolated: NDArray[np.bool_]
+    """[C, F] true where p lies beyond the tabled probabilities."""
+    location: FloatArray
+    scale: FloatArray
+    notes: tuple[tuple[str, ...], ...]
+    """[C][F] a word about the fit, such as `outside support`; usually empty."""
+    points: tuple[FloatArray, ...]
+    """[C] sorted readings kept for the plot, at the ranks `stats.points.kept_ranks(n)`."""
+
+
+@dataclass(frozen=True, slots=True)
+class TableOpened:
+    """A table was read and the run file is ready."""
+
+    facts: TableFacts
+    plan: Plan
+    run_path: Path
+    channels_done: int
+    """Channels already scored by an earlier, interrupted run."""
+
+
+@dataclass(frozen=True, slots=True)
+class BlockScored:
+    """One span of channels was scored."""
+
+    scores: BlockScores
+
+
+@dataclass(frozen=True, slots=True)
+class BlockFailed:
+    """One span of channels could not be scored; the rest of the run goes on."""
+
+    span: Span
+    message: str
+    """One sentence that names the channels."""
+
+
+@dataclass(frozen=True, slots=True)
+class RunFinished:
+    """All spans were tried, or the run was cancelled."""
+
+    cancelled: bool
+    seconds: float
+
+
+Event = TableOpened | BlockScored | BlockFailed | RunFinished
+
+RESULT_COLUMNS: dict[str, type[int] | type[float] | type[str]] = {
+    "channel": str,
+    "unit": str,
+    "n": int,
+    "missing": int,
+    "family": str,
+    "r": float,
+    "critical_r": float,
+    "plain_critical_r": float,
+    "p": float,
+    "q": float,
+    "verdict": str,
+    "reason": str,
+    "departure": str,
+    "departure_size": float,
+    "conditions": str,
+    "step": float,
+    "n_effective": float,
+    "closest": str,
+    "closest_r": float,
+    "closest_p": float,
+    "advice": str,
+    "decision": str,
+    "note": str,
+}
+"""The export contract: names stay stable, new ones are appended. Absent values are null."""
+
+FIT_COLUMNS: dict[str, type[int] | type[float] | type[str] | type[bool]] = {
+    "family": str,
+    "r": float,
+    "critical_r": float,
+    "plain_critical_r": float,
+    "p": float,
+    "extrapolated": bool,
+    "location": float,
+    "scale": float,
+    "note": str,
+}
+"""One row per family for a single channel, in the order of the registry."""
