@@ -1,0 +1,47 @@
+"""What a distribution family is to the rest of the house: data plus one function."""
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from enum import StrEnum
+
+import numpy as np
+from numpy.typing import NDArray
+
+FloatArray = NDArray[np.float64]
+
+
+class Support(StrEnum):
+    """Where the readings of a family can lie, before location and scale."""
+
+    WHOLE_LINE = "whole line"
+    HALF_LINE = "half line"
+    INTERVAL = "interval"
+    POSITIVE = "x > 0"
+
+
+class Axis(StrEnum):
+    """The scale on which the quantile plot of a family is straight."""
+
+    LINEAR = "linear"
+    LOG = "log"
+
+
+@dataclass(frozen=True, slots=True)
+class Family:
+    """A location-scale family on its axis."""
+
+    name: str
+    support: Support
+    quantile: Callable[[FloatArray], FloatArray]
+    """Standard quantiles at probabilities u, same shape as u."""
+    arises_from: str
+    axis: Axis = Axis.LINEAR
+    null_of: str = ""
+    """The family whose null distribution of r this one shares, as its mirror image or its logarithm; empty: its own."""
+    costly: bool = False
+    """The quantile function is slow; simulations read it from a fine grid."""
+
+    @property
+    def null_name(self) -> str:
+        """The name under which the null distribution of r is tabled."""
+        return self.null_of or self.name
