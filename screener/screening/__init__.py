@@ -1,0 +1,1 @@
+"""What a run does, step by step, and where its work runs."""

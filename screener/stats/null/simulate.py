@@ -33,7 +33,7 @@ def sampling_quantile(family: Family) -> Callable[[FloatArray], FloatArray]:
     grid = family.quantile(1.0 / (1.0 + np.exp(-LOGIT_GRID)))
 
     def quantile(u: FloatArray) -> FloatArray:
-        return np.interp(np.log(u) - np.log1p(-u), LOGIT_GRID, grid)
+        return np.asarray(np.interp(np.log(u) - np.log1p(-u), LOGIT_GRID, grid), dtype=np.float64)
 
     return quantile
 

@@ -1,0 +1,101 @@
+"""A run from its beginning, or from where an earlier one stopped: table, run file, events that are stored as they come."""
+
+from collections.abc import Callable, Iterator
+from pathlib import Path
+
+from platformdirs import user_state_path
+
+from screener import __version__
+from screener.errors import PlanError, RunFileError
+from screener.records import BlockFailed, BlockScored, Event, Plan, TableFacts, TableOpened
+from screener.runs import RunFile, default_run_path, is_run_file
+from screener.screening.null_source import null_table
+from screener.screening.screen import screen
+from screener.screening.workers import thread_workers
+from screener.stats.families import family_named
+from screener.stats.null.packing import NULL_VERSION
+from screener.tables import open_table, spans
+
+
+def start(
+    table_path: Path,
+    plan: Plan,
+    run_path: Path | None = None,
+    *,
+    jobs: int,
+    cancelled: Callable[[], bool] = lambda: False,
+) -> Iterator[Event]:
+    """Open the table and its run file, then score what the run file does not hold yet.
+
+    An event is yielded when the run file already holds it.
+    """
+    check_plan(plan)
+    null = null_table(plan.positions)
+    table = open_table(table_path, plan)
+    with run_for(table.facts, plan, run_path) as run, thread_workers(jobs) as executor:
+        done = run.done()
+        yield TableOpened(table.facts, plan, run.path, sum(span.stop - span.first for span in done))
+        todo = [span for span in spans(table.facts) if span not in done]
+        for event in screen(table, plan, null, spans=todo, executor=executor, cancelled=cancelled):
+            if isinstance(event, BlockScored):
+                run.store(event.scores)
+            elif isinstance(event, BlockFailed):
+                run.store_failure(event.span, event.message)
+            elif not event.cancelled:
+                run.finish()
+            yield event
+
+
+def check_plan(plan: Plan) -> None:
+    """Raise PlanError when the plan asks for something impossible."""
+    family_named(plan.family)
+    if not 0.0 < plan.alpha < 1.0:
+        raise PlanError(f"Couldn't use alpha {plan.alpha:g}: it must lie between 0 and 1, such as 0.05.")
+
+
+def run_for(facts: TableFacts, plan: Plan, path: Path | None) -> RunFile:
+    """The run file at path, taken up again if it holds this table and plan, else made.
+
+    Without a path it lies beside the table (or, where nothing can be written there, in the user's state folder), under
+    the first name that is free or holds this very run.
+    Raises: RunFileError when the file at a given path is something else.
+    """
+    if path is not None:
+        if not path.exists():
+            return _create(path, facts, plan)
+        run = RunFile.open(path)
+        if _same_run(run, facts, plan):
+            return run
+        run.close()
+        raise RunFileError(
+            f"Couldn't use run file {str(path)!r}: it holds another table, table content or plan. "
+            "Give another name with -o, or remove it."
+        )
+    beside = default_run_path(facts.path)
+    try:
+        return _first_fitting(beside, facts, plan)
+    except RunFileError:
+        folder = user_state_path("screener", ensure_exists=True)
+        return _first_fitting(folder / beside.name, facts, plan)
+
+
+def _first_fitting(path: Path, facts: TableFacts, plan: Plan) -> RunFile:
+    number = 1
+    while True:
+        candidate = path if number == 1 else path.with_name(f"{path.stem}-{number}{path.suffix}")
+        if not candidate.exists():
+            return _create(candidate, facts, plan)
+        if is_run_file(candidate):
+            run = RunFile.open(candidate)
+            if _same_run(run, facts, plan):
+                return run
+            run.close()
+        number += 1
+
+
+def _create(path: Path, facts: TableFacts, plan: Plan) -> RunFile:
+    return RunFile.create(path, facts, plan, version=__version__, null_version=NULL_VERSION)
+
+
+def _same_run(run: RunFile, facts: TableFacts, plan: Plan) -> bool:
+    return (run.facts.fingerprint, run.plan, run.null_version) == (facts.fingerprint, plan, NULL_VERSION)

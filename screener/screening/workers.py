@@ -1,0 +1,33 @@
+"""Where blocks are scored: threads that give way to the screen, each with one BLAS thread."""
+
+import os
+import threading
+from collections.abc import Iterator
+from concurrent.futures import Executor, ThreadPoolExecutor
+from contextlib import contextmanager
+
+from threadpoolctl import threadpool_limits
+
+NICENESS = 10
+"""Workers yield to the thread that draws the screen."""
+
+
+@contextmanager
+def thread_workers(jobs: int) -> Iterator[Executor]:
+    """A pool of `jobs` threads; leaving it drops what has not started and does not wait for what has."""
+    with threadpool_limits(1, "blas"):
+        pool = ThreadPoolExecutor(jobs, thread_name_prefix="score", initializer=_give_way)
+        try:
+            yield pool
+        finally:
+            pool.shutdown(wait=False, cancel_futures=True)
+
+
+def usable_cores() -> int:
+    """Cores this process may use."""
+    return len(os.sched_getaffinity(0)) if hasattr(os, "sched_getaffinity") else (os.cpu_count() or 1)
+
+
+def _give_way() -> None:
+    if hasattr(os, "setpriority"):
+        os.setpriority(os.PRIO_PROCESS, threading.get_native_id(), NICENESS)
