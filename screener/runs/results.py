@@ -1,0 +1,99 @@
+"""The frames that everything else reads: one row per channel of a run, one row per fit of a channel."""
+
+from __future__ import annotations
+
+import sqlite3
+from collections.abc import Iterable, Mapping, Sequence
+from typing import TYPE_CHECKING
+
+import numpy as np
+import polars as pl
+
+from screener.records import FIT_COLUMNS, RESULT_COLUMNS, Control, Plan, Verdict
+from screener.runs.scores import unpacked
+from screener.runs.text import visible
+from screener.stats.many import adjusted_p
+
+if TYPE_CHECKING:
+    from screener.records import FloatArray
+
+OUTSIDE_SUPPORT = "outside support"
+"""The note of a fit to a family that cannot hold the channel's readings."""
+
+DTYPES: dict[type, pl.DataType] = {int: pl.Int64(), float: pl.Float64(), str: pl.String(), bool: pl.Boolean()}
+
+_RESULTS = """
+SELECT score.position, channel.name, channel.unit, score.n, score.missing, score.reason,
+    fit.r, fit.critical_r, fit.plain_critical_r, fit.p, fit.note
+FROM score JOIN channel USING (position)
+LEFT JOIN fit ON fit.family = (SELECT id FROM family WHERE name = ?) AND fit.position = score.position
+ORDER BY score.position
+"""
+_RESULT_FIELDS = {
+    **{"position": int, "channel": str, "unit": str, "n": int, "missing": int, "reason": str},
+    **{"r": float, "critical_r": float, "plain_critical_r": float, "p": float, "fit_note": str},
+}
+_FITS = """
+SELECT family.name, r, critical_r, plain_critical_r, p, extrapolated, location, scale, note
+FROM family JOIN fit ON fit.family = family.id AND fit.position = ?
+ORDER BY family.id
+"""
+
+
+def read_results(connection: sqlite3.Connection, plan: Plan) -> pl.DataFrame:
+    """One row per channel tried, in table order: `position` and the RESULT_COLUMNS; absent values are null."""
+    stored = _frame(connection.execute(_RESULTS, (plan.family,)).fetchall(), _RESULT_FIELDS)
+    judged = _judged(stored.with_columns(reason=_reason(plan.family)), plan)
+    absent = [pl.lit(None, DTYPES[kind]).alias(name) for name, kind in RESULT_COLUMNS.items() if name not in judged]
+    return judged.with_columns(absent).select("position", *RESULT_COLUMNS)
+
+
+def read_fits(connection: sqlite3.Connection, position: int) -> pl.DataFrame:
+    """One row per family for one channel: the columns of FIT_COLUMNS, in the order of the registry."""
+    rows = connection.execute(_FITS, (position,)).fetchall()
+    return _frame(rows, {**FIT_COLUMNS, "extrapolated": int}).cast({"extrapolated": pl.Boolean})
+
+
+def read_points(connection: sqlite3.Connection, position: int) -> FloatArray:
+    """The sorted readings kept of one channel; empty when there are none."""
+    row = connection.execute("SELECT readings FROM kept_readings WHERE position = ?", (position,)).fetchone()
+    return unpacked(row[0]) if row else np.empty(0)
+
+
+def _reason(family: str) -> pl.Expr:
+    """Why a channel is not scored against the family of the plan; null where it is."""
+    unfitted = pl.col("r").is_null()
+    unjudged = pl.col("critical_r").is_null() | pl.col("p").is_null()
+    return pl.coalesce(
+        "reason",
+        pl.when(unfitted & (pl.col("fit_note") == OUTSIDE_SUPPORT)).then(pl.lit(f"outside the support of {family}")),
+        pl.when(unfitted).then(pl.coalesce("fit_note", pl.lit(f"no fit of {family}"))),
+        pl.when(unjudged).then(pl.lit(f"no critical value for {family}")),
+    )
+
+
+def _judged(stored: pl.DataFrame, plan: Plan) -> pl.DataFrame:
+    """With q, verdict and departure_size; a channel that has a reason is neither tested nor counted."""
+    scored = pl.col("reason").is_null()
+    tested = stored.select(pl.when(scored).then("p")).to_series().to_numpy()
+    flagged = pl.col("q") < plan.alpha if plan.control is Control.FDR else pl.col("r") < pl.col("critical_r")
+    judged = pl.when(flagged).then(pl.lit(str(Verdict.FLAGGED))).otherwise(pl.lit(str(Verdict.CLEAR)))
+    unexplained = ((1 - pl.col("r")) * (1 + pl.col("r"))).clip(0.0)
+    return stored.with_columns(
+        q=pl.Series(adjusted_p(tested), dtype=pl.Float64).fill_nan(None),
+        family=pl.lit(plan.family),
+        departure_size=unexplained.sqrt(),
+    ).with_columns(verdict=pl.when(scored).then(judged).otherwise(pl.lit(str(Verdict.NOT_SCORED))))
+
+
+def _frame(rows: Sequence[tuple[object, ...]], fields: Mapping[str, type]) -> pl.DataFrame:
+    """The rows as a frame, built column by column; raises TypeError when a value is not of its column's kind."""
+    columns: Iterable[Sequence[object]] = zip(*rows, strict=True) if rows else [()] * len(fields)
+    series = [_series(name, values, kind) for (name, kind), values in zip(fields.items(), columns, strict=True)]
+    return pl.DataFrame(series)
+
+
+def _series(name: str, values: Sequence[object], kind: type) -> pl.Series:
+    if kind is str:
+        values = [None if value is None else visible(value) for value in values]  # type: ignore[arg-type]
+    return pl.Series(name, values, dtype=DTYPES[kind])

@@ -1,0 +1,89 @@
+"""Storing the scores of a block of channels."""
+
+from __future__ import annotations
+
+import sqlite3
+from collections.abc import Iterator
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from screener.records import BlockScores, Span
+from screener.runs.text import visible
+
+if TYPE_CHECKING:
+    from screener.records import FloatArray
+
+Row = tuple[int | float | str | None, ...]
+
+_FIT = """
+INSERT OR REPLACE INTO fit
+    (family, position, r, critical_r, plain_critical_r, p, extrapolated, location, scale, note)
+VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?)
+"""
+
+
+def store_scores(connection: sqlite3.Connection, scores: BlockScores) -> None:
+    """Write a block, in place of what an earlier attempt left; the caller holds the transaction."""
+    span = scores.span
+    families = _family_ids(connection, scores.families)
+    connection.execute("INSERT OR REPLACE INTO span (first, stop) VALUES (?, ?)", (span.first, span.stop))
+    connection.executemany(
+        "INSERT OR REPLACE INTO score (position, n, missing, reason) VALUES (?, ?, ?, ?)", _score_rows(scores)
+    )
+    connection.executemany(
+        "INSERT OR REPLACE INTO kept_readings (position, readings) VALUES (?, ?)",
+        zip(range(span.first, span.stop), map(packed, scores.points), strict=True),
+    )
+    connection.executemany(_FIT, _fit_rows(scores, families))
+
+
+def store_failure(connection: sqlite3.Connection, span: Span, message: str) -> None:
+    """Write why the channels of a span are not scored, unless another program scored them meanwhile."""
+    reason = visible(message) or "not scored, no reason given"
+    connection.execute(
+        "INSERT INTO span (first, stop, failure) VALUES (?, ?, ?)"
+        " ON CONFLICT (first, stop) DO UPDATE SET failure = excluded.failure WHERE failure IS NOT NULL",
+        (span.first, span.stop, reason),
+    )
+    connection.executemany(
+        "INSERT INTO score (position, reason) VALUES (?, ?)"
+        " ON CONFLICT (position) DO UPDATE SET reason = excluded.reason WHERE n IS NULL",
+        ((position, reason) for position in range(span.first, span.stop)),
+    )
+
+
+def packed(readings: FloatArray) -> bytes:
+    """The readings as the bytes of little-endian float64."""
+    return readings.astype("<f8").tobytes()
+
+
+def unpacked(stored: bytes) -> FloatArray:
+    """The readings behind the bytes; raises ValueError when they are no whole number of readings."""
+    return np.frombuffer(stored, "<f8").astype(np.float64)
+
+
+def _family_ids(connection: sqlite3.Connection, names: tuple[str, ...]) -> list[int]:
+    connection.executemany("INSERT OR IGNORE INTO family (name) VALUES (?)", ((name,) for name in names))
+    known = dict(connection.execute("SELECT name, id FROM family"))
+    return [known[name] for name in names]
+
+
+# `.tolist()` throughout: SQLite would store numpy's own scalars as blobs. It stores NaN as NULL.
+
+
+def _score_rows(scores: BlockScores) -> Iterator[Row]:
+    reasons = (visible(reason) or None for reason in scores.reasons)
+    positions = range(scores.span.first, scores.span.stop)
+    return zip(positions, scores.n.tolist(), scores.missing.tolist(), reasons, strict=True)
+
+
+def _fit_rows(scores: BlockScores, families: list[int]) -> Iterator[Row]:
+    """Family after family, the order in which they are kept."""
+    first, stop = scores.span.first, scores.span.stop
+    extrapolated = scores.extrapolated.astype(np.int64)
+    tables = (scores.r, scores.critical_r, scores.plain_critical_r, scores.p, extrapolated)
+    for k, family in enumerate(families):
+        columns = [table[:, k].tolist() for table in (*tables, scores.location, scores.scale)]
+        notes = [visible(of_channel[k]) or None for of_channel in scores.notes]
+        yield from zip([family] * (stop - first), range(first, stop), *columns, notes, strict=True)
