@@ -1,0 +1,5 @@
+"""The command line: one module per command."""
+
+from screener.cli.group import main
+
+__all__ = ["main"]

@@ -7,7 +7,7 @@ from platformdirs import user_state_path
 
 from screener import __version__
 from screener.errors import PlanError, RunFileError
-from screener.records import BlockFailed, BlockScored, Event, Plan, TableFacts, TableOpened
+from screener.records import BlockFailed, BlockScored, Event, Plan, RunFinished, TableFacts, TableOpened
 from screener.runs import RunFile, default_run_path, is_run_file
 from screener.screening.null_source import null_table
 from screener.screening.screen import screen
@@ -41,7 +41,7 @@ def start(
                 run.store(event.scores)
             elif isinstance(event, BlockFailed):
                 run.store_failure(event.span, event.message)
-            elif not event.cancelled:
+            elif isinstance(event, RunFinished) and not event.cancelled:
                 run.finish()
             yield event
 

@@ -1,0 +1,77 @@
+"""Options that several commands share, and the plan they make."""
+
+from collections.abc import Callable
+from pathlib import Path
+from typing import Any, TypeVar
+
+import click
+
+from screener.records import Control, Plan
+
+DEFAULTS = Plan()
+
+Command = TypeVar("Command", bound=Callable[..., Any])
+
+TABLE_OR_RUN = click.argument("path", metavar="TABLE_OR_RUN", type=click.Path(path_type=Path))
+
+PLAN_OPTIONS = (
+    click.option("--family", default=DEFAULTS.family, show_default=True, help="Family the channels are held against."),
+    click.option(
+        "--alpha",
+        type=float,
+        default=DEFAULTS.alpha,
+        show_default=True,
+        help="Share of good channels flagged by chance.",
+    ),
+    click.option(
+        "--control",
+        type=click.Choice([control.value for control in Control]),
+        default=Control.EACH.value,
+        show_default=True,
+        help="A flag means: r below its critical value (each), or q below alpha (fdr).",
+    ),
+    click.option(
+        "--positions",
+        default=DEFAULTS.positions,
+        show_default=True,
+        help="Plotting positions: a rule's name or a number.",
+    ),
+    click.option("--channels", multiple=True, metavar="GLOB", help="Screen only the columns of these names."),
+    click.option("--skip", multiple=True, metavar="GLOB", help="Leave the columns of these names aside."),
+    click.option("--missing", multiple=True, metavar="TOKEN", help="A cell text that means a missing reading."),
+    click.option("--seed", type=int, default=DEFAULTS.seed, show_default=True, help="Seed of everything random."),
+)
+
+JOBS = click.option("--jobs", type=click.IntRange(min=1), default=None, help="Workers.  [default: usable cores]")
+
+
+def plan_options(command: Command) -> Command:
+    """Add the options that make a plan, and --jobs."""
+    for option in reversed((*PLAN_OPTIONS, JOBS)):
+        command = option(command)
+    return command
+
+
+def plan_from(given: dict[str, Any]) -> Plan:
+    """The plan of the parsed options."""
+    return Plan(
+        family=given["family"],
+        alpha=given["alpha"],
+        control=Control(given["control"]),
+        positions=given["positions"],
+        channels=given["channels"],
+        skip=given["skip"],
+        missing=given["missing"],
+        seed=given["seed"],
+    )
+
+
+def refuse_plan_for_run(ctx: click.Context, path: Path) -> None:
+    """Raise UsageError when plan options are given together with a run file, which has its own plan."""
+    names = {option.name for option in ctx.command.params} & set(Plan.__dataclass_fields__)
+    given = [n for n in sorted(names) if ctx.get_parameter_source(n) is click.core.ParameterSource.COMMANDLINE]
+    if given:
+        raise click.UsageError(
+            f"{str(path)!r} is a run file and keeps the plan it was scored with; --{given[0]} goes with a table. "
+            "Score the table again to change the plan."
+        )
