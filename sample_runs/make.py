@@ -23,7 +23,7 @@ from scipy.special import ndtr
 IntArray = NDArray[np.int64]
 
 SEED = 20_240
-ROUNDED_FROM = 0.05
+ROUNDED_FROM = 0.03
 """A channel counts as rounded when its step is at least this share of its standard deviation."""
 SPARE = "spare_07 [mV]"
 """An input of the logger to which nothing is wired."""
