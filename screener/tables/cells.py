@@ -1,0 +1,121 @@
+"""What a text cell means: a number, a missing reading, or a word."""
+
+from collections.abc import Iterator, Mapping, Sequence
+from dataclasses import dataclass
+
+import polars as pl
+
+from screener.tables.names import shortlist, visible
+
+MISSING = ("NA", "N/A", "n/a", "na", "#N/A", "nan", "NaN", "NAN", "null", "NULL", "Null", "none", "None", "-", "--")
+"""The cell texts, beside blank ones, that always mean a missing reading."""
+_WORDS_SHOWN = 10
+_DATE = r"^\d{1,4}[-/.]\d{1,2}[-/.]\d{1,4}([ T]+\d{1,2}:\d{2}.*)?$|^\d{1,2}:\d{2}(:\d{2}.*)?$"
+_TRUTHS = ("true", "false", "yes", "no", "on", "off")
+
+
+@dataclass(frozen=True, slots=True)
+class TextColumn:
+    """What the cells of one text column are, counted."""
+
+    cells: int
+    """Cells that are neither blank nor a missing reading."""
+    numbers: int
+    dates: int
+    truths: int
+
+    def reason(self) -> str:
+        """Why the column is not a channel; empty when at least half of its cells are numbers."""
+        if not self.cells:
+            return "empty: no readings"
+        if 2 * self.numbers >= self.cells:
+            return ""
+        if 10 * self.dates >= 9 * self.cells:
+            return "dates or times, not a measurement"
+        if self.truths == self.cells:
+            return "true or false, not a measurement"
+        words = self.cells - self.numbers
+        share = 100 if words == self.cells else min(99, round(100 * words / self.cells))
+        return f"text: {share} % of its cells are not numbers"
+
+
+def is_number(cell: str) -> bool:
+    """Whether polars reads the whole cell as one number."""
+    if "_" in cell or not cell.isascii():
+        return False
+    try:
+        float(cell)
+    except ValueError:
+        return False
+    return True
+
+
+def is_missing(cell: str) -> bool:
+    """Whether the cell always means a missing reading."""
+    return not cell or cell in MISSING
+
+
+def meaningful(column: str, missing: Sequence[str]) -> pl.Expr:
+    """The stripped cells of a text column, null where they are blank or mean a missing reading."""
+    cell = pl.col(column).cast(pl.String).str.strip_chars()
+    return pl.when(cell.is_in(["", *MISSING, *missing])).then(None).otherwise(cell).alias(column)
+
+
+def number(column: str, missing: Sequence[str], *, decimal_comma: bool) -> pl.Expr:
+    """The cells of a text column as numbers, null where they are none."""
+    cell = meaningful(column, missing)
+    plain = cell.str.replace(",", ".", literal=True) if decimal_comma else cell
+    return plain.cast(pl.Float64, strict=False).alias(column)
+
+
+def count_cells(
+    frame: pl.LazyFrame, numbers: pl.LazyFrame, columns: Sequence[str], missing: Sequence[str]
+) -> dict[str, TextColumn]:
+    """The counts of each text column; `numbers` holds the same columns as numbers."""
+    cells, found = pl.collect_all(
+        [frame.select(meaningful(column, missing).count() for column in columns), numbers.select(pl.all().count())]
+    )
+    mixed = [column for column in columns if 2 * found[column].item() < cells[column].item()]
+    dates = _count(frame, [meaningful(c, missing).str.contains(_DATE).sum() for c in mixed])
+    truths = _count(frame, [meaningful(c, missing).str.to_lowercase().is_in(list(_TRUTHS)).sum() for c in mixed])
+    return {
+        column: TextColumn(cells[column].item(), found[column].item(), dates.get(column, 0), truths.get(column, 0))
+        for column in columns
+    }
+
+
+def count_words(
+    frame: pl.LazyFrame, columns: Sequence[str], missing: Sequence[str], *, decimal_comma: bool
+) -> dict[str, dict[str, int]]:
+    """For each word that stands among numbers: how many cells of which columns hold it."""
+    counted: dict[str, dict[str, int]] = {}
+    queries = [
+        frame.select(meaningful(column, missing).filter(number(column, missing, decimal_comma=decimal_comma).is_null()))
+        .drop_nulls()
+        .group_by(column)
+        .len()
+        for column in columns
+    ]
+    for column, found in zip(columns, pl.collect_all(queries), strict=True):
+        for word, cells in found.rows():
+            counted.setdefault(word, {})[column] = cells
+    return counted
+
+
+def word_remarks(counted: dict[str, dict[str, int]], shown: Mapping[str, str]) -> Iterator[str]:
+    """One sentence a word, the commonest first; `shown` gives the name of each column."""
+    ranked = sorted(counted.items(), key=lambda item: (-sum(item[1].values()), item[0]))
+    for word, places in ranked[:_WORDS_SHOWN]:
+        where = shortlist([shown[column] for column in places])
+        yield f"{_cells(sum(places.values()))} {visible(word)[:40]!r} in {where}: read as missing."
+    if rest := ranked[_WORDS_SHOWN:]:
+        cells = sum(sum(places.values()) for _, places in rest)
+        yield f"{_cells(cells)} {len(rest):,} other words among numbers: read as missing."
+
+
+def _cells(count: int) -> str:
+    return "1 cell holds" if count == 1 else f"{count:,} cells hold"
+
+
+def _count(frame: pl.LazyFrame, counts: Sequence[pl.Expr]) -> dict[str, int]:
+    return frame.select(counts).collect().row(0, named=True) if counts else {}

@@ -1,0 +1,20 @@
+"""A table as its format gives it, before anything is said about its columns."""
+
+from dataclasses import dataclass
+
+import polars as pl
+
+
+@dataclass(frozen=True, slots=True)
+class RawTable:
+    """The columns of a table, by position: column k of `frame` is called `names[k]` in the file."""
+
+    frame: pl.LazyFrame
+    names: tuple[str, ...]
+    format: str
+    rows: int
+    held: bool
+    """Whether the frame stands in memory; otherwise each collection reads the file."""
+    remarks: tuple[str, ...] = ()
+    decimal_comma: bool = False
+    """Whether numbers in text columns are written with a decimal comma."""

@@ -1,0 +1,34 @@
+"""Tables whose columns have types already: Parquet, Arrow IPC, newline-delimited JSON."""
+
+from pathlib import Path
+
+import polars as pl
+
+from screener.tables.formats import Kind, Recognised, source_of
+from screener.tables.raw import RawTable
+
+_READING_BYTES = 8
+
+
+def read_stored(path: Path, recognised: Recognised, *, held_bytes: int) -> RawTable:
+    """The table, in memory when its readings take at most `held_bytes`, else left in its file and read by columns."""
+    if recognised.kind is Kind.NDJSON:
+        return _held(_json_lines(path), recognised)
+    if recognised.kind is Kind.IPC_STREAM:
+        with path.open("rb") as file:
+            return _held(pl.read_ipc_stream(file), recognised)
+    scan = pl.scan_parquet if recognised.kind is Kind.PARQUET else pl.scan_ipc
+    frame = scan(source_of(path), glob=False)
+    names = frame.collect_schema().names()
+    rows = int(frame.select(pl.len()).collect().item())
+    held = rows * len(names) * _READING_BYTES <= held_bytes
+    return RawTable(frame, tuple(names), recognised.label, rows, held)
+
+
+def _held(frame: pl.DataFrame, recognised: Recognised) -> RawTable:
+    return RawTable(frame.lazy(), tuple(frame.columns), recognised.label, len(frame), True)
+
+
+def _json_lines(path: Path) -> pl.DataFrame:
+    with path.open("rb") as file:
+        return pl.read_ndjson(file, infer_schema_length=None)
