@@ -73,13 +73,13 @@ def explained(action: str, path: Path) -> Iterator[None]:
 
 
 @contextmanager
-def explained_content(path: Path) -> Iterator[None]:
+def explained_content(path: Path, action: str = "read") -> Iterator[None]:
     """Like `explained`, for reading: values of the wrong kind are the file's fault too."""
     try:
-        with explained("read", path):
+        with explained(action, path):
             yield
     except (ValueError, TypeError, KeyError, OverflowError, RecursionError, PolarsError) as error:
-        raise damage("read", path, error) from error
+        raise damage(action, path, error) from error
 
 
 def _primary_code(error: sqlite3.Error) -> int:

@@ -64,7 +64,7 @@ class RunFile:
 
         Raises: RunFileError when it is missing, no run file, of another schema, damaged, or locked.
         """
-        with explained("open", path):
+        with explained_content(path, "open"):
             connection = sqlite.open_checked(path, read_only=read_only, patience=patience)
         try:
             return cls(path, connection)
