@@ -1,11 +1,15 @@
 """Progress of a run on standard error."""
 
+import sys
 import time
 from collections.abc import Iterable
 
 import click
 
-from screener.records import BlockFailed, BlockScored, Event, RunFinished, TableOpened
+from screener.records import BlockFailed, BlockScored, Event, TableOpened
+
+SET_ASIDE_SHOWN = 8
+"""Columns set aside that are named; the rest are counted."""
 
 
 def watched(events: Iterable[Event]) -> TableOpened:
@@ -13,47 +17,36 @@ def watched(events: Iterable[Event]) -> TableOpened:
 
     On a terminal one line is rewritten; elsewhere only the beginning and what went wrong are told.
     """
-    stream = click.get_text_stream("stderr")
-    rewriting = stream.isatty()
-    opened: TableOpened | None = None
-    done = total = 0
-    started = time.monotonic()
-    for event in events:
-        if isinstance(event, TableOpened):
-            opened, done, total = event, event.channels_done, len(event.facts.channels)
-            _tell_opening(event)
-            started = time.monotonic()
-            first_done = done
-        elif isinstance(event, BlockScored):
+    remaining = iter(events)
+    opened = next(remaining)
+    assert isinstance(opened, TableOpened)
+    click.echo("\n".join(opening_lines(opened)), err=True)
+    rewriting = sys.stderr.isatty()
+    done, total, started = opened.channels_done, len(opened.facts.channels), time.monotonic()
+    for event in remaining:
+        if isinstance(event, BlockFailed):
+            click.echo(f"screener: {event.message}", err=True)
+        elif isinstance(event, BlockScored) and rewriting:
             done += event.scores.span.stop - event.scores.span.first
-            if rewriting:
-                click.echo(
-                    f"\r{progress_line(done, first_done, total, time.monotonic() - started)}", err=True, nl=False
-                )
-        elif isinstance(event, BlockFailed):
-            click.echo(f"{chr(13) if rewriting else ''}screener: {event.message}", err=True)
-        elif isinstance(event, RunFinished) and rewriting and total:
-            click.echo(err=True)
-    assert opened is not None
+            rate = (done - opened.channels_done) / max(time.monotonic() - started, 1e-9)
+            click.echo(f"\r{progress_line(done, total, rate)}", err=True, nl=done == total)
     return opened
 
 
-def progress_line(done: int, first_done: int, total: int, seconds: float) -> str:
-    """How far a run is, its rate and the time left, padded to 60 cells."""
-    rate = (done - first_done) / seconds if seconds > 0 else 0.0
-    left = f", {(total - done) / rate:.0f} s left" if rate and done < total else ""
+def progress_line(done: int, total: int, rate: float) -> str:
+    """How far a run is, its rate in channels a second and the time left, padded so that it covers an earlier line."""
+    left = f", {(total - done) / rate:.0f} s left" if done < total else ""
     return f"{done:,} of {total:,} channels, {rate:,.0f} a second{left}".ljust(60)
 
 
-def _tell_opening(event: TableOpened) -> None:
+def opening_lines(event: TableOpened) -> list[str]:
+    """What was read, what was set aside and why, and where the results go."""
     facts = event.facts
-    click.echo(f"{facts.path}: {facts.format}, {facts.rows:,} rows, {len(facts.channels):,} channels", err=True)
-    for remark in facts.remarks:
-        click.echo(f"  {remark}", err=True)
-    if facts.set_aside:
-        names = ", ".join(column.name for column in facts.set_aside[:6])
-        more = f" and {len(facts.set_aside) - 6} more" if len(facts.set_aside) > 6 else ""
-        click.echo(f"  {len(facts.set_aside)} columns set aside: {names}{more}", err=True)
+    lines = [f"{facts.path}: {facts.format}, {facts.rows:,} rows, {len(facts.channels):,} channels"]
+    lines += [f"  {remark}" for remark in facts.remarks]
+    lines += [f"  set aside: {column.name} ({column.reason})" for column in facts.set_aside[:SET_ASIDE_SHOWN]]
+    if len(facts.set_aside) > SET_ASIDE_SHOWN:
+        lines.append(f"  set aside: {len(facts.set_aside) - SET_ASIDE_SHOWN:,} more columns")
     if event.channels_done:
-        click.echo(f"  going on after {event.channels_done:,} channels scored before", err=True)
-    click.echo(f"  run file: {event.run_path}", err=True)
+        lines.append(f"  going on after {event.channels_done:,} channels scored before")
+    return [*lines, f"  run file: {event.run_path}"]

@@ -62,11 +62,10 @@ def _family(name: str) -> str:
 
 
 def _numbers(run: "RunFile", position: int) -> list[str]:
-    import polars as pl
-
     from screener.cli.report import p_text
 
-    found = run.results().filter(pl.col("position") == position)
+    results = run.results()
+    found = results.filter(results["position"] == position)
     name = run.facts.channels[position].name
     if found.is_empty():
         return [f"{name}: not scored yet; the run was stopped before it"]

@@ -1,4 +1,4 @@
-"""A run from its beginning, or from where an earlier one stopped: table, run file, events that are stored as they come."""
+"""A run from its beginning, or from where one stopped: table, run file, events stored as they come."""
 
 from collections.abc import Callable, Iterator
 from pathlib import Path

@@ -2,17 +2,7 @@
 
 import numpy as np
 import pytest
-
-from screener.stats.correlation import fit_families
-from screener.stats.families import family_named
-from screener.stats.ordering import sort_in_place
-from tests.published.handbook import series
-
-
-def r_of(name: str, family: str) -> float:
-    readings = series(name)[None, :].copy()
-    n = sort_in_place(readings)
-    return float(fit_families(readings, n, [family_named(family)], "filliben").r[0, 0])
+from handbook import r_of
 
 
 @pytest.mark.parametrize(

@@ -4,14 +4,13 @@ import math
 
 import numpy as np
 import pytest
+from handbook import r_of, series, table
 from scipy.stats import norm
 
 from screener.stats.families import family_named
 from screener.stats.null.packing import shipped_table
 from screener.stats.null.simulate import simulated_log_gap
 from screener.stats.null.table import NullRow
-from tests.published.handbook import series, table
-from tests.published.test_correlation import r_of
 
 NIST_N, NIST_ALPHA, NIST_R = table("nist_normal_filliben")
 
