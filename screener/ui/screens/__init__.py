@@ -1,0 +1,1 @@
+"""What fills the terminal: the run, and the pages beside it."""

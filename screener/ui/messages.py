@@ -1,0 +1,106 @@
+"""What threads tell the screen, named as things that happened."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+from textual.message import Message
+
+from screener.errors import ScreenerError
+from screener.records import Plan, TableFacts
+
+if TYPE_CHECKING:
+    import polars as pl
+
+    from screener.ui.drawing import Drawing
+
+
+@dataclass
+class RunOpened(Message):
+    """The table was read, or the run file opened; its facts are known."""
+
+    facts: TableFacts
+    plan: Plan
+    run_path: Path
+    channels_done: int
+
+
+@dataclass
+class Progressed(Message):
+    """More channels were tried."""
+
+    tried: int
+    """Channels tried so far, with those of an earlier run."""
+    tried_now: int
+    seconds: float
+    """Since this run began scoring."""
+
+    def can_replace(self, message: Message) -> bool:
+        """Only the newest counts."""
+        return isinstance(message, Progressed)
+
+
+@dataclass
+class BlockLost(Message):
+    """A block of channels could not be scored."""
+
+    sentence: str
+
+
+@dataclass
+class ResultsRead(Message):
+    """All results stored so far."""
+
+    results: pl.DataFrame
+    sentence: str
+
+    def can_replace(self, message: Message) -> bool:
+        """Only the newest counts."""
+        return isinstance(message, ResultsRead)
+
+
+@dataclass
+class ScoringEnded(Message):
+    """Nothing more will be scored."""
+
+    cancelled: bool
+    seconds: float
+
+
+@dataclass
+class ChannelDrawn(Message):
+    """The plot that was asked for."""
+
+    drawing: Drawing
+
+    def can_replace(self, message: Message) -> bool:
+        """Only the newest counts."""
+        return isinstance(message, ChannelDrawn)
+
+
+@dataclass
+class Exported(Message):
+    """A file was written, or could not be."""
+
+    sentence: str
+
+
+@dataclass
+class RunImpossible(Message):
+    """The run cannot be shown at all, for a reason that the user can mend."""
+
+    error: ScreenerError
+
+
+@dataclass
+class ThreadBroke(Message):
+    """A thread ended by a mistake of ours."""
+
+    error: BaseException
+
+
+@dataclass
+class QuitAsked(Message):
+    """The user wants to leave."""

@@ -1,0 +1,75 @@
+"""Help: keys, columns, the method in short, and the cautions."""
+
+from __future__ import annotations
+
+from screener.ui.palette import STRONG
+from screener.ui.screens.page import Page
+from screener.ui.widgets.lines import Line, plain
+
+KEYS = """\
+  Up Down       move; the cursor stays on its channel while rows come in or are sorted
+  PgUp PgDn     a page on; Home and End: the first and the last row
+  Enter  Esc    the plot over the table, and back
+  [ ]           the plot against the previous or next family; also Left and Right
+  /  n          find a channel by a part of its name; the next one
+  f             only the flagged channels, or all
+  s  S          sort by the next column; reverse the order
+  0 to 8        sort in table order, or by the 1st to 8th column; the same again reverses
+  e             export the rows as filtered and sorted here
+  i             how the table was read: columns set aside, remarks
+  Ctrl+P        all actions by name
+  Ctrl+Z        put in the background (fg brings it back)
+  q  Ctrl+C     quit; what was scored is in the run file, and the same command goes on from there"""
+
+COLUMNS = """\
+  !             flagged: r is below its critical value (with false discovery rate control: q is below alpha)
+  -             not scored; the reason stands in the last column and under the table
+  n             finite readings
+  r             correlation of the sorted readings with the values that the family expects; 1 is a straight plot
+  critical r    a channel truly of that family has a smaller r with probability alpha
+  p             probability of so small an r, or a smaller one, for a channel truly of that family
+  off (sd)      rms distance of the readings from the line in standard deviations: how much, where p says how sure
+  closest       the family closest to the channel, where that was looked for"""
+
+METHOD = (
+    "Readings are sorted, x(1) to x(n), and held against G(u), the quantiles of the family at the plotting positions "
+    "u (Filliben 1975 unless the plan says otherwise). r is the correlation of the two; it does not depend on location "
+    "or scale. Its distribution for channels truly of the family was simulated, and gives the critical value and p. "
+    "The plot shows actual readings against expected ones, location + scale x G(u), with the line on which they are "
+    "equal; lognormal, Weibull and log-logistic are plotted in ln x. Bends at both ends mean heavy or light tails, a "
+    "bow means skew."
+)
+
+CAUTIONS = (
+    "Not flagged is not proof of normality: with few readings large departures pass, and r is weak against light tails "
+    "and clusters.",
+    "With very many readings small departures are flagged; look at the distance off the line before acting.",
+    "Critical values hold for independent, unrounded readings. Coarse steps, clipping, drift and readings that follow "
+    "each other in time lower r by themselves.",
+    "Among many channels some are flagged by chance; the line under the title says how many to expect.",
+    "Figures for safety, health or regulated characteristics need the governing standard, local codes, and licensed or "
+    "qualified practice; this screen does not replace them.",
+)
+
+TERMINAL = "Plain ASCII is used when the locale does not declare UTF-8, or NO_COLOR is set; LANG=C.UTF-8 declares it."
+
+
+def help_page() -> Page:
+    """The page of help."""
+    paragraphs: list[Line] = [
+        plain("Keys", STRONG),
+        *map(plain, KEYS.splitlines()),
+        plain(""),
+        plain("Columns", STRONG),
+        *map(plain, COLUMNS.splitlines()),
+        plain(""),
+        plain("Method", STRONG),
+        plain(METHOD),
+        plain(""),
+        plain("Cautions", STRONG),
+        *(plain(f"* {caution}") for caution in CAUTIONS),
+        plain(""),
+        plain("Terminal", STRONG),
+        plain(TERMINAL),
+    ]
+    return Page(paragraphs, id="help")

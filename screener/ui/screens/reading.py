@@ -1,0 +1,35 @@
+"""What the reader did with the table: what it set aside and what it remarks, with the blocks that failed."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+
+from screener.ui.messages import RunOpened
+from screener.ui.palette import PLAIN, QUIET, STRONG
+from screener.ui.screens.page import Page
+from screener.ui.shown import shown
+from screener.ui.widgets.lines import Line, plain
+
+
+def reading_page(run: RunOpened, lost: Sequence[str]) -> Page:
+    """A page on one run."""
+    facts, plan = run.facts, run.plan
+    paragraphs: list[Line] = [
+        plain("The table as it was read", STRONG),
+        plain(f"  file          {shown(str(facts.path))}"),
+        plain(f"  format        {shown(facts.format)}"),
+        plain(f"  size          {facts.rows:,} rows x {len(facts.channels):,} channels"),
+        plain(f"  fingerprint   {facts.fingerprint}"),
+        plain(f"  run file      {shown(str(run.run_path))}"),
+        plain(f"  positions     {plan.positions}"),
+        plain(""),
+        *_section("Remarks of the reader", [shown(remark) for remark in facts.remarks], "none"),
+        *_section("Blocks that could not be scored", [shown(sentence) for sentence in lost], "none"),
+        plain(f"Columns set aside: {len(facts.set_aside)}", STRONG),
+        *([(f"  {shown(column.name)}  ", PLAIN), (shown(column.reason), QUIET)] for column in facts.set_aside),
+    ]
+    return Page(paragraphs, id="reading")
+
+
+def _section(heading: str, sentences: Sequence[str], nothing: str) -> list[Line]:
+    return [plain(heading, STRONG), *(plain(f"  {sentence}") for sentence in sentences or [nothing]), plain("")]
