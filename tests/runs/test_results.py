@@ -87,12 +87,12 @@ def test_departure_size_is_the_rms_distance_from_the_line(tmp_path: Path) -> Non
     x = (readings - readings.mean()) / readings.std()
     m = (quantiles - quantiles.mean()) / quantiles.std()
     slope = (x * m).mean()
-    scores = block(0, 2)
-    scores.r[:, 0] = [np.corrcoef(x, m)[0, 1], 1.0]
+    scores = block(0, 3)
+    scores.r[:, 0] = [np.corrcoef(x, m)[0, 1], 1.0, np.nextafter(1.0, 2.0)]
     with stored_run(tmp_path / "a.run", scores) as run:
         size = run.results()["departure_size"].to_list()
     assert size[0] == pytest.approx(np.sqrt(np.mean((x - slope * m) ** 2)), rel=1e-9)
-    assert size[1] == 0.0
+    assert size[1:] == [0.0, 0.0]
 
 
 def test_a_channel_outside_the_support_is_not_scored_and_says_of_which_family(tmp_path: Path) -> None:
