@@ -12,9 +12,9 @@ _FEWEST_STEPS = 2
 _TIME = re.compile(r"time|date|epoch|clock|elapsed", re.IGNORECASE)
 
 
-def reading(column: str) -> pl.Expr:
-    """The column as Float64, its name kept."""
-    return pl.col(column).cast(pl.Float64)
+def reading(*columns: str) -> pl.Expr:
+    """The columns as Float64, their names kept."""
+    return pl.col(columns).cast(pl.Float64)
 
 
 def reason_for_type(dtype: pl.DataType) -> str:
@@ -37,7 +37,7 @@ def unfit(frame: pl.LazyFrame, columns: Sequence[str], shown: Mapping[str, str])
     """
     if not columns:
         return {}
-    first = frame.select(reading(column) for column in columns).head(_GLANCED_ROWS).collect()
+    first = frame.select(reading(*columns)).head(_GLANCED_ROWS).collect()
     suspects = [column for column, suspect in zip(columns, _suspects(first), strict=True) if suspect]
     if not suspects:
         return {}

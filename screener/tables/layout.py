@@ -9,7 +9,6 @@ from itertools import islice
 from screener.tables.cells import is_missing, is_number
 
 SEPARATORS = {",": "comma", ";": "semicolon", "\t": "tab"}
-SAMPLED_LINES = 64
 _SAMPLED_ROWS = 20
 _SAMPLED_CELLS = 10_000
 _FEWEST_ROWS = 4

@@ -24,7 +24,10 @@ class Label:
 
 def visible(text: str) -> str:
     r"""The text with line ends as blanks and every other unprintable character as an escape such as \x1b."""
-    return "".join(map(_visible_character, re.sub(r"\s*[\r\n\t]+\s*", " ", text.strip())))
+    text = text.strip()
+    if text.isprintable():
+        return text
+    return "".join(map(_visible_character, re.sub(r"\s*[\r\n\t]+\s*", " ", text)))
 
 
 def unit_of(name: str) -> str:

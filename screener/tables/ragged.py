@@ -47,9 +47,9 @@ class RowWidths:
         return f"1 row (line {first:,}) has" if count == 1 else f"{count:,} rows (first: line {first:,}) have"
 
 
-def row_widths(lines: pl.DataFrame, layout: Layout, rows: int) -> RowWidths:
+def row_widths(lines: pl.Series, layout: Layout, rows: int) -> RowWidths:
     """The width of every row, from the physical lines of the whole text."""
-    body = lines.to_series().slice(layout.lines_before)
+    body = lines.slice(layout.lines_before)
     if len(body) == rows:
         bare = body.str.replace_all(_QUOTED, "") if body.str.contains('"', literal=True).any() else body
         blank = body.str.strip_chars() == ""

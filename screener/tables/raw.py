@@ -14,7 +14,9 @@ class RawTable:
     format: str
     rows: int
     held: bool
-    """Whether the frame stands in memory; otherwise each collection reads the file."""
+    """Whether the channels are to stand in memory; otherwise each collection reads the file."""
+    loaded: bool
+    """Whether the frame stands in memory already."""
     remarks: tuple[str, ...] = ()
     decimal_comma: bool = False
     """Whether numbers in text columns are written with a decimal comma."""

@@ -31,7 +31,8 @@ def sift(raw: RawTable, shown: Mapping[str, str], choice: Choice, missing: Seque
     for column, dtype in schema.items():
         if column not in reasons and (reason := reason_for_type(dtype)):
             reasons[column] = reason
-    raw = replace(raw, frame=_settled(raw.frame.select(c for c in schema if c not in reasons), held=raw.held))
+    wanted = [column for column in schema if column not in reasons]
+    raw = replace(raw, frame=_settled(_only(raw.frame, wanted), held=raw.held and not raw.loaded))
     frame, text_reasons, words = _text_as_numbers(raw, shown, missing)
     numeric = [column for column in schema if column not in reasons and column not in text_reasons]
     frame, codes = _without_codes(frame, numeric, missing, held=raw.held)
@@ -40,7 +41,7 @@ def sift(raw: RawTable, shown: Mapping[str, str], choice: Choice, missing: Seque
     by_name = {column for at, column in enumerate(schema) if at in choice.by_name}
     reasons |= {c: why for c, why in unfit_reasons.items() if not (c in by_name and why.startswith(GUESSES))}
     columns = tuple(column for column in schema if column not in reasons)
-    return Sifted(frame.select(columns), columns, reasons, (*words, *codes))
+    return Sifted(_only(frame, columns), columns, reasons, (*words, *codes))
 
 
 def _settled(frame: pl.LazyFrame, *, held: bool) -> pl.LazyFrame:
@@ -48,27 +49,46 @@ def _settled(frame: pl.LazyFrame, *, held: bool) -> pl.LazyFrame:
     return frame.collect().lazy() if held else frame
 
 
+def _only(frame: pl.LazyFrame, columns: Sequence[str]) -> pl.LazyFrame:
+    """The frame with these columns in this order; the same frame when it has no others."""
+    return frame if frame.collect_schema().names() == list(columns) else frame.select(pl.col(columns))
+
+
 def _text_as_numbers(
     raw: RawTable, shown: Mapping[str, str], missing: Sequence[str]
 ) -> tuple[pl.LazyFrame, dict[str, str], tuple[str, ...]]:
     """The frame with its text columns as numbers, the reasons of those that are not, and remarks on words."""
-    text = [column for column, dtype in raw.frame.collect_schema().items() if not dtype.is_numeric()]
+    frame = _clean_text_as_numbers(raw)
+    text = [column for column, dtype in frame.collect_schema().items() if not dtype.is_numeric()]
     if not text:
-        return raw.frame, {}, ()
+        return frame, {}, ()
     as_numbers = [number(column, missing, decimal_comma=raw.decimal_comma) for column in text]
-    numbers = _settled(raw.frame.select(as_numbers), held=raw.held)
-    counts = count_cells(raw.frame, numbers, text, missing)
+    numbers = _settled(frame.select(as_numbers), held=raw.held)
+    counts = count_cells(frame, numbers, text, missing)
     reasons = {column: reason for column in text if (reason := counts[column].reason())}
     mixed = [column for column in text if column not in reasons and counts[column].numbers < counts[column].cells]
-    words = count_words(raw.frame, mixed, missing, decimal_comma=raw.decimal_comma)
+    words = count_words(frame, mixed, missing, decimal_comma=raw.decimal_comma)
     remarks = tuple(word_remarks(words, shown))
     if raw.held:
-        return pl.concat([raw.frame.drop(text), numbers.drop(reasons)], how="horizontal"), reasons, remarks
-    return (
-        raw.frame.drop(reasons).with_columns(e for c, e in zip(text, as_numbers, strict=True) if c not in reasons),
-        reasons,
-        remarks,
-    )
+        return pl.concat([frame.drop(text), numbers.drop(reasons)], how="horizontal"), reasons, remarks
+    kept = [cells for column, cells in zip(text, as_numbers, strict=True) if column not in reasons]
+    return frame.drop(reasons).with_columns(kept), reasons, remarks
+
+
+def _clean_text_as_numbers(raw: RawTable) -> pl.LazyFrame:
+    """The frame with those text columns as numbers whose every cell is a plain number or blank: most, usually."""
+    text = [column for column, dtype in raw.frame.collect_schema().items() if not dtype.is_numeric()]
+    if not text:
+        return raw.frame
+    cells = pl.col(text).cast(pl.String)
+    plain = cells.str.replace(",", ".", literal=True) if raw.decimal_comma else cells
+    cast = plain.cast(pl.Float64, strict=False)
+    numbers = _settled(raw.frame.select(cast), held=raw.held)
+    blank, refused = pl.collect_all([f.select(pl.col(text).null_count()) for f in (raw.frame, numbers)])
+    clean = [c for c in text if blank[c].item() == refused[c].item() < raw.rows]
+    if clean and raw.held:
+        return pl.concat([raw.frame.drop(clean), numbers.select(pl.col(clean))], how="horizontal")
+    return raw.frame.with_columns(cast) if len(clean) == len(text) else raw.frame
 
 
 def _without_codes(

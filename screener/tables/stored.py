@@ -1,5 +1,6 @@
 """Tables whose columns have types already: Parquet, Arrow IPC, newline-delimited JSON."""
 
+from collections.abc import Sequence
 from pathlib import Path
 
 import polars as pl
@@ -20,15 +21,23 @@ def read_stored(path: Path, recognised: Recognised, *, held_bytes: int) -> RawTa
     scan = pl.scan_parquet if recognised.kind is Kind.PARQUET else pl.scan_ipc
     frame = scan(source_of(path), glob=False)
     names = frame.collect_schema().names()
+    if any(name.startswith("^") for name in names):
+        frame = frame.rename(_plain(names))
     rows = int(frame.select(pl.len()).collect().item())
     held = rows * len(names) * _READING_BYTES <= held_bytes
-    return RawTable(frame, tuple(names), recognised.label, rows, held)
+    return RawTable(frame, tuple(names), recognised.label, rows, held=held, loaded=False)
 
 
 def _held(frame: pl.DataFrame, recognised: Recognised) -> RawTable:
-    return RawTable(frame.lazy(), tuple(frame.columns), recognised.label, len(frame), True)
+    plain = frame.rename(_plain(frame.columns))
+    return RawTable(plain.lazy(), tuple(frame.columns), recognised.label, len(frame), held=True, loaded=True)
 
 
 def _json_lines(path: Path) -> pl.DataFrame:
     with path.open("rb") as file:
         return pl.read_ndjson(file, infer_schema_length=None)
+
+
+def _plain(names: Sequence[str]) -> dict[str, str]:
+    """New names by position: polars takes a name such as `^a.*$` for a pattern of names."""
+    return {name: f"c{at}" for at, name in enumerate(names)}

@@ -50,7 +50,7 @@ class Table:
     def _part(self, span: Span) -> pl.DataFrame:
         if self._held is not None:
             return self._held[:, span.first : span.stop]
-        return self._scan.select(reading(column) for column in self._columns[span.first : span.stop]).collect()
+        return self._scan.select(reading(*self._columns[span.first : span.stop])).collect()
 
 
 def open_table(path: Path, plan: Plan, *, held_bytes: int = HELD_BYTES) -> Table:
@@ -81,10 +81,16 @@ def readable(path: Path, what: str) -> Iterator[None]:
     except (EOFError, zlib.error) as error:
         raise TableError(f"Couldn't read {str(path)!r}: the file is damaged or cut off.") from error
     except (OSError, pl.exceptions.PolarsError, pl.exceptions.PanicException) as error:
-        said = visible((str(error).strip() or type(error).__name__).splitlines()[0])[:200].rstrip(".")
-        raise TableError(
-            f"Couldn't read {str(path)!r} as {what}: {said}. The file may be damaged or cut off; write it again."
-        ) from error
+        raise TableError(f"Couldn't read {str(path)!r} as {what}: {_said(error, what)}") from error
+
+
+def _said(error: BaseException, what: str) -> str:
+    if what.startswith(Kind.NDJSON) and not isinstance(error, OSError):
+        return "every line must be one JSON object, and its values numbers, texts or null."
+    first_line = visible((str(error).strip() or type(error).__name__).splitlines()[0])[:200].rstrip(".")
+    if '`"' in first_line:
+        return "a quotation mark is not closed. Mend the line or remove the mark."
+    return f"{first_line}. The file may be damaged or cut off; write it again."
 
 
 def _load(path: Path, recognised: Recognised, held_bytes: int) -> RawTable:
@@ -120,8 +126,7 @@ def _nothing_to_screen(path: Path, choice: Choice, set_aside: Sequence[SetAside]
         )
     columns = [f"{column.name} ({column.reason})" for column in set_aside]
     return TableError(
-        f"Couldn't find a channel in {str(path)!r}: none of its {len(columns):,} columns holds readings that vary: "
-        f"{shortlist(columns, 5)}."
+        f"Couldn't find a channel in {str(path)!r}: no column holds readings that vary: {shortlist(columns, 5)}."
     )
 
 

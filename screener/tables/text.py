@@ -6,12 +6,13 @@ from pathlib import Path
 import polars as pl
 
 from screener.errors import TableError
-from screener.tables.encoding import utf8_source
+from screener.tables.encoding import text_lines, utf8_text
 from screener.tables.formats import Recognised
-from screener.tables.layout import SAMPLED_LINES, SEPARATORS, Layout, layout_of
+from screener.tables.layout import SEPARATORS, Layout, layout_of
 from screener.tables.ragged import row_widths
 from screener.tables.raw import RawTable
 
+_PARSE_ERRORS = (pl.exceptions.ComputeError, pl.exceptions.SchemaError)
 _TAB_SUFFIXES = frozenset({".tsv", ".tab"})
 
 
@@ -21,34 +22,48 @@ def read_text(path: Path, recognised: Recognised) -> RawTable:
     Raises:
         TableError: there is no row of readings, or the header does not name every column.
     """
-    source, remarks = utf8_source(path, recognised.packing)
-    lines = _lines(source, SAMPLED_LINES).to_series().to_list()
-    if not any(line.strip() for line in lines):
-        raise TableError(f"Couldn't read {str(path)!r}: its first {len(lines):,} lines are blank.")
-    layout = layout_of(lines, prefer_tab=bool(_TAB_SUFFIXES & {suffix.lower() for suffix in path.suffixes}))
+    text = utf8_text(path, recognised.packing)
+    if not any(line.strip() for line in text.head):
+        raise TableError(f"Couldn't read {str(path)!r}: its first {len(text.head):,} lines are blank.")
+    layout = layout_of(text.head, prefer_tab=bool(_TAB_SUFFIXES & {suffix.lower() for suffix in path.suffixes}))
     if layout.extra_cells:
         raise TableError(
             f"Couldn't read {str(path)!r}: its header names {len(layout.names):,} columns, "
             "but the rows have more cells. Give every column a name."
         )
-    frame, more = _parse(source, layout)
+    frame, more = _parse(text.source, layout)
     if frame.is_empty():
         raise TableError(f"Couldn't read {str(path)!r}: it has a header but no readings.")
-    remarks = (*remarks, *_layout_remarks(layout), *more)
+    remarks = (*text.remarks, *_layout_remarks(layout), *more)
     return RawTable(
-        frame.lazy(), layout.names, _label(recognised, layout), len(frame), True, remarks, layout.decimal_comma
+        frame=frame.lazy(),
+        names=layout.names,
+        format=_label(recognised, layout),
+        rows=len(frame),
+        held=True,
+        loaded=True,
+        remarks=remarks,
+        decimal_comma=layout.decimal_comma,
     )
 
 
 def _parse(source: Path | bytes, layout: Layout) -> tuple[pl.DataFrame, tuple[str, ...]]:
     columns = [f"c{at}" for at in range(len(layout.names))]
     try:
-        frame = _scan(source, layout, columns, layout.words).collect()
-        regular = frame.to_series(-1).null_count() == 0
-    except pl.exceptions.ComputeError:
-        frame = _scan(source, layout, columns, range(len(columns)), ragged=True).collect()
-        regular = False
+        frame, long_rows = _scan(source, layout, columns, layout.words).collect(), False
+    except _PARSE_ERRORS:
+        frame, long_rows = _all_as_text(source, layout, columns)
+    regular = not long_rows and frame.to_series(-1).null_count() == 0
     return (frame, ()) if regular else _without_blank_lines(frame, source, layout)
+
+
+def _all_as_text(source: Path | bytes, layout: Layout, columns: Sequence[str]) -> tuple[pl.DataFrame, bool]:
+    """Every cell as text, and whether a row has more cells than the header."""
+    every = range(len(columns))
+    try:
+        return _scan(source, layout, columns, every).collect(), False
+    except _PARSE_ERRORS:
+        return _scan(source, layout, columns, every, ragged=True).collect(), True
 
 
 def _scan(
@@ -77,33 +92,11 @@ def _scan(
 def _without_blank_lines(
     frame: pl.DataFrame, source: Path | bytes, layout: Layout
 ) -> tuple[pl.DataFrame, tuple[str, ...]]:
-    widths = row_widths(_lines(source), layout, len(frame))
+    widths = row_widths(text_lines(source), layout, len(frame))
     left_out = widths.left_out()
     if left_out.any() and len(left_out) == len(frame):
         frame = frame.filter(pl.Series(~left_out))
     return frame, tuple(widths.remarks())
-
-
-def _lines(source: Path | bytes, count: int | None = None) -> pl.DataFrame:
-    """The physical lines of the text, bytes that are no UTF-8 replaced."""
-    try:
-        return pl.scan_lines(source, n_rows=count, glob=False).collect()
-    except pl.exceptions.ComputeError:
-        return (
-            pl.scan_csv(
-                source,
-                has_header=False,
-                separator="\x01",
-                quote_char=None,
-                schema={"line": pl.String()},
-                encoding="utf8-lossy",
-                extra_columns="ignore",
-                n_rows=count,
-                glob=False,
-            )
-            .with_columns(pl.col("line").fill_null(""))
-            .collect()
-        )
 
 
 def _layout_remarks(layout: Layout) -> tuple[str, ...]:
