@@ -26,7 +26,7 @@ def command(n: tuple[int, ...], family: str, alpha: tuple[float, ...], positions
         raise PlanError("Couldn't use that alpha: it must lie between 0 and 1, such as 0.05.")
     chosen = family_named(family)
     table = null_table(positions)
-    values = {size: [table.row(chosen.null_name, size).critical(a) for a in alpha] for size in n}
+    values = {size: [table.critical(chosen.null_name, size, a) for a in alpha] for size in n}
     if form == "json":
         rows = [
             {"n": size, "alpha": a, "critical_r": r} for size in n for a, r in zip(alpha, values[size], strict=True)

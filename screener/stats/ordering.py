@@ -1,69 +1,75 @@
-"""Sorted, centred and scaled readings: what every correlation starts from."""
-
-from dataclasses import dataclass
+"""Sorted readings, of ordinary magnitude and in logarithms: what every correlation starts from."""
 
 import numpy as np
 from numpy.typing import NDArray
 
 from screener.stats.families.family import FloatArray
 
+IntArray = NDArray[np.int64]
 
-def sort_in_place(readings: FloatArray) -> NDArray[np.int64]:
+ORDINARY = 400
+"""Readings between 2^-400 and 2^400 can be squared and summed as they are."""
+
+
+def sort_in_place(readings: FloatArray) -> IntArray:
     """Count the finite readings, int64[channels], and sort each channel in place: finite ones first, NaN after.
 
     Infinite readings become NaN.
     """
-    readings[np.isinf(readings)] = np.nan
     readings.sort(axis=-1)
-    missing = np.count_nonzero(np.isnan(readings), axis=-1)
-    return np.asarray(readings.shape[-1] - missing, dtype=np.int64)
+    n = _not_nan(readings)
+    last = np.take_along_axis(readings, np.maximum(n - 1, 0)[:, None], axis=1)[:, 0] if readings.size else n
+    infinite = np.flatnonzero((n > 0) & (np.isinf(last) | np.isinf(readings[:, 0]))) if readings.size else n[:0]
+    if infinite.size:
+        mended = readings[infinite]
+        mended[np.isinf(mended)] = np.nan
+        mended.sort(axis=-1)
+        readings[infinite] = mended
+        n[infinite] = _not_nan(mended)
+    return n
 
 
-@dataclass(frozen=True, slots=True)
-class Standardised:
-    """Sorted readings of channels with the same n, as unit vectors, and the way back to their units."""
-
-    unit: FloatArray
-    """[C, n] centred, of unit length; zero where the channel is constant."""
-    mean: FloatArray
-    """[C] in the channel's units."""
-    length: FloatArray
-    """[C] root of the sum of squared deviations, in the channel's units; 0 where constant."""
-
-
-def standardised(ordered: FloatArray) -> Standardised:
-    """Unit vectors of sorted complete readings, float64[C, n], for any offset and any scale.
-
-    The readings are first brought near 1 by a power of two, then the middle one is subtracted, which costs no digits,
-    so that neither squares nor a large common offset spoil the result.
-    """
-    _, largest = np.frexp(np.maximum(np.abs(ordered[:, 0]), np.abs(ordered[:, -1])))
-    near = np.ldexp(ordered, -largest[:, None])
-    middle = near[:, ordered.shape[1] // 2].copy()
-    near -= middle[:, None]
-    _, widest = np.frexp(np.maximum(-near[:, 0], near[:, -1]))
-    near = np.ldexp(near, -widest[:, None])
-    mean = near.mean(axis=1)
-    near -= mean[:, None]
-    length = np.sqrt(np.einsum("ij,ij->i", near, near))
-    near /= np.where(length > 0.0, length, 1.0)[:, None]
-    return Standardised(
-        unit=near,
-        mean=np.ldexp(middle + np.ldexp(mean, widest), largest),
-        length=np.ldexp(length, widest + largest),
-    )
+def _not_nan(ordered: FloatArray) -> IntArray:
+    """How many readings of each sorted channel are not NaN, by bisection."""
+    channels, rows = ordered.shape
+    low, high = np.zeros(channels, dtype=np.int64), np.full(channels, rows, dtype=np.int64)
+    each = np.arange(channels)
+    while np.any(low < high):
+        middle = (low + high) // 2
+        finite = ~np.isnan(ordered[each, np.minimum(middle, rows - 1)])
+        low = np.where(finite & (low < high), middle + 1, low)
+        high = np.where(finite, high, np.minimum(middle, high))
+    return low
 
 
-def logarithms(ordered: FloatArray) -> tuple[FloatArray, FloatArray]:
-    """ln x - offset of sorted positive readings, float64[C, n], and the offset, float64[C].
+def brought_near(ordered: FloatArray, n: IntArray) -> tuple[FloatArray, IntArray]:
+    """Sorted readings, float64[C, rows], those of extreme magnitude scaled by 2^-exponent, and the exponents."""
+    each = np.arange(n.size)
+    largest = np.maximum(np.abs(ordered[:, 0]), np.abs(ordered[each, np.maximum(n - 1, 0)]))
+    _, exponent = np.frexp(np.where(n > 0, largest, 1.0))
+    exponent = np.where(np.abs(exponent) > ORDINARY, exponent, 0).astype(np.int64)
+    extreme = np.flatnonzero(exponent)
+    if extreme.size == 0:
+        return ordered, exponent
+    near = ordered.copy()
+    near[extreme] = np.ldexp(near[extreme], -exponent[extreme, None])
+    return near, exponent
 
-    A channel that stays within a factor of two of its middle reading m has the offset ln m and keeps all digits of its
-    small ln(x / m); any other channel has the offset 0.
-    """
-    middle = ordered[:, ordered.shape[1] // 2]
-    narrow = (ordered[:, 0] > 0.5 * middle) & (ordered[:, -1] < 2.0 * middle)
-    logs = np.empty_like(ordered)
-    centre = middle[narrow, None]
-    logs[narrow] = np.log1p((ordered[narrow] - centre) / centre)
-    logs[~narrow] = np.log(ordered[~narrow])
-    return logs, np.where(narrow, np.log(middle), 0.0)
+
+def differences(readings: FloatArray, middle: FloatArray, out: FloatArray) -> None:
+    """Write readings, float64[C, k], less the middle one, float64[C, 1], into out."""
+    np.subtract(readings, middle, out=out)
+
+
+NARROW = 1e-4
+"""Below this share of the middle reading, ln x is taken by its difference, which keeps all digits."""
+
+
+def log_differences(readings: FloatArray, middle: FloatArray, out: FloatArray) -> None:
+    """Write ln of positive readings, float64[C, k], less ln of the middle one, float64[C, 1], into out."""
+    np.log(readings, out=out)
+    out -= np.log(middle)
+    if out.shape[1]:
+        narrow = np.flatnonzero(np.maximum(np.abs(out[:, 0]), np.abs(out[:, -1])) < NARROW)
+        if narrow.size:
+            out[narrow] = np.log1p((readings[narrow] - middle[narrow]) / middle[narrow])

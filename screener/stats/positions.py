@@ -55,19 +55,18 @@ def rule_key(rule: str) -> str:
 
 def plotting_positions(n: int, rule: str = DEFAULT_RULE) -> FloatArray:
     """Positions u_1 < ... < u_n, float64[n]; symmetric: u_k = 1 - u_(n+1-k)."""
+    lower = positions_at(np.arange(1.0, n // 2 + 1.0), n, rule)
+    middle = [0.5] if n % 2 else []
+    return np.concatenate([lower, middle, 1.0 - lower[::-1]])
+
+
+def positions_at(rank: FloatArray, n: int, rule: str = DEFAULT_RULE) -> FloatArray:
+    """Positions of ranks in the lower half, which may lie between whole numbers; same shape as rank."""
     key = rule_key(rule)
-    rank = np.arange(1, n + 1, dtype=np.float64)
     if key == "exact":
-        return np.asarray(betaincinv(rank, rank[::-1], 0.5), dtype=np.float64)
+        return np.asarray(betaincinv(rank, n + 1.0 - rank, 0.5), dtype=np.float64)
     if key == "filliben":
-        return _filliben(rank, n)
+        # Medians of the uniform order statistics: exact at the end, approximate elsewhere.
+        return np.where(rank == 1.0, -np.expm1(np.log(0.5) / n), (rank - 0.3175) / (n + 0.365))
     offset = OFFSETS[key] if key in OFFSETS else float(key)
     return (rank - offset) / (n + 1 - 2 * offset)
-
-
-def _filliben(rank: FloatArray, n: int) -> FloatArray:
-    """Filliben's medians of the uniform order statistics: exact at the ends, approximate between."""
-    u = (rank - 0.3175) / (n + 0.365)
-    u[-1] = 0.5 ** (1 / n)
-    u[0] = -np.expm1(np.log(0.5) / n) if n > 1 else 0.5
-    return u

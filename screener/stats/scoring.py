@@ -40,11 +40,8 @@ class Scoring:
 
 def score(readings: FloatArray, families: Sequence[Family], table: NullTable, alpha: float) -> Scoring:
     """Score readings, float64[C, rows], which are sorted in place."""
-    infinite = np.count_nonzero(np.isinf(readings), axis=1)
     n = sort_in_place(readings)
-    reasons = tuple(
-        _reason(channel, int(count), int(inf)) for channel, count, inf in zip(readings, n, infinite, strict=True)
-    )
+    reasons = tuple(_reason(channel, int(count)) for channel, count in zip(readings, n, strict=True))
     scored = np.array([not reason for reason in reasons], dtype=np.bool_)
     fits = fit_families(readings, np.where(scored, n, 0), families, table.rule)
     critical, p, extrapolated = _against_null(fits.r, n, families, table, alpha)
@@ -52,10 +49,10 @@ def score(readings: FloatArray, families: Sequence[Family], table: NullTable, al
     return Scoring(n, readings.shape[1] - n, reasons, fits, critical, p, extrapolated, points)
 
 
-def _reason(ordered: FloatArray, n: int, infinite: int) -> str:
+def _reason(ordered: FloatArray, n: int) -> str:
     """Why sorted readings cannot be scored; empty when they can."""
     if n == 0:
-        return f"no finite reading ({infinite} infinite)" if infinite else "no reading"
+        return "no finite reading"
     if n < FEWEST:
         return f"too few readings: {n}, at least {FEWEST} are needed"
     if ordered[0] == ordered[n - 1]:
@@ -69,12 +66,14 @@ def _against_null(
     """Critical value, p, and whether p is extrapolated, each [C, F]."""
     critical, p = np.full_like(r, np.nan), np.full_like(r, np.nan)
     extrapolated = np.zeros(r.shape, dtype=np.bool_)
-    for size in np.unique(n[n >= FEWEST]):
-        rows = n == size
-        for column, family in enumerate(families):
-            null = table.row(family.null_name, int(size))
-            critical[rows, column] = null.critical(alpha)
-            p[rows, column] = null.p_against(r[rows, column], alpha)
-            extrapolated[rows, column] = p[rows, column] < null.floor
+    enough = np.flatnonzero(n >= FEWEST)
+    sizes, row = np.unique(n[enough], return_inverse=True)
+    if enough.size == 0:
+        return critical, p, extrapolated
+    for column, family in enumerate(families):
+        null = table.rows(family.null_name, sizes)
+        critical[enough, column] = null.critical(alpha)[row]
+        p[enough, column] = null.p_against(r[enough, column], row, alpha)
+        extrapolated[enough, column] = p[enough, column] < null.floor[row]
     critical[np.isnan(r)] = np.nan
     return critical, p, extrapolated

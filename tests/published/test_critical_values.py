@@ -10,13 +10,12 @@ from scipy.stats import norm
 from screener.stats.families import family_named
 from screener.stats.null.packing import shipped_table
 from screener.stats.null.simulate import simulated_log_gap
-from screener.stats.null.table import NullRow
 
 NIST_N, NIST_ALPHA, NIST_R = table("nist_normal_filliben")
 
 
-def normal_row(n: int) -> NullRow:
-    return shipped_table().row("normal", n)
+def critical(n: int, alpha: float, family: str = "normal") -> float:
+    return shipped_table().critical(family, n, alpha)
 
 
 @pytest.mark.parametrize("row", range(NIST_N.size), ids=[f"n={n}" for n in NIST_N])
@@ -28,7 +27,7 @@ def test_shipped_table_gives_the_handbook_critical_values(row: int) -> None:
         if (n, alpha) == (120, 0.01):
             # The printed .9841 is out of line with its neighbours; the next test settles it.
             tolerance = 0.0003
-        assert normal_row(n).critical(float(alpha)) == pytest.approx(published, abs=tolerance)
+        assert critical(n, float(alpha)) == pytest.approx(published, abs=tolerance)
 
 
 def test_the_one_handbook_value_out_of_line_is_settled_by_plain_simulation() -> None:
@@ -42,7 +41,7 @@ def test_the_one_handbook_value_out_of_line_is_settled_by_plain_simulation() -> 
         sample = np.sort(rng.standard_normal((20_000, 120)), axis=1)
         sample -= sample.mean(axis=1, keepdims=True)
         r.append(sample @ expected / np.sqrt((sample**2).sum(axis=1) * (expected @ expected)))
-    assert normal_row(120).critical(0.01) == pytest.approx(np.quantile(np.concatenate(r), 0.01), abs=0.0002)
+    assert critical(120, 0.01) == pytest.approx(np.quantile(np.concatenate(r), 0.01), abs=0.0002)
 
 
 def simulated_quantiles(family: str, n: int, rule: str, p: np.ndarray, samples: int = 20_000) -> np.ndarray:
@@ -90,15 +89,15 @@ def test_p_under_blom_agrees_with_the_approximation_of_royston(n: int) -> None:
 def test_handbook_verdicts_hold() -> None:
     # 1.4.2.1.3: randn lies between the 1 % and the 5 % value; 1.4.2.2.3: randu is rejected as normal, not as uniform.
     n = series("randn").size
-    assert normal_row(n).critical(0.01) < r_of("randn", "normal") < normal_row(n).critical(0.05)
-    assert r_of("randu", "normal") < normal_row(500).critical(0.01)
-    assert r_of("randu", "uniform") > shipped_table().row("uniform", 500).critical(0.05)
+    assert critical(n, 0.01) < r_of("randn", "normal") < critical(n, 0.05)
+    assert r_of("randu", "normal") < critical(500, 0.01)
+    assert r_of("randu", "uniform") > critical(500, 0.05, "uniform")
     # 1.4.2.4.3: soulen is rejected by the table, whose readings are taken as unrounded.
-    assert r_of("soulen", "normal") < normal_row(700).critical(0.01)
+    assert r_of("soulen", "normal") < critical(700, 0.01)
     # 1.3.6.7.6: n = 50, r = .985 is not rejected at 5 %.
-    assert normal_row(50).critical(0.05) < 0.985
+    assert critical(50, 0.05) < 0.985
 
 
 def test_at_seventy_readings_normal_ones_stay_at_or_above_0_983() -> None:
     # Common practice, no source.
-    assert normal_row(70).critical(0.05) == pytest.approx(0.983, abs=0.0015)
+    assert critical(70, 0.05) == pytest.approx(0.983, abs=0.0015)

@@ -38,6 +38,8 @@ class Family:
     axis: Axis = Axis.LINEAR
     null_of: str = ""
     """The family whose null distribution of r this one shares, as its mirror image or its logarithm; empty: its own."""
+    branches: tuple[Callable[[FloatArray], FloatArray], Callable[[FloatArray], FloatArray]] | None = None
+    """Where the quantile function has a kink at the median: the formulas below and above, each smooth beyond it."""
     costly: bool = False
     """The quantile function is slow; simulations read it from a fine grid."""
 

@@ -1,6 +1,6 @@
 """A table of null distributions of r over n, read in both directions: p of r, and critical r at alpha."""
 
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
@@ -10,40 +10,53 @@ from screener.stats.families.family import FloatArray
 from screener.stats.null.grid import DEVIATES, PROBABILITIES
 from screener.stats.null.tail import tail_excess, tail_share
 
+IntArray = NDArray[np.int64]
+
 
 @dataclass(frozen=True, slots=True)
-class NullRow:
-    """The null distribution of r for one family at one n."""
+class NullRows:
+    """The null distributions of r of one family at U sample sizes."""
 
     log_gap: FloatArray
-    """[probabilities] ln(1 - r) at each tabled p, decreasing."""
-    tail_shape: float
-    tail_scale: float
-    floor: float
-    """p below this is extrapolated."""
+    """[U, probabilities] ln(1 - r) at each tabled p, decreasing."""
+    tail_shape: FloatArray
+    """[U]"""
+    tail_scale: FloatArray
+    """[U]"""
+    floor: FloatArray
+    """[U] p below this is extrapolated."""
 
-    def critical(self, alpha: float) -> float:
-        """The r that falls below with probability alpha under the null."""
+    def critical(self, alpha: float) -> FloatArray:
+        """The r that falls below with probability alpha under the null, float64[U]."""
         if alpha < PROBABILITIES[0]:
             excess = tail_excess(np.array(alpha / PROBABILITIES[0]), self.tail_shape, self.tail_scale)
-            return float(-np.expm1(self.log_gap[0] + excess))
-        return float(-np.expm1(np.interp(ndtri(alpha), DEVIATES, self.log_gap)))
+            return np.asarray(-np.expm1(self.log_gap[:, 0] + excess), dtype=np.float64)
+        deviate = float(ndtri(alpha))
+        cell = int(np.clip(np.searchsorted(DEVIATES, deviate) - 1, 0, DEVIATES.size - 2))
+        part = (deviate - DEVIATES[cell]) / (DEVIATES[cell + 1] - DEVIATES[cell])
+        gap = self.log_gap[:, cell] + part * (self.log_gap[:, cell + 1] - self.log_gap[:, cell])
+        return np.asarray(-np.expm1(gap), dtype=np.float64)
 
-    def p(self, r: FloatArray) -> FloatArray:
-        """P(r_null <= r), same shape as r; above 0, below 1, never decreasing in r; NaN where r is."""
+    def p(self, r: FloatArray, row: IntArray) -> FloatArray:
+        """P(r_null <= r) of r, float64[C], each at its row, int64[C]: above 0, below 1; NaN where r is."""
         gap = np.log(np.maximum(1.0 - r, 1e-16))
-        deviate = np.interp(-gap, -self.log_gap, DEVIATES)
-        slope = (DEVIATES[-1] - DEVIATES[-2]) / (self.log_gap[-2] - self.log_gap[-1])
-        deviate += np.maximum(self.log_gap[-1] - gap, 0.0) * slope
+        table = self.log_gap[row]
+        above = np.count_nonzero(table > gap[:, None], axis=1)
+        cell = np.clip(above - 1, 0, DEVIATES.size - 2)
+        each = np.arange(r.size)
+        drop = table[each, cell] - table[each, cell + 1]
+        part = (table[each, cell] - gap) / np.where(drop > 0.0, drop, 1.0)
+        deviate = DEVIATES[cell] + part * (DEVIATES[cell + 1] - DEVIATES[cell])
         body = np.asarray(ndtr(np.minimum(deviate, 8.0)), dtype=np.float64)
-        excess = np.maximum(gap - self.log_gap[0], 0.0)
-        tail = PROBABILITIES[0] * tail_share(excess, self.tail_shape, self.tail_scale)
-        return np.where(excess > 0.0, np.maximum(tail, 1e-300), body)
+        excess = np.maximum(gap - table[:, 0], 0.0)
+        tail = PROBABILITIES[0] * tail_share(excess, self.tail_shape[row], self.tail_scale[row])
+        p = np.where(excess > 0.0, np.maximum(tail, 1e-300), body)
+        return np.where(np.isnan(r), np.nan, p)
 
-    def p_against(self, r: FloatArray, alpha: float) -> FloatArray:
+    def p_against(self, r: FloatArray, row: IntArray, alpha: float) -> FloatArray:
         """p of r, made to agree with the critical value to the last bit: p < alpha exactly where r < critical."""
-        p = self.p(r)
-        below = r < self.critical(alpha)
+        p = self.p(r, row)
+        below = r < self.critical(alpha)[row]
         agreed = np.where(below, np.minimum(p, np.nextafter(alpha, 0.0)), np.maximum(p, alpha))
         return np.where(np.isnan(r), np.nan, agreed)
 
@@ -54,7 +67,7 @@ class NullTable:
 
     families: tuple[str, ...]
     rule: str
-    sizes: NDArray[np.int64]
+    sizes: IntArray
     """[N] increasing."""
     log_gap: FloatArray
     """[F, N, probabilities]"""
@@ -64,50 +77,47 @@ class NullTable:
     """[F, N]"""
     floor: FloatArray
     """[N] smallest p that was counted, not fitted."""
-    samples: NDArray[np.int64]
+    samples: IntArray
     """[N] samples simulated."""
     version: str
-    rows: dict[tuple[str, int], NullRow] = field(default_factory=dict, repr=False, compare=False)
-    """Rows already interpolated."""
 
-    def row(self, family: str, n: int) -> NullRow:
-        """The null distribution of a tabled family at any n from the first size up, smooth in ln n."""
-        key = (family, n)
-        if key not in self.rows:
-            self.rows[key] = self._interpolated(self.families.index(family), n)
-        return self.rows[key]
-
-    def _interpolated(self, family: int, n: int) -> NullRow:
-        nodes, weights = interpolation(self.sizes, n)
-        gap = np.minimum.accumulate(weights @ self.log_gap[family, nodes])
-        nearest = int(nodes[np.argmax(weights)])
-        return NullRow(
-            log_gap=gap,
-            tail_shape=float(self.tail_shape[family, nearest]),
-            tail_scale=float(self.tail_scale[family, nearest]),
-            floor=float(self.floor[nodes].max()),
+    def rows(self, family: str, sizes: IntArray) -> NullRows:
+        """The null distributions of a tabled family at any n from the first size up, int64[U], smooth in ln n."""
+        place = self.families.index(family)
+        weights = interpolation(self.sizes, sizes)
+        nearest = np.argmax(weights, axis=1)
+        return NullRows(
+            log_gap=np.minimum.accumulate(weights @ self.log_gap[place], axis=1),
+            tail_shape=self.tail_shape[place, nearest],
+            tail_scale=self.tail_scale[place, nearest],
+            floor=self.floor[nearest],
         )
 
+    def critical(self, family: str, n: int, alpha: float) -> float:
+        """The critical value of r at one n."""
+        return float(self.rows(family, np.array([n])).critical(alpha)[0])
 
-def interpolation(sizes: NDArray[np.int64], n: int) -> tuple[NDArray[np.int64], FloatArray]:
-    """Which nodes, and with which weights, give the value at n: cubic in ln n between sizes, straight beyond the last.
+
+def interpolation(sizes: IntArray, at: IntArray) -> FloatArray:
+    """Weights of the tabled sizes at each n, float64[U, N]: cubic in ln n between them, straight beyond the last.
 
     Beyond the last size the trend is the least-squares line through the last four nodes, moved to meet the last.
     """
-    x = np.log(sizes.astype(np.float64))
-    at = np.log(float(n))
-    exact = np.flatnonzero(sizes == n)
-    if exact.size:
-        return exact, np.ones(1)
-    if n > sizes[-1]:
-        nodes = np.arange(max(0, sizes.size - 4), sizes.size)
-        centred = x[nodes] - x[nodes].mean()
-        weights = (at - x[-1]) * centred / (centred @ centred)
-        weights[-1] += 1.0
-        return nodes, weights
-    first = int(np.clip(np.searchsorted(sizes, n) - 2, 0, max(0, sizes.size - 4)))
-    nodes = np.arange(first, min(first + 4, sizes.size))
-    apart = x[nodes][:, None] - x[nodes] + np.eye(nodes.size)
-    ratios = (at - x[nodes] + np.zeros_like(apart)) / apart
-    np.fill_diagonal(ratios, 1.0)
-    return nodes, ratios.prod(axis=1)
+    x, wanted = np.log(sizes.astype(np.float64)), np.log(at.astype(np.float64))
+    weights = np.zeros((at.size, sizes.size))
+    span = min(4, sizes.size)
+    first = np.clip(np.searchsorted(sizes, at) - 2, 0, sizes.size - span)
+    nodes = first[:, None] + np.arange(span)
+    cubic = np.ones((at.size, span))
+    for i in range(span):
+        for other in range(span):
+            if other != i:
+                cubic[:, i] *= (wanted - x[nodes[:, other]]) / (x[nodes[:, i]] - x[nodes[:, other]])
+    np.put_along_axis(weights, nodes, cubic, axis=1)
+    beyond = np.flatnonzero(at > sizes[-1])
+    last = np.arange(sizes.size - span, sizes.size)
+    centred = x[last] - x[last].mean()
+    weights[beyond] = 0.0
+    weights[np.ix_(beyond, last)] = np.outer(wanted[beyond] - x[-1], centred / (centred @ centred))
+    weights[beyond, -1] += 1.0
+    return weights
