@@ -2,11 +2,15 @@
 
 import csv
 import re
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import dataclass
 from itertools import islice
+from typing import TYPE_CHECKING
 
 from screener.tables.cells import is_missing, is_number
+
+if TYPE_CHECKING:
+    from _csv import Reader
 
 SEPARATORS = {",": "comma", ";": "semicolon", "\t": "tab"}
 _SAMPLED_ROWS = 20
@@ -38,7 +42,7 @@ def layout_of(lines: Sequence[str], *, prefer_tab: bool = False) -> Layout:
     kept = list(lines[blank:])
     kept[0] = kept[0].removeprefix("\ufeff")
     separator = _separator(kept, prefer_tab=prefer_tab)
-    reader = csv.reader((line + "\n" for line in kept), delimiter=separator)
+    reader = cell_rows(kept, separator)
     header = next(reader)
     headed = not _only_numbers(header)
     lines_before = blank + (reader.line_num if headed else 0)
@@ -51,6 +55,11 @@ def layout_of(lines: Sequence[str], *, prefer_tab: bool = False) -> Layout:
     return Layout(separator, names, lines_before, decimal_comma, words, extra_cells)
 
 
+def cell_rows(lines: Iterable[str], separator: str) -> "Reader":
+    """The cells of each row, a quoted cell over several lines being one; `line_num` counts the lines read so far."""
+    return csv.reader((line.replace("\r", " ") + "\n" for line in lines), delimiter=separator)
+
+
 def _separator(lines: Sequence[str], *, prefer_tab: bool) -> str:
     """The separator by which most sampled rows have as many cells as the header; more cells win a tie."""
     if prefer_tab and "\t" in lines[0]:
@@ -59,7 +68,7 @@ def _separator(lines: Sequence[str], *, prefer_tab: bool) -> str:
 
 
 def _agreement(lines: Sequence[str], separator: str) -> tuple[bool, float, int]:
-    reader = csv.reader((line + "\n" for line in lines), delimiter=separator)
+    reader = cell_rows(lines, separator)
     header = len(next(reader))
     widths = [len(row) for row in _sample(reader, header)] if header > 1 else []
     agreeing = sum(width == header for width in widths)

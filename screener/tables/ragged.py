@@ -1,6 +1,5 @@
 """Rows with fewer or more cells than the header, and blank lines, counted from the lines of the text."""
 
-import csv
 from collections.abc import Iterator
 from dataclasses import dataclass
 
@@ -8,7 +7,7 @@ import numpy as np
 import polars as pl
 from numpy.typing import NDArray
 
-from screener.tables.layout import Layout
+from screener.tables.layout import Layout, cell_rows
 
 _QUOTED = r'"[^"]*"'
 
@@ -57,7 +56,7 @@ def row_widths(lines: pl.Series, layout: Layout, rows: int) -> RowWidths:
         cells[blank.to_numpy()] = 0
         ends = np.arange(1, rows + 1)
     else:
-        reader = csv.reader((line + "\n" for line in body), delimiter=layout.separator)
+        reader = cell_rows(body, layout.separator)
         counted = np.array([(len(row), reader.line_num) for row in reader], dtype=np.int64).reshape(-1, 2)
         cells, ends = counted[:, 0], counted[:, 1]
     return RowWidths(cells, ends + layout.lines_before, len(layout.names))

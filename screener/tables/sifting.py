@@ -33,7 +33,8 @@ def sift(raw: RawTable, shown: Mapping[str, str], choice: Choice, missing: Seque
             reasons[column] = reason
     wanted = [column for column in schema if column not in reasons]
     raw = replace(raw, frame=_settled(_only(raw.frame, wanted), held=raw.held and not raw.loaded))
-    frame, text_reasons, words = _text_as_numbers(raw, shown, missing)
+    texts = [token for token in missing if not is_number(token)]
+    frame, text_reasons, words = _text_as_numbers(raw, shown, texts)
     numeric = [column for column in schema if column not in reasons and column not in text_reasons]
     frame, codes = _without_codes(frame, numeric, missing, held=raw.held)
     reasons |= text_reasons

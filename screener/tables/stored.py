@@ -1,10 +1,12 @@
 """Tables whose columns have types already: Parquet, Arrow IPC, newline-delimited JSON."""
 
+import json
 from collections.abc import Sequence
 from pathlib import Path
 
 import polars as pl
 
+from screener.tables.encoding import HEAD_LINES, text_lines
 from screener.tables.formats import Kind, Recognised, source_of
 from screener.tables.raw import RawTable
 
@@ -34,8 +36,12 @@ def _held(frame: pl.DataFrame, recognised: Recognised) -> RawTable:
 
 
 def _json_lines(path: Path) -> pl.DataFrame:
+    """The columns in the order of the first object's keys, those it lacks by name: polars gives them in any order."""
     with path.open("rb") as file:
-        return pl.read_ndjson(file, infer_schema_length=None)
+        frame = pl.read_ndjson(file, infer_schema_length=None)
+    first = next(line for line in text_lines(source_of(path), HEAD_LINES) if line.strip())
+    leading = [name for name in json.loads(first) if name in frame.columns]
+    return frame[[*leading, *sorted(set(frame.columns).difference(leading))]]
 
 
 def _plain(names: Sequence[str]) -> dict[str, str]:

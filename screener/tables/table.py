@@ -1,5 +1,6 @@
 """Opening a measurement table and reading its channels block by block."""
 
+import csv
 import zlib
 from collections.abc import Iterator, Sequence
 from concurrent.futures import ThreadPoolExecutor
@@ -80,7 +81,7 @@ def readable(path: Path, what: str) -> Iterator[None]:
         yield
     except (EOFError, zlib.error) as error:
         raise TableError(f"Couldn't read {str(path)!r}: the file is damaged or cut off.") from error
-    except (OSError, pl.exceptions.PolarsError, pl.exceptions.PanicException) as error:
+    except (OSError, csv.Error, pl.exceptions.PolarsError, pl.exceptions.PanicException) as error:
         raise TableError(f"Couldn't read {str(path)!r} as {what}: {_said(error, what)}") from error
 
 
