@@ -1,5 +1,6 @@
 """A run from its beginning, or from where one stopped: table, run file, events stored as they come."""
 
+import os
 from collections.abc import Callable, Iterator
 from pathlib import Path
 
@@ -72,11 +73,9 @@ def run_for(facts: TableFacts, plan: Plan, path: Path | None) -> RunFile:
             "Give another name with -o, or remove it."
         )
     beside = default_run_path(facts.path)
-    try:
+    if os.access(beside.parent, os.W_OK):
         return _first_fitting(beside, facts, plan)
-    except RunFileError:
-        folder = user_state_path("screener", ensure_exists=True)
-        return _first_fitting(folder / beside.name, facts, plan)
+    return _first_fitting(user_state_path("screener", ensure_exists=True) / beside.name, facts, plan)
 
 
 def _first_fitting(path: Path, facts: TableFacts, plan: Plan) -> RunFile:
