@@ -30,13 +30,13 @@ def utf8_text(path: Path, packing: Packing) -> Text:
     """The text of a file; converted in memory when it is not UTF-8 or its lines end in carriage returns alone."""
     if packing is Packing.ZSTD:
         source = source_of(path)
-        return Text(source, text_lines(source, HEAD_LINES).to_list())
+        return Text(source, _without_mark(text_lines(source, HEAD_LINES).to_list()))
     with gzip.open(path) if packing else path.open("rb") as file:
         head = list(_first_lines(file))
         sample = b"".join(head)
         encoding = _encoding(sample)
         if encoding == "utf-8" and (b"\r" not in sample or b"\n" in sample):
-            return Text(source_of(path), [line.decode().rstrip("\r\n") for line in head])
+            return Text(source_of(path), _without_mark([line.decode().rstrip("\r\n") for line in head]))
         content = sample + file.read()
     text = content.decode(encoding, errors="replace").removeprefix("\ufeff")
     if "\n" not in text:
@@ -62,6 +62,11 @@ def text_lines(source: Path | bytes, count: int | None = None) -> pl.Series:
             glob=False,
         )
         return whole_lines.select(pl.col("line").fill_null("")).collect().to_series()
+
+
+def _without_mark(lines: list[str]) -> list[str]:
+    """The lines without the byte order mark before the first."""
+    return [line.removeprefix("\ufeff") for line in lines[:1]] + lines[1:]
 
 
 def _first_lines(file: Iterable[bytes]) -> Iterator[bytes]:

@@ -39,8 +39,7 @@ class Layout:
 def layout_of(lines: Sequence[str], *, prefer_tab: bool = False) -> Layout:
     """The layout guessed from the first lines of a table, which hold at least one that is not blank."""
     blank = next(number for number, line in enumerate(lines) if line.strip())
-    kept = list(lines[blank:])
-    kept[0] = kept[0].removeprefix("\ufeff")
+    kept = lines[blank:]
     separator = _separator(kept, prefer_tab=prefer_tab)
     reader = cell_rows(kept, separator)
     header = next(reader)

@@ -1,6 +1,7 @@
 """Text tables: parsed as numbers at once where they are clean, cell by cell where they are not."""
 
 from collections.abc import Collection, Sequence
+from os import SEEK_END
 from pathlib import Path
 
 import polars as pl
@@ -24,7 +25,7 @@ def read_text(path: Path, recognised: Recognised) -> RawTable:
     """
     text = utf8_text(path, recognised.packing)
     if not any(line.strip() for line in text.head):
-        raise TableError(f"Couldn't read {str(path)!r}: its first {len(text.head):,} lines are blank.")
+        raise TableError(f"Couldn't read {str(path)!r}: it begins with nothing but blank lines.")
     layout = layout_of(text.head, prefer_tab=bool(_TAB_SUFFIXES & {suffix.lower() for suffix in path.suffixes}))
     if layout.extra_cells:
         raise TableError(
@@ -49,12 +50,22 @@ def read_text(path: Path, recognised: Recognised) -> RawTable:
 
 def _parse(source: Path | bytes, layout: Layout) -> tuple[pl.DataFrame, tuple[str, ...]]:
     columns = [f"c{at}" for at in range(len(layout.names))]
+    words = range(len(columns)) if _ends_in_quote(source) else layout.words
     try:
-        frame, long_rows = _scan(source, layout, columns, layout.words).collect(), False
+        frame, long_rows = _scan(source, layout, columns, words).collect(), False
     except _PARSE_ERRORS:
         frame, long_rows = _all_as_text(source, layout, columns)
     regular = not long_rows and frame.to_series(-1).null_count() == 0
     return (frame, ()) if regular else _without_blank_lines(frame, source, layout)
+
+
+def _ends_in_quote(source: Path | bytes) -> bool:
+    """Whether the last cell may be a lone quotation mark, on which polars' parser of numbers panics."""
+    if isinstance(source, bytes):
+        return source[-2:].rstrip(b"\r").endswith(b'"')
+    with source.open("rb") as file:
+        file.seek(-min(2, source.stat().st_size), SEEK_END)
+        return file.read().rstrip(b"\r").endswith(b'"')
 
 
 def _all_as_text(source: Path | bytes, layout: Layout, columns: Sequence[str]) -> tuple[pl.DataFrame, bool]:

@@ -79,8 +79,9 @@ def test_only_a_header(tmp_path: Path, content: bytes) -> None:
     assert "it has a header but no readings" in refusal(written(tmp_path, "h.csv", content))
 
 
-def test_only_blank_lines(tmp_path: Path) -> None:
-    assert "blank" in refusal(written(tmp_path, "blank.csv", b"\n\n\n"))
+@pytest.mark.parametrize("content", [b"\n\n\n", b"\xef\xbb\xbf", b" \t\r\n"])
+def test_only_blank_lines(tmp_path: Path, content: bytes) -> None:
+    assert "nothing but blank lines" in refusal(written(tmp_path, "blank.csv", content))
 
 
 @pytest.mark.parametrize("name", ["rubbish", "rubbish.csv", "rubbish.parquet", "rubbish.ndjson", "rubbish.arrow"])
@@ -162,8 +163,10 @@ def test_a_header_with_fewer_names_than_the_rows_have_cells(tmp_path: Path) -> N
     assert "its header names 2 columns, but the rows have more cells. Give every column a name." in message
 
 
-def test_a_quotation_mark_that_is_not_closed(tmp_path: Path) -> None:
-    assert "a quotation mark is not closed" in refusal(written(tmp_path, "t.csv", b'a,b\n1,"2\n3,5\n'))
+@pytest.mark.parametrize("content", [b'a,b\n1,"2\n3,5\n', b'a,b\n1,"', b'a,b\n1,"\r'])
+def test_a_quotation_mark_that_is_not_closed(tmp_path: Path, content: bytes, capfd: pytest.CaptureFixture[str]) -> None:
+    assert "a quotation mark is not closed" in refusal(written(tmp_path, "t.csv", content))
+    assert capfd.readouterr().err == ""
 
 
 def test_a_table_removed_after_it_was_opened(tmp_path: Path) -> None:
