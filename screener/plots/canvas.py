@@ -28,7 +28,7 @@ LEAST_HEIGHT = 6
 """The smallest frame in which a plot can still be read."""
 
 ROWS_A_TICK = 3
-COLUMNS_A_TICK = 10
+COLUMNS_A_TICK = 8
 
 
 class Charset(Enum):

@@ -3,9 +3,9 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Iterator
 from dataclasses import dataclass
 
-ROUND_STEPS = (1.0, 2.0, 5.0, 10.0)
 LABEL_LIMIT = 9
 """Longest tick label, in characters, before a common offset is taken out of the labels."""
 
@@ -21,27 +21,27 @@ class Ticks:
 
 
 def round_ticks(low: float, high: float, *, at_most: int) -> Ticks:
-    """Ticks at multiples of 1, 2 or 5 times a power of ten within [low, high], at most `at_most` of them."""
-    if not low < high or at_most < 1:
+    """Ticks at multiples of 1, 2 or 5 times a power of ten within [low, high], at most `at_most` (2 to 20) of them."""
+    if not low < high:
         return Ticks((), ())
-    step = _round_step((high - low) / max(at_most, 2))
-    first = math.ceil(low / step - 1e-9)
-    last = math.floor(high / step + 1e-9)
-    multiples = range(first, last + 1)[:: max(1, math.ceil((last - first + 1) / at_most))]
-    values = tuple(multiple * step for multiple in multiples)
+    step = next(step for step in _round_steps((high - low) / 20) if len(_multiples(low, high, step)) <= at_most)
+    values = tuple(multiple * step for multiple in _multiples(low, high, step))
     labels = tuple(_label(value, step) for value in values)
     if max(map(len, labels), default=0) <= LABEL_LIMIT:
         return Ticks(values, labels)
     return _offset_ticks(values, step)
 
 
-def _round_step(at_least: float) -> float:
+def _round_steps(at_least: float) -> Iterator[float]:
+    """Steps of 1, 2 or 5 times a power of ten, rising without end."""
     power = math.floor(math.log10(at_least))
-    for mantissa in ROUND_STEPS:
-        step = float(f"{mantissa}e{power}")
-        if step >= at_least * (1 - 1e-9):
-            return step
-    return float(f"1e{power + 1}")
+    while True:
+        yield from (float(f"{mantissa}e{power}") for mantissa in (1, 2, 5))
+        power += 1
+
+
+def _multiples(low: float, high: float, step: float) -> range:
+    return range(math.ceil(low / step - 1e-9), math.floor(high / step + 1e-9) + 1)
 
 
 def _label(value: float, step: float) -> str:

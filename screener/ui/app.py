@@ -11,14 +11,13 @@ from typing import ClassVar
 from textual import on
 from textual.app import App, SystemCommand
 from textual.binding import Binding, BindingType
-from textual.filter import LineFilter
+from textual.filter import LineFilter, NoColor
 from textual.screen import Screen
 
-from screener.errors import ScreenerError
 from screener.ui import messages
 from screener.ui.abilities import Abilities, abilities
 from screener.ui.feed import Feed
-from screener.ui.filters import AsciiOnly, Harmless
+from screener.ui.filters import AsciiOnly, Colourless, Harmless
 from screener.ui.palette import THEME
 from screener.ui.screens.main import MainScreen
 from screener.ui.source import Source
@@ -47,7 +46,7 @@ class ScreenerApp(App[int]):
         self.can = can or abilities(os.environ)
         self.feed = Feed(source, self.post_message, unicode=self.can.unicode)
         self.main = MainScreen(source.title, self.feed, unicode=self.can.unicode)
-        self.failure: ScreenerError | None = None
+        self.failure: BaseException | None = None
         self.run_path: Path | None = source.run_path
         self.unfinished = ""
         """A sentence about what was left undone; empty when nothing was."""
@@ -55,7 +54,8 @@ class ScreenerApp(App[int]):
 
     def get_line_filters(self) -> Sequence[LineFilter]:
         """The library's filters, then ours."""
-        return [*super().get_line_filters(), *self._line_filters]
+        library = [kept for kept in super().get_line_filters() if not isinstance(kept, NoColor)]
+        return [*library, *([Colourless()] if self.no_color else []), *self._line_filters]
 
     def get_default_screen(self) -> Screen[None]:
         """The only screen that stays."""
@@ -67,12 +67,10 @@ class ScreenerApp(App[int]):
 
     def get_system_commands(self, screen: Screen[object]) -> Iterable[SystemCommand]:
         """Every action of the screen, by name."""
-        known: dict[str, SystemCommand] = {}
-        for _, binding, *_ in screen.active_bindings.values():
-            if binding.description and binding.action != "command_palette":
+        for binding in (*type(screen).BINDINGS, *type(self).BINDINGS):
+            if isinstance(binding, Binding):
                 run = partial(screen.run_action, binding.action)
-                known.setdefault(binding.action, SystemCommand(binding.description, f"key {binding.key}", run))
-        yield from known.values()
+                yield SystemCommand(binding.description, f"key: {self.get_key_display(binding)}", run)
 
     @on(messages.RunOpened)
     def _opened(self, event: messages.RunOpened) -> None:
@@ -109,12 +107,16 @@ class ScreenerApp(App[int]):
 
     @on(messages.RunImpossible)
     def _impossible(self, event: messages.RunImpossible) -> None:
-        self.failure = event.error
-        self.exit(event.error.exit_code)
+        self._fail(event.error)
 
     @on(messages.ThreadBroke)
     def _broke(self, event: messages.ThreadBroke) -> None:
-        raise event.error
+        self._fail(event.error)
+
+    def _fail(self, error: BaseException) -> None:
+        """Close; the error is raised when the terminal is back as it was."""
+        self.failure = error
+        self.exit()
 
     def action_interrupt(self) -> None:
         """Stop at once."""

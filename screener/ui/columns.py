@@ -6,9 +6,11 @@ from collections.abc import Callable, Mapping
 from dataclasses import dataclass
 from typing import Any
 
+from rich.cells import cell_len
+
 from screener.records import Verdict
 from screener.ui.numbers import count_text, p_text, r_text, size_text
-from screener.ui.shown import fitted, fitted_name, shown
+from screener.ui.shown import ascii_only, fitted, fitted_name, shown
 
 Row = Mapping[str, Any]
 
@@ -16,6 +18,7 @@ MARKS = {Verdict.FLAGGED.value: "!", Verdict.NOT_SCORED.value: "-"}
 """The symbol that stands beside the colour; clear channels have none."""
 
 GAP = 1
+UNIT_BRACKETS = ("[{}]", "({})", "_{}")
 LEAST_NAME = 12
 LEAST_REMARK = 10
 """Cells for the columns that share what the fixed ones leave."""
@@ -35,14 +38,29 @@ class Column:
     falling_first: bool = False
     """The first sort by this column puts the largest on top."""
 
-    def fit(self, text: str, width: int) -> str:
-        """The text in exactly `width` cells."""
-        return fitted_name(text, width) if self.key == "channel" else fitted(text, width, right=self.right)
+    def title_in(self, width: int, arrow: str) -> str:
+        """The title in exactly `width` cells, after the arrow of the sort."""
+        return fitted(arrow + self.title, width, right=self.right)
+
+    def cell(self, row: Row, width: int, *, unicode: bool) -> str:
+        """What the column shows of a row, in exactly `width` cells."""
+        text = self.text(row)
+        text = text if unicode else ascii_only(text)
+        if self.key != "channel":
+            return fitted(text, width, right=self.right)
+        # A name that is too long loses its unit first, then its middle: names often differ at their ends.
+        return fitted_name(text if cell_len(text) <= width else without_unit(text, row["unit"]), width)
 
 
 def remark(row: Row) -> str:
     """Why a channel is not scored, or the family closest to it."""
     return str(row["reason"] or row["closest"] or "")
+
+
+def without_unit(name: str, unit: str | None) -> str:
+    """The name without the unit it ends in, if it does."""
+    endings = (form.format(shown(unit)) for form in UNIT_BRACKETS) if unit else ()
+    return next((name.removesuffix(ending).rstrip() for ending in endings if name.endswith(ending)), name)
 
 
 COLUMNS: tuple[Column, ...] = (
@@ -56,7 +74,7 @@ COLUMNS: tuple[Column, ...] = (
     Column("remark", "closest/reason", 0, lambda row: shown(remark(row))),
 )
 
-SOURCES = ("position", "channel", "n", "r", "critical_r", "p", "departure_size", "verdict", "reason", "closest")
+SOURCES = ("position", "channel", "unit", "n", "r", "critical_r", "p", "departure_size", "verdict", "reason", "closest")
 """The columns of the results frame that the table reads."""
 
 

@@ -31,6 +31,17 @@ class Harmless(LineFilter):
         ]
 
 
+class Colourless(LineFilter):
+    """Leaves no colour code at all; the library's own filter still sets the default colours."""
+
+    def apply(self, segments: list[Segment], background: Color) -> list[Segment]:
+        """The same segments, bold, underlined or reversed as they were, but of no colour."""
+        return [
+            Segment(text, style.without_color if style is not None else None, control)
+            for text, style, control in segments
+        ]
+
+
 class AsciiOnly(LineFilter):
     """Replaces every character outside ASCII by a likeness of the same width."""
 

@@ -40,13 +40,14 @@ def run_screen(source: Source) -> int:
     app = ScreenerApp(source)
     code = app.run() or 0
     stopped = app.feed.stopped_within(PATIENCE)
+    broken = app.return_code or not isinstance(app.failure, ScreenerError | None)
+    if broken and app.run_path is not None:
+        sys.stderr.write(f"What was scored is in the run file {str(app.run_path)!r}.\n")
     if app.failure is not None:
         raise app.failure
-    if app.return_code:
-        sys.stderr.write(f"What was scored is in the run file {str(app.run_path)!r}.\n" if app.run_path else "")
-        code = app.return_code
-    elif app.unfinished:
+    if app.unfinished:
         sys.stderr.write(app.unfinished + "\n")
+    code = code or app.return_code or 0
     if not stopped:
         # A block in hand may take long, its thread cannot be stopped, and the run file is whole after every block.
         sys.stderr.flush()

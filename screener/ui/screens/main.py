@@ -123,8 +123,8 @@ class MainScreen(Screen[None]):
         self.set_class(width >= WIDE, "wide")
         self.set_class(tiny, "tiny")
         self._show_keys()
-        too_small = f"This window has {width} x {height} cells; the screen needs {LEAST_WIDTH} x {LEAST_HEIGHT}."
-        self.query_one("#too-small", Lines).show([plain(too_small), plain("Make it larger, or press q to quit.")])
+        sentences = (f"This window has {width} x {height} cells.", f"The screen needs {LEAST_WIDTH} x {LEAST_HEIGHT}.")
+        self.query_one("#too-small", Lines).show([*map(plain, sentences), plain("Make it larger, or press q.")])
 
     # What the feed tells.
 
@@ -173,11 +173,13 @@ class MainScreen(Screen[None]):
 
     # What the widgets tell.
 
-    @on(ChannelTable.CursorMoved)
     @on(PlotPanel.RoomChanged)
-    def _plot_outdated(self) -> None:
+    def _room_changed(self) -> None:
         self._want_plot()
-        self._show_status()
+
+    @on(ChannelTable.CursorMoved)
+    def _cursor_moved(self, event: ChannelTable.CursorMoved) -> None:
+        self._move_to(event.row)
 
     @on(ChannelTable.HeaderClicked)
     def _header_clicked(self, event: ChannelTable.HeaderClicked) -> None:
@@ -185,8 +187,10 @@ class MainScreen(Screen[None]):
 
     @on(ChannelTable.RowChosen)
     def action_open_plot(self) -> None:
-        """Show the plot alone."""
-        if self._table.channel is not None:
+        """Show the plot alone, or the table again."""
+        if self.has_class("plot-over"):
+            self.action_back()
+        elif self._table.channel is not None:
             self.add_class("plot-over")
             self._show_keys()
 
@@ -204,15 +208,15 @@ class MainScreen(Screen[None]):
 
     def action_move(self, by: int) -> None:
         """Some rows on."""
-        self._table.move_to(self._table.cursor + by)
+        self._move_to(self._table.cursor + by)
 
     def action_page(self, by: int) -> None:
         """A page of rows on."""
-        self._table.move_to(self._table.cursor + by * self._table.height_in_rows)
+        self._move_to(self._table.cursor + by * self._table.height_in_rows)
 
     def action_move_to(self, row: int) -> None:
         """To a row, counted from the end when negative."""
-        self._table.move_to(row if row >= 0 else self._table.row_count + row)
+        self._move_to(row if row >= 0 else self._table.row_count + row)
 
     def action_sort_next(self) -> None:
         """Sort by the column after the present one; after the last, in table order."""
@@ -319,6 +323,16 @@ class MainScreen(Screen[None]):
         cursor = row_of(self._rows, channel["position"]) if channel is not None else None
         self._table.show(self._rows, cursor=cursor, sort=(self._sort, self._falling))
         self._show_status()
+        if self._table.channel != channel:
+            self._want_plot()
+
+    def _move_to(self, row: int) -> None:
+        """Put the cursor on a row; status and plot follow at once, in the same repaint."""
+        before = self._table.cursor
+        self._table.move_to(row)
+        self._show_status()
+        if self._table.cursor != before:
+            self._want_plot()
 
     def _sort_by(self, key: str | None) -> None:
         """Sort by a column, the natural way first; the same column again, the other way."""
@@ -338,14 +352,14 @@ class MainScreen(Screen[None]):
         if row is None:
             self._say(f"No channel here has {shown(text)!r} in its name.")
         else:
-            self._table.move_to(row)
+            self._move_to(row)
 
     def _want_plot(self) -> None:
         """Ask for the plot of the channel under the cursor, if there is room to see it."""
         channel, panel = self._table.channel, self.query_one(PlotPanel)
         width, height = panel.room
         if channel is not None and panel.display and width > 0 and height > 0:
-            self._feed.draw(Wanted(channel["position"], channel["n"], self._family, width, height))
+            self._feed.draw(Wanted(channel["position"], channel["n"] or 0, self._family, width, height))
 
     def _open_page(self, page: Page) -> None:
         self.app.push_screen(page)

@@ -19,7 +19,7 @@ from textual.widget import Widget
 from screener.records import Verdict
 from screener.ui.columns import COLUMNS, GAP, SOURCES, widths
 from screener.ui.palette import CURSOR, FLAGGED, HEADER, PLAIN, QUIET
-from screener.ui.shown import ascii_only, fitted
+from screener.ui.shown import fitted
 
 if TYPE_CHECKING:
     import polars as pl
@@ -37,9 +37,9 @@ class ChannelTable(Widget):
 
     @dataclass
     class CursorMoved(Message):
-        """The cursor came to another channel."""
+        """The mouse brought the cursor to another row."""
 
-        position: int
+        row: int
 
     @dataclass
     class HeaderClicked(Message):
@@ -83,7 +83,7 @@ class ChannelTable(Widget):
 
     def show(self, rows: pl.DataFrame, *, cursor: int | None, sort: tuple[str | None, bool]) -> None:
         """Replace the rows; the cursor goes to row `cursor`, at the same height on the screen if possible."""
-        was, height_on_screen = self.channel, self._cursor - self._top
+        height_on_screen = self._cursor - self._top
         from screener.ui.rows import has_remarks, longest_name
 
         self._rows, self._sort = rows.select(SOURCES), sort
@@ -94,11 +94,10 @@ class ChannelTable(Widget):
         self._top = self._cursor - height_on_screen
         self._keep_in_sight()
         self.refresh()
-        self._report(was)
 
     def move_to(self, row: int) -> None:
         """Put the cursor on that row, or the nearest there is."""
-        was, top, before = self.channel, self._top, self._cursor
+        top, before = self._top, self._cursor
         self._cursor = min(max(0, row), max(0, self.row_count - 1))
         self._keep_in_sight()
         if self._top != top:
@@ -106,7 +105,6 @@ class ChannelTable(Widget):
         else:
             self._refresh_row(before)
             self._refresh_row(self._cursor)
-        self._report(was)
 
     def on_resize(self) -> None:
         """Other widths, other cuts."""
@@ -125,15 +123,15 @@ class ChannelTable(Widget):
         if row == self._cursor:
             self.post_message(self.RowChosen())
         elif row < self.row_count:
-            self.move_to(row)
+            self.post_message(self.CursorMoved(row))
 
     def on_mouse_scroll_down(self) -> None:
         """The wheel moves the cursor."""
-        self.move_to(self._cursor + WHEEL_ROWS)
+        self.post_message(self.CursorMoved(self._cursor + WHEEL_ROWS))
 
     def on_mouse_scroll_up(self) -> None:
         """The wheel moves the cursor."""
-        self.move_to(self._cursor - WHEEL_ROWS)
+        self.post_message(self.CursorMoved(self._cursor - WHEEL_ROWS))
 
     def render_line(self, y: int) -> Strip:
         """The header, or the row seen at height y."""
@@ -155,11 +153,8 @@ class ChannelTable(Widget):
         if row not in self._texts:
             assert self._rows is not None
             values = self._rows.row(row, named=True)
-            cells = [column.text(values) for column in COLUMNS]
-            if not self._unicode:
-                cells = [ascii_only(cell) for cell in cells]
-            fit = zip(cells, self._widths(), COLUMNS, strict=True)
-            texts = [column.fit(cell, width) for cell, width, column in fit]
+            pairs = zip(COLUMNS, self._widths(), strict=True)
+            texts = [column.cell(values, width, unicode=self._unicode) for column, width in pairs]
             self._texts[row] = texts, ROW_STYLES.get(values["verdict"], PLAIN)
         return self._texts[row]
 
@@ -168,7 +163,7 @@ class ChannelTable(Widget):
         titles = []
         for column, width in zip(COLUMNS, self._widths(), strict=True):
             arrow = ("v" if falling else "^") if column.key == key else ""
-            titles.append(column.fit(arrow + column.title, width))
+            titles.append(column.title_in(width, arrow))
         return " " + " ".join(titles)
 
     def _widths(self) -> list[int]:
@@ -199,11 +194,6 @@ class ChannelTable(Widget):
 
     def _refresh_row(self, row: int) -> None:
         self.refresh(Region(0, row - self._top + HEADER_LINES, self.size.width, 1))
-
-    def _report(self, was: dict[str, Any] | None) -> None:
-        now = self.channel
-        if now is not None and (was is None or was["position"] != now["position"]):
-            self.post_message(self.CursorMoved(now["position"]))
 
 
 def _rest(style: Style) -> Style:

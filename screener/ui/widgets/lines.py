@@ -3,9 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from itertools import zip_longest
 
 from rich.segment import Segment
 from rich.style import Style
+from textual.geometry import Region
 from textual.strip import Strip
 from textual.widget import Widget
 
@@ -31,9 +33,10 @@ class Lines(Widget):
 
     def show(self, lines: Sequence[Line]) -> None:
         """Replace the lines; what does not change is not drawn again."""
-        if lines != self._lines:
-            self._lines = lines
-            self.refresh()
+        before, self._lines = self._lines, lines
+        for index, (old, new) in enumerate(zip_longest(before, lines)):
+            if old != new:
+                self.refresh(Region(0, index - self._top, self.size.width, 1))
 
     def scroll_lines(self, by: int) -> None:
         """Move down by that many lines (up when negative), as far as there is anything to see."""

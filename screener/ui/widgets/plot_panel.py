@@ -11,7 +11,7 @@ from screener.ui.palette import FLAGGED, PLAIN, QUIET, STRONG
 from screener.ui.shown import ascii_only, shown
 from screener.ui.widgets.lines import Line, Lines, plain
 
-HEAD_LINES = 4
+HEAD_LINES = 5
 """Lines above the plot."""
 
 
@@ -44,12 +44,12 @@ class PlotPanel(Lines):
 
 
 def head(drawing: Drawing) -> list[Line]:
-    """Name, family with p, r beside its critical value, location and scale."""
-    unit = f" [{shown(drawing.unit)}]" if drawing.unit else ""
+    """Name, family, r beside its critical value, p, location and scale."""
+    unit = f" [{shown(drawing.unit)}]" if drawing.unit and drawing.unit not in drawing.channel else ""
     name: Line = [(shown(drawing.channel), STRONG), (unit, PLAIN), (f"   n {drawing.wanted.n:,}", PLAIN)]
     place = f" {drawing.place + 1}/{len(drawing.families)}" if drawing.families else ""
-    family: Line = [(drawing.wanted.family, STRONG), (place, QUIET), (_probability(drawing), PLAIN)]
-    return [name, family, _evidence(drawing), _parameters(drawing)]
+    family: Line = [(drawing.wanted.family, STRONG), (place, QUIET)]
+    return [name, family, _evidence(drawing), plain(_probability(drawing)), _parameters(drawing)]
 
 
 def _evidence(drawing: Drawing) -> Line:
@@ -70,7 +70,7 @@ def _evidence(drawing: Drawing) -> Line:
 def _probability(drawing: Drawing) -> str:
     p = drawing.fit.get("p")
     beyond = " (extrapolated)" if drawing.fit.get("extrapolated") else ""
-    return "" if p is None else f"  p {p_text(p)}{beyond}"
+    return "" if p is None else f"p {p_text(p)}{beyond}"
 
 
 def _parameters(drawing: Drawing) -> Line:

@@ -1,0 +1,113 @@
+"""Key to last byte, and bytes on the wire, of the screen in a pseudo-terminal.
+
+    python tests/bench/bench_screen.py             hand-made run files of 240, 2,000 and 20,000 channels, idle
+    python tests/bench/bench_screen.py --scoring   also while a table of 20,000 x 1,000 random readings is scored
+
+An answer is taken as complete when nothing came for QUIET seconds; its time is that of its last byte. In the wide
+layout that includes the plot of the channel, which is drawn by another thread and follows the cursor.
+"""
+
+import argparse
+import os
+import sys
+import tempfile
+import time
+from pathlib import Path
+
+import numpy as np
+import polars as pl
+
+sys.path.insert(0, str(Path(__file__).parent.parent / "support"))
+
+from made_run import made_run
+from pseudo_terminal import PseudoTerminal
+
+QUIET = 0.15
+ENVIRONMENT = {**os.environ, "TERM": "xterm-256color", "LANG": "C.UTF-8", "LC_ALL": "C.UTF-8"}
+PROGRAM = [sys.executable, "-m", "screener"]
+SIZES = ((80, 24), (140, 45))
+
+ACTIONS: tuple[tuple[str, tuple[str, ...]], ...] = (
+    ("cursor down", ("\x1b[B",)),
+    ("page down", ("\x1b[6~",)),
+    ("last, first row", ("\x1b[F", "\x1b[H")),
+    ("sort by p, r", ("6", "4")),
+    ("reverse", ("S",)),
+    ("flagged only, all", ("f", "f")),
+    ("next family", ("]",)),
+    ("open, close plot", ("\r", "\r")),
+)
+
+
+def main() -> None:
+    """Print one table per size of window and of run."""
+    parser = argparse.ArgumentParser(description=__doc__)
+    parser.add_argument("--scoring", action="store_true")
+    parser.add_argument("--repeats", type=int, default=40)
+    given = parser.parse_args()
+    scoring, repeats = given.scoring, given.repeats
+    with tempfile.TemporaryDirectory() as name:
+        folder = Path(name)
+        for channels in (240, 2_000, 20_000):
+            made_run(folder / f"{channels}.run", channels).close()
+            for size in SIZES:
+                measure(folder, f"{channels}.run", size, f"{channels:,} channels, idle", repeats)
+        if scoring:
+            table = pl.DataFrame(np.random.default_rng(1).normal(size=(1_000, 20_000)))
+            table.write_parquet(folder / "table.parquet", compression="uncompressed")
+            for size in SIZES:
+                (folder / "table.run").unlink(missing_ok=True)
+                measure(folder, "table.parquet", size, "20,000 channels, scoring", repeats)
+
+
+def measure(folder: Path, path: str, size: tuple[int, int], title: str, repeats: int) -> None:
+    """One run of the program, all actions."""
+    began = time.perf_counter()
+    with PseudoTerminal([*PROGRAM, path], columns=size[0], rows=size[1], environment=ENVIRONMENT, folder=folder) as run:
+        run.wait_for("Reading")
+        frame = time.perf_counter() - began
+        run.wait_for("1 of ")
+        rows = time.perf_counter() - began
+        print(f"\n{title}, {size[0]} x {size[1]}: first frame {frame:.2f} s, first rows {rows:.2f} s")
+        print(f"{'':20} {'p50 ms':>8} {'p95 ms':>8} {'max ms':>8} {'bytes p50':>10} {'bytes max':>10}   scoring")
+        settle(run)
+        for name, keys in ACTIONS:
+            report(name, [answer(run, keys[k % len(keys)]) for k in range(repeats)], still_scoring="left" in run.text)
+        run.send("q")
+        began = time.perf_counter()
+        run.exit_code()
+        print(f"{'quit':20} {1e3 * (time.perf_counter() - began):8.0f}")
+
+
+def report(name: str, answers: list[tuple[float, int]], *, still_scoring: bool) -> None:
+    """One line of the table."""
+    times = 1e3 * np.array([seconds for seconds, _ in answers])
+    sizes = np.array([count for _, count in answers])
+    p50, p95 = np.percentile(times, [50, 95])
+    scoring = "yes" if still_scoring else "no"
+    print(f"{name:20} {p50:8.0f} {p95:8.0f} {times.max():8.0f} {np.median(sizes):10.0f} {sizes.max():10d}   {scoring}")
+
+
+def settle(run: PseudoTerminal) -> None:
+    """Wait until nothing more comes, or for a second when something always does."""
+    end = time.monotonic() + 1.0
+    while run.read(QUIET) and time.monotonic() < end:
+        pass
+
+
+def answer(run: PseudoTerminal, key: str) -> tuple[float, int]:
+    """Seconds from a key to the last byte of what it brought, and how many bytes those were."""
+    began = last = time.perf_counter()
+    run.send(key)
+    count = 0
+    while time.perf_counter() - began < 1.0:
+        piece = run.read(QUIET)
+        if not piece:
+            break
+        count += piece
+        last = time.perf_counter()
+    return last - began, count
+
+
+if __name__ == "__main__":
+    main()
