@@ -16,6 +16,8 @@ SEPARATORS = {",": "comma", ";": "semicolon", "\t": "tab"}
 _SAMPLED_ROWS = 20
 _SAMPLED_CELLS = 10_000
 _FEWEST_ROWS = 4
+_LONGEST_CELL = 1 << 30
+"""A wide row is one long cell when it is tried with a separator it does not have."""
 _DECIMAL_COMMA = re.compile(r"[+-]?\d*,\d+(?:[eE][+-]?\d+)?")
 _DECIMAL_POINT = re.compile(r"[+-]?\d*\.\d+(?:[eE][+-]?\d+)?")
 
@@ -56,6 +58,7 @@ def layout_of(lines: Sequence[str], *, prefer_tab: bool = False) -> Layout:
 
 def cell_rows(lines: Iterable[str], separator: str) -> "Reader":
     """The cells of each row, a quoted cell over several lines being one; `line_num` counts the lines read so far."""
+    csv.field_size_limit(_LONGEST_CELL)
     return csv.reader((line.replace("\r", " ") + "\n" for line in lines), delimiter=separator)
 
 

@@ -185,3 +185,15 @@ def test_equal_and_absent_names_are_remarked(open_text: OpenText) -> None:
     assert opened.names == ["t", "t (2)", "column 3", "t (3)"]
     assert opened.of("t (2)") == [2, 7]
     assert len(opened.facts.remarks) == 2
+
+
+@pytest.mark.parametrize("separator", [",", ";", "\t"])
+def test_twenty_thousand_columns_are_read(open_text: OpenText, separator: str) -> None:
+    rows = [[f"channel {at}" for at in range(20_000)], ["1.5"] * 20_000, [str(at) for at in range(20_000)]]
+    opened = open_text("\n".join(separator.join(row) for row in rows))
+    assert_array_equal(opened.readings, [[1.5, at] for at in range(20_000)])
+    assert opened.names == rows[0]
+
+
+def test_a_row_with_a_very_long_cell_is_read(open_text: OpenText) -> None:
+    same(open_text(f"a,note\n1,{'x' * 300_000}\n4,y\n"), {"a": [1, 4]})
