@@ -8,7 +8,8 @@ import polars as pl
 from numpy.typing import NDArray
 
 _GLANCED_ROWS = 256
-_FEWEST_STEPS = 2
+_FEWEST_RISING = 3
+_BATCH_READINGS = 8_000_000
 _TIME = re.compile(r"time|date|epoch|clock|elapsed", re.IGNORECASE)
 
 
@@ -30,59 +31,51 @@ def reason_for_type(dtype: pl.DataType) -> str:
     return "several values or raw bytes in each cell, not one number"
 
 
-def unfit(frame: pl.LazyFrame, columns: Sequence[str], shown: Mapping[str, str]) -> dict[str, str]:
+def unfit(frame: pl.LazyFrame, columns: Sequence[str], rows: int, shown: Mapping[str, str]) -> dict[str, str]:
     """For each numeric column that is constant, empty, a row counter or a time stamp: the reason.
 
-    The first rows clear most columns; only the rest is read to the end. `shown` gives each column's name.
+    The first rows clear most columns; only the rest is read to the end, some at a time. `shown` gives each
+    column's name.
     """
     if not columns:
         return {}
-    first = frame.select(reading(*columns)).head(_GLANCED_ROWS).collect()
+    first = _readings(frame.select(reading(*columns)).head(_GLANCED_ROWS))
     suspects = [column for column, suspect in zip(columns, _suspects(first), strict=True) if suspect]
-    if not suspects:
-        return {}
-    rows = int(frame.select(pl.len()).collect().item())
-    facts = frame.select(_facts(column) for column in suspects).collect().row(0, named=True)
-    reasons = {column: _reason(facts[column], rows, shown[column]) for column in suspects}
+    reasons: dict[str, str] = {}
+    width = max(1, _BATCH_READINGS // rows)
+    for start in range(0, len(suspects), width):
+        batch = suspects[start : start + width]
+        readings = _readings(frame.select(reading(*batch)))
+        reasons |= {column: _reason(row, shown[column]) for column, row in zip(batch, readings, strict=True)}
     return {column: reason for column, reason in reasons.items() if reason}
 
 
-def _suspects(first: pl.DataFrame) -> list[bool]:
+def _readings(frame: pl.LazyFrame) -> NDArray[np.float64]:
+    """float64[columns, rows], null as NaN."""
+    readings: NDArray[np.float64] = frame.collect().to_numpy(order="fortran").T
+    return readings
+
+
+def _suspects(first: NDArray[np.float64]) -> list[bool]:
     """Columns that do not vary in the first rows, or rise from each row to the next."""
-    glance: NDArray[np.float64] = first.to_numpy(order="fortran").T
-    known = ~np.isnan(glance)
-    low = np.where(known, glance, np.inf).min(axis=1)
-    high = np.where(known, glance, -np.inf).max(axis=1)
-    rising = (glance[:, 1:] > glance[:, :-1]).all(axis=1)
+    known = ~np.isnan(first)
+    low = np.where(known, first, np.inf).min(axis=1)
+    high = np.where(known, first, -np.inf).max(axis=1)
+    rising = (first[:, 1:] > first[:, :-1]).all(axis=1)
     return list(~(low < high) | rising)
 
 
-def _facts(column: str) -> pl.Expr:
-    value = reading(column).fill_nan(None)
-    step = value.diff()
-    return pl.struct(
-        value.count().alias("n"),
-        value.min().alias("low"),
-        value.max().alias("high"),
-        step.count().alias("steps"),
-        step.min().alias("least"),
-        step.max().alias("greatest"),
-    ).alias(column)
-
-
-def _reason(facts: Mapping[str, float], rows: int, name: str) -> str:
-    if not facts["n"]:
+def _reason(readings: NDArray[np.float64], name: str) -> str:
+    """Why the readings of one column are no measurement; empty when they may be one."""
+    known = readings[~np.isnan(readings)]
+    if not len(known):
         return "empty: no readings"
-    if facts["n"] > 1 and facts["low"] == facts["high"]:
-        return f"constant: every reading is {facts['low']!r}"
-    if facts["n"] == rows and facts["steps"] >= _FEWEST_STEPS:
-        return _reason_of_rising(facts, name)
-    return ""
-
-
-def _reason_of_rising(facts: Mapping[str, float], name: str) -> str:
-    if facts["least"] == facts["greatest"] == 1 and float(facts["low"]).is_integer():
+    if len(known) > 1 and (known == known[0]).all():
+        return f"constant: every reading is {float(known[0])!r}"
+    if len(known) < max(len(readings), _FEWEST_RISING):
+        return ""
+    if float(known[0]).is_integer() and (known[1:] == known[:-1] + 1).all():
         return "a row counter: it goes up by 1 from row to row"
-    if facts["least"] > 0 and _TIME.search(name):
+    if _TIME.search(name) and (known[1:] > known[:-1]).all():
         return "time stamps: they rise from row to row, and the name says time"
     return ""

@@ -38,7 +38,7 @@ def sift(raw: RawTable, shown: Mapping[str, str], choice: Choice, missing: Seque
     numeric = [column for column in schema if column not in reasons and column not in text_reasons]
     frame, codes = _without_codes(frame, numeric, missing, held=raw.held)
     reasons |= text_reasons
-    unfit_reasons = unfit(frame, [column for column in schema if column not in reasons], shown)
+    unfit_reasons = unfit(frame, [column for column in schema if column not in reasons], raw.rows, shown)
     by_name = {column for at, column in enumerate(schema) if at in choice.by_name}
     reasons |= {c: why for c, why in unfit_reasons.items() if not (c in by_name and why.startswith(GUESSES))}
     columns = tuple(column for column in schema if column not in reasons)
