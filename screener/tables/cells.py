@@ -10,6 +10,7 @@ from screener.tables.names import shortlist, visible
 MISSING = ("NA", "N/A", "n/a", "na", "#N/A", "nan", "NaN", "NAN", "null", "NULL", "Null", "none", "None", "-", "--")
 """The cell texts, beside blank ones, that always mean a missing reading."""
 _WORDS_SHOWN = 10
+_BATCH_COLUMNS = 64
 _DATE = r"^\d{1,4}[-/.]\d{1,2}[-/.]\d{1,4}([ T]+\d{1,2}:\d{2}.*)?$|^\d{1,2}:\d{2}(:\d{2}.*)?$"
 _TRUTHS = ("true", "false", "yes", "no", "on", "off")
 
@@ -89,17 +90,19 @@ def count_words(
 ) -> dict[str, dict[str, int]]:
     """For each word that stands among numbers: how many cells of which columns hold it."""
     counted: dict[str, dict[str, int]] = {}
-    queries = [
-        frame.select(meaningful(column, missing).filter(number(column, missing, decimal_comma=decimal_comma).is_null()))
-        .drop_nulls()
-        .group_by(column)
-        .len()
-        for column in columns
-    ]
-    for column, found in zip(columns, pl.collect_all(queries), strict=True):
-        for word, cells in found.rows():
+    for start in range(0, len(columns), _BATCH_COLUMNS):
+        batch = columns[start : start + _BATCH_COLUMNS]
+        words = frame.select(_words(column, missing, decimal_comma=decimal_comma) for column in batch).collect()
+        found = words.unpivot().drop_nulls().group_by("variable", "value", maintain_order=True).len()
+        for column, word, cells in found.rows():
             counted.setdefault(word, {})[column] = cells
     return counted
+
+
+def _words(column: str, missing: Sequence[str], *, decimal_comma: bool) -> pl.Expr:
+    """The cells of a text column that mean something but are no number, the others null."""
+    refused = number(column, missing, decimal_comma=decimal_comma).is_null()
+    return pl.when(refused).then(meaningful(column, missing)).alias(column)
 
 
 def word_remarks(counted: dict[str, dict[str, int]], shown: Mapping[str, str]) -> Iterator[str]:
