@@ -6,6 +6,7 @@ log axis is plotted in ln x.
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 from functools import lru_cache
 from typing import TYPE_CHECKING
@@ -38,16 +39,25 @@ class QuantileView:
 
 
 def quantile_view(
-    points: FloatArray, n: int, family_name: str, positions: str, location: float, scale: float
+    points: FloatArray,
+    n: int,
+    family_name: str,
+    positions: str,
+    location: float,
+    scale: float,
+    shapes: Sequence[float] = (),
 ) -> QuantileView:
-    """The plot of the kept sorted readings `points` [m] of a channel of n readings (ranks: `kept_ranks(n)`)."""
+    """The plot of the kept sorted readings `points` [m] of a channel of n readings (ranks: `kept_ranks(n)`).
+
+    `shapes` are the family's shape parameters, in the family's order, if it has any.
+    """
     family = family_named(family_name)
     on_log = family.axis is FamilyAxis.LOG
     labels = ("ln of actual" if on_log else "actual", f"expected if {family.name}")
     obstacle = _obstacle(points, family_name, on_log=on_log, fitted=bool(np.isfinite(location) and 0 < scale < np.inf))
     if obstacle:
         return QuantileView(np.empty(0), np.empty(0), *labels, obstacle=obstacle)
-    standard = family.quantile(_kept_positions(n, positions))
+    standard = family.quantile(_kept_positions(n, positions), *shapes)
     actual = np.log(points) if on_log else np.asarray(points, dtype=np.float64)
     return QuantileView(actual, location + scale * standard, *labels)
 

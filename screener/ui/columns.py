@@ -19,7 +19,7 @@ MARKS = {Verdict.FLAGGED.value: "!", Verdict.NOT_SCORED.value: "-"}
 
 GAP = 1
 UNIT_BRACKETS = ("[{}]", "({})", "_{}")
-LEAST_NAME = 12
+LEAST_NAME = 8
 LEAST_REMARK = 10
 """Cells for the columns that share what the fixed ones leave."""
 

@@ -14,7 +14,9 @@ def count_text(value: int | None) -> str:
     separated = f"{value:,}"
     if len(separated) <= COUNT_LIMIT:
         return separated
-    return str(value) if value < 10**COUNT_LIMIT else f"{value / 1e6:.4g}M"
+    if value < 10**COUNT_LIMIT:
+        return str(value)
+    return f"{value / 1e6:.{2 if value < 10**8 else 1 if value < 10**10 else 0}f}M"
 
 
 def p_text(value: float | None) -> str:

@@ -296,7 +296,7 @@ class MainScreen(Screen[None]):
         assert self._rows is not None
         if path.exists() and path != self._to_replace:
             self._to_replace = path
-            self._say(f"{str(path)!r} exists: Enter again replaces it, Esc keeps it.")
+            self._say("That file exists: Enter again replaces it, Esc keeps it.")
             return
         self._close_prompt()
         self._feed.export(self._rows, path)
