@@ -18,9 +18,11 @@ def command(n: tuple[int, ...], family: str, alpha: tuple[float, ...], positions
     """
     import json
 
+    from screener.cli.output import put
     from screener.errors import PlanError
     from screener.screening.null_source import null_table
     from screener.stats.families import family_named
+    from screener.ui.numbers import r_text
 
     if not all(0.0 < a < 1.0 for a in alpha):
         raise PlanError("Couldn't use that alpha: it must lie between 0 and 1, such as 0.05.")
@@ -31,13 +33,10 @@ def command(n: tuple[int, ...], family: str, alpha: tuple[float, ...], positions
         rows = [
             {"n": size, "alpha": a, "critical_r": r} for size in n for a, r in zip(alpha, values[size], strict=True)
         ]
-        click.echo(json.dumps({"family": chosen.name, "positions": table.rule, "critical": rows}, indent=1))
+        put([json.dumps({"family": chosen.name, "positions": table.rule, "critical": rows}, indent=1)])
     elif form == "csv":
-        click.echo("n," + ",".join(f"alpha_{a:g}" for a in alpha))
-        for size in n:
-            click.echo(f"{size}," + ",".join(f"{r:.7f}" for r in values[size]))
+        put(["n," + ",".join(f"alpha_{a:g}" for a in alpha), *(f"{s}," + ",".join(map(repr, values[s])) for s in n)])
     else:
-        click.echo(f"critical r, {chosen.name}, {table.rule} positions")
-        click.echo(f"{'n':>10}" + "".join(f"{f'alpha {a:g}':>14}" for a in alpha))
-        for size in n:
-            click.echo(f"{size:>10,}" + "".join(f"{r:>14.7f}" for r in values[size]))
+        head = f"{'n':>10}" + "".join(f"{f'alpha {a:g}':>14}" for a in alpha)
+        lines = (f"{size:>10,}" + "".join(f"{r_text(r):>14}" for r in values[size]) for size in n)
+        put([f"critical r, {chosen.name}, {table.rule} positions", head, *lines])

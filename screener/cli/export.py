@@ -19,12 +19,23 @@ def command(ctx: click.Context, /, path: Path, file: Path, *, flagged_only: bool
 
     In a CSV file, text that a spreadsheet would run as a formula gets a leading apostrophe; Parquet and JSON are exact.
     """
-    from screener.cli.source import finished_run
+    from screener.cli.output import path_text, tell
+    from screener.cli.source import exit_code, finished_run
     from screener.runs import export
 
     with finished_run(ctx, path, given) as run:
+        if any(_are_one(file, source) for source in (path, run.path, run.facts.path)):
+            raise click.UsageError(f"{str(file)!r} is what the results come from. Give another name to export to.")
         results = run.results()
-        if flagged_only:
-            results = results.filter(results["verdict"] == "flagged")
-        export(results, run.facts, run.plan, file)
-    click.echo(f"{results.height:,} channels written to {file}", err=True)
+        rows = results.filter(results["verdict"] == "flagged") if flagged_only else results
+        export(rows, run.facts, run.plan, file)
+        tell(f"{rows.height:,} channels written to {path_text(file)}")
+        ctx.exit(exit_code(run, results))
+
+
+def _are_one(one: Path, other: Path) -> bool:
+    """Whether two paths lead to the same file."""
+    try:
+        return one.samefile(other)
+    except OSError:
+        return False

@@ -14,6 +14,12 @@ Command = TypeVar("Command", bound=Callable[..., Any])
 
 TABLE_OR_RUN = click.argument("path", metavar="TABLE_OR_RUN", type=click.Path(path_type=Path))
 
+RUN_PATH = click.option(
+    "-o", "--output", "run_path", type=click.Path(path_type=Path), help="Run file to write or to go on with."
+)
+
+FAIL_ON_FLAG = click.option("--fail-on-flag", is_flag=True, help="Exit with 1 when a channel is flagged.")
+
 PLAN_OPTIONS = (
     click.option("--family", default=DEFAULTS.family, show_default=True, help="Family the channels are held against."),
     click.option(
@@ -67,11 +73,15 @@ def plan_from(given: dict[str, Any]) -> Plan:
 
 
 def refuse_plan_for_run(ctx: click.Context, path: Path) -> None:
-    """Raise UsageError when plan options are given together with a run file, which has its own plan."""
-    names = {option.name for option in ctx.command.params} & set(Plan.__dataclass_fields__)
-    given = [n for n in sorted(names) if ctx.get_parameter_source(n) is click.core.ParameterSource.COMMANDLINE]
+    """Raise UsageError when options for a table are given together with a run file, which has its own plan."""
+    options = [option for option in ctx.command.params if option.name in {*Plan.__dataclass_fields__, "run_path"}]
+    given = [option for option in options if _was_given(ctx, option)]
     if given:
         raise click.UsageError(
-            f"{str(path)!r} is a run file and keeps the plan it was scored with; --{given[0]} goes with a table. "
+            f"{str(path)!r} is a run file and keeps the plan it was scored with; {given[0].opts[0]} goes with a table. "
             "Score the table again to change the plan."
         )
+
+
+def _was_given(ctx: click.Context, option: click.Parameter) -> bool:
+    return ctx.get_parameter_source(option.name or "") is click.core.ParameterSource.COMMANDLINE

@@ -1,52 +1,117 @@
-"""Progress of a run on standard error."""
+"""A run's events told on standard error."""
 
+import signal
 import sys
+import threading
 import time
-from collections.abc import Iterable
+from collections.abc import Callable, Iterator
+from contextlib import contextmanager
+from types import FrameType
 
-import click
-
-from screener.records import BlockFailed, BlockScored, Event, TableOpened
+from screener.cli.output import path_text, tell
+from screener.errors import ScreenerError
+from screener.records import BlockFailed, BlockScored, Event, RunFinished, TableOpened
+from screener.ui.numbers import seconds_text
 
 SET_ASIDE_SHOWN = 8
 """Columns set aside that are named; the rest are counted."""
+PAUSE = 10.0
+"""Seconds between two lines of progress where they cannot be rewritten."""
 
 
-def watched(events: Iterable[Event]) -> TableOpened:
-    """Go through a run's events, telling of them on standard error; the opening event.
+class StoppedError(ScreenerError):
+    """The user has stopped the run."""
 
-    On a terminal one line is rewritten; elsewhere only the beginning and what went wrong are told.
+    exit_code = 130
+
+
+def watched(begin: Callable[[Callable[[], bool]], Iterator[Event]]) -> TableOpened:
+    """Go through a run's events, telling of them; the opening event. Ctrl-C ends the run between two blocks.
+
+    Raises: StoppedError when that happened.
     """
-    remaining = iter(events)
-    opened = next(remaining)
+    stop = threading.Event()
+    events = begin(stop.is_set)
+    opened = next(events)
     assert isinstance(opened, TableOpened)
-    click.echo("\n".join(opening_lines(opened)), err=True)
-    rewriting = sys.stderr.isatty()
-    done, total, started = opened.channels_done, len(opened.facts.channels), time.monotonic()
-    for event in remaining:
-        if isinstance(event, BlockFailed):
-            click.echo(f"screener: {event.message}", err=True)
-        elif isinstance(event, BlockScored) and rewriting:
-            done += event.scores.span.stop - event.scores.span.first
-            rate = (done - opened.channels_done) / max(time.monotonic() - started, 1e-9)
-            click.echo(f"\r{progress_line(done, total, rate)}", err=True, nl=done == total)
+    tell(*opening_lines(opened))
+    progress = Progress(opened)
+    with _noting_interrupts(stop):
+        for event in events:
+            progress.note(event)
     return opened
 
 
+class Progress:
+    """How far a run is: one line rewritten on a terminal, else a line now and then."""
+
+    def __init__(self, opened: TableOpened) -> None:
+        self._before = self._done = opened.channels_done
+        self._total = len(opened.facts.channels)
+        self._started = self._told = time.monotonic()
+        self._rewriting = sys.stderr is not None and sys.stderr.isatty()
+
+    def note(self, event: Event) -> None:
+        """Tell of one event."""
+        if isinstance(event, BlockFailed):
+            self._done += event.span.stop - event.span.first
+            tell(("\r" if self._rewriting else "") + f"screener: {event.message}")
+        elif isinstance(event, BlockScored):
+            self._done += event.scores.span.stop - event.scores.span.first
+            self._tell_progress()
+        elif isinstance(event, RunFinished):
+            if self._rewriting:
+                tell("")
+            if event.cancelled:
+                far = f"{self._done:,} of {self._total:,} channels"
+                raise StoppedError(f"Stopped after {far}; the same command goes on from there.")
+
+    def _tell_progress(self) -> None:
+        now = time.monotonic()
+        if not self._rewriting and now - self._told < PAUSE:
+            return
+        self._told = now
+        line = progress_line(self._done, self._total, (self._done - self._before) / max(now - self._started, 1e-9))
+        if self._rewriting:
+            tell("\r" + line.ljust(60), end="")
+        else:
+            tell(line)
+
+
 def progress_line(done: int, total: int, rate: float) -> str:
-    """How far a run is, its rate in channels a second and the time left, padded so that it covers an earlier line."""
-    left = f", {(total - done) / rate:.0f} s left" if done < total else ""
-    return f"{done:,} of {total:,} channels, {rate:,.0f} a second{left}".ljust(60)
+    """How far a run is, its rate in channels a second and the time left."""
+    left = f", {seconds_text((total - done) / rate)} left" if done < total else ""
+    return f"{done:,} of {total:,} channels, {rate:,.0f} a second{left}"
 
 
 def opening_lines(event: TableOpened) -> list[str]:
     """What was read, what was set aside and why, and where the results go."""
     facts = event.facts
-    lines = [f"{facts.path}: {facts.format}, {facts.rows:,} rows, {len(facts.channels):,} channels"]
+    lines = [f"{path_text(facts.path)}: {facts.format}, {facts.rows:,} rows, {len(facts.channels):,} channels"]
     lines += [f"  {remark}" for remark in facts.remarks]
     lines += [f"  set aside: {column.name} ({column.reason})" for column in facts.set_aside[:SET_ASIDE_SHOWN]]
     if len(facts.set_aside) > SET_ASIDE_SHOWN:
         lines.append(f"  set aside: {len(facts.set_aside) - SET_ASIDE_SHOWN:,} more columns")
     if event.channels_done:
-        lines.append(f"  going on after {event.channels_done:,} channels scored before")
-    return [*lines, f"  run file: {event.run_path}"]
+        lines.append(f"  scored before: {event.channels_done:,} of {len(facts.channels):,} channels")
+    return [*lines, f"  run file: {path_text(event.run_path)}"]
+
+
+@contextmanager
+def _noting_interrupts(stop: threading.Event) -> Iterator[None]:
+    """Ctrl-C sets `stop`, so that blocks are stored whole; a second one interrupts at once."""
+    before = signal.getsignal(signal.SIGINT)
+    if before is signal.SIG_IGN:
+        yield
+        return
+
+    def note(_number: int, _frame: FrameType | None) -> None:
+        if stop.is_set():
+            raise KeyboardInterrupt
+        stop.set()
+
+    signal.signal(signal.SIGINT, note)
+    try:
+        yield
+    finally:
+        signal.signal(signal.SIGINT, before)

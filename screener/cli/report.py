@@ -3,6 +3,9 @@
 from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
+from screener.cli.output import path_text
+from screener.ui.numbers import count_text, p_text, r_text
+
 if TYPE_CHECKING:
     import polars as pl
 
@@ -18,7 +21,7 @@ def summary_lines(run: "RunFile", results: "pl.DataFrame") -> list[str]:
 
     plan = run.plan
     return [
-        f"{run.facts.path}: {run.facts.rows:,} rows x {len(run.facts.channels):,} channels",
+        f"{path_text(run.facts.path)}: {run.facts.rows:,} rows x {len(run.facts.channels):,} channels",
         f"held against {plan.family}, alpha {plan.alpha:g}, control {plan.control}, {plan.positions} positions",
         summarise(results, run.facts, plan).sentence(),
     ]
@@ -28,19 +31,12 @@ def flagged_lines(results: "pl.DataFrame") -> list[str]:
     """The flagged channels as a table, smallest p first."""
     flagged = results.filter(results["verdict"] == "flagged").sort("p", "r")
     rows = [
-        (row["channel"], f"{row['n']:,}", f"{row['r']:.5f}", f"{row['critical_r']:.5f}", p_text(row["p"]))
+        (row["channel"], count_text(row["n"]), r_text(row["r"]), r_text(row["critical_r"]), p_text(row["p"]))
         for row in flagged.head(SHOWN_AT_MOST).iter_rows(named=True)
     ]
     lines = aligned(("flagged channel", "n", "r", "critical r", "p"), rows) if rows else ["no channel is flagged"]
     more = flagged.height - len(rows)
     return [*lines, f"... and {more:,} more; `screener flagged` prints all names"] if more > 0 else lines
-
-
-def p_text(p: float | None) -> str:
-    """A p that never reads as zero."""
-    if p is None:
-        return "-"
-    return f"{p:.3f}" if p >= 0.001 else f"{p:.1e}"
 
 
 def aligned(head: Sequence[str], rows: Sequence[Sequence[str]]) -> list[str]:

@@ -5,13 +5,13 @@ from typing import Any
 
 import click
 
-from screener.cli.options import plan_options
+from screener.cli.options import FAIL_ON_FLAG, RUN_PATH, plan_options
 
 
 @click.command()
 @click.argument("table", type=click.Path(path_type=Path))
-@click.option("-o", "--output", "run_path", type=click.Path(path_type=Path), help="Run file to write or to go on with.")
-@click.option("--fail-on-flag", is_flag=True, help="Exit with 1 when a channel is flagged.")
+@RUN_PATH
+@FAIL_ON_FLAG
 @plan_options
 @click.pass_context
 def command(ctx: click.Context, /, table: Path, run_path: Path | None, *, fail_on_flag: bool, **given: Any) -> None:
@@ -19,12 +19,19 @@ def command(ctx: click.Context, /, table: Path, run_path: Path | None, *, fail_o
 
     The run file lies beside the table unless -o names it. A run that was stopped goes on where it was.
     """
+    from screener.cli.output import put
+    from screener.cli.source import again, exit_code, is_run, scored
+
+    if is_run(table):
+        from screener.runs import RunFile
+
+        with RunFile.open(table, read_only=True) as run:
+            raise click.UsageError(f"{str(table)!r} is a run file, not a table; {again(run)} goes on with it.")
+    path = scored(table, given, run_path)
     from screener.cli.report import summary_lines
-    from screener.cli.source import scored
     from screener.runs import RunFile
 
-    with RunFile.open(scored(table, given, run_path), read_only=True) as run:
+    with RunFile.open(path, read_only=True) as run:
         results = run.results()
-        click.echo("\n".join(summary_lines(run, results)))
-        if fail_on_flag and results["verdict"].eq("flagged").any():
-            ctx.exit(1)
+        put(summary_lines(run, results))
+        ctx.exit(exit_code(run, results, fail_on_flag=fail_on_flag))

@@ -2,7 +2,9 @@
 
 import difflib
 import os
+import shutil
 import sys
+from collections.abc import Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
@@ -12,6 +14,8 @@ from screener.cli.options import TABLE_OR_RUN, plan_options
 
 if TYPE_CHECKING:
     from screener.runs import RunFile
+
+Row = dict[str, Any]
 
 
 @click.command()
@@ -23,17 +27,26 @@ if TYPE_CHECKING:
 @click.option("--ascii", "plain", is_flag=True, help="Draw with ASCII characters only.")
 @plan_options
 @click.pass_context
-def command(ctx: click.Context, /, path: Path, channel: str, *, plain: bool, **given: Any) -> None:
-    """Print the numbers of CHANNEL against every family, and its quantile plot: actual against expected."""
-    from screener.cli.source import finished_run
+def command(ctx: click.Context, /, path: Path, channel: str, **given: Any) -> None:
+    """Print the numbers of CHANNEL against every family, and its quantile plot: actual against expected.
 
+    A part of the name is enough when no other channel's name holds it.
+    """
+    from screener.cli.output import put
+    from screener.cli.source import exit_code, finished_run
+    from screener.stats.families import family_named
+
+    against = family_named(given["against"]).name if given["against"] else ""
     with finished_run(ctx, path, given) as run:
         position = _position(run, channel)
-        family = _family(given["against"] or run.plan.family)
-        lines = [*_numbers(run, position), "", *_families(run, position), ""]
-        plain = plain or not _draws_unicode()
-        lines += _plot(run, position, family, given["width"] or _width(), given["height"], plain=plain)
-    click.echo("\n".join(line.rstrip() for line in lines))
+        results = run.results()
+        row = next(results.filter(results["position"] == position).iter_rows(named=True), None)
+        parts = [_numbers(run, position, row)]
+        if row is not None and row["n"]:
+            fits = [fit for fit in run.fits(position).iter_rows(named=True) if fit["r"] is not None or fit["note"]]
+            parts += [_families(fits), _plot(run, position, row["n"], against or run.plan.family, given)]
+        put(line.rstrip() for line in _apart(parts))
+        ctx.exit(exit_code(run, results))
 
 
 def _position(run: "RunFile", name: str) -> int:
@@ -44,100 +57,91 @@ def _position(run: "RunFile", name: str) -> int:
     names = [channel.name for channel in run.facts.channels]
     if name in names:
         return names.index(name)
-    holding = [candidate for candidate in names if name.lower() in candidate.lower()]
+    for column in run.facts.set_aside:
+        if column.name == name:
+            raise click.UsageError(f"Column {name!r} was set aside: {column.reason}.")
+    holding = [candidate for candidate in names if name.casefold() in candidate.casefold()]
     if len(holding) == 1:
         return names.index(holding[0])
     near = holding[:5] or difflib.get_close_matches(name, names, n=5, cutoff=0.4) or names[:5]
     problem = f"{len(holding)} channels match {name!r}" if holding else f"There is no channel {name!r}"
-    aside = [column for column in run.facts.set_aside if column.name == name]
-    if aside:
-        raise click.UsageError(f"Column {name!r} was set aside: {aside[0].reason}.")
     raise click.UsageError(f"{problem}; there are for instance {', '.join(map(repr, near))}.")
 
 
-def _family(name: str) -> str:
-    from screener.stats.families import family_named
+def _numbers(run: "RunFile", position: int, row: Row | None) -> list[str]:
+    """What was counted, and the verdict."""
+    from screener.ui.numbers import p_text, r_text, size_text
 
-    return family_named(name).name
-
-
-def _numbers(run: "RunFile", position: int) -> list[str]:
-    from screener.cli.report import p_text
-
-    results = run.results()
-    found = results.filter(results["position"] == position)
-    name = run.facts.channels[position].name
-    if found.is_empty():
-        return [f"{name}: not scored yet; the run was stopped before it"]
-    row = found.row(0, named=True)
-    head = f"{row['channel']}: {row['n']:,} readings, {row['missing']:,} missing"
+    channel = run.facts.channels[position]
+    if row is None:
+        return [channel.name, "not scored yet: the run was stopped before it"]
+    counted = "" if row["n"] is None else f": {row['n']:,} readings, {row['missing']:,} missing"
+    head = f"{channel.name}{counted}"
     if row["verdict"] == "not scored":
         return [head, f"not scored: {row['reason']}"]
     sign = "<" if row["r"] < row["critical_r"] else ">="
     return [
         head,
-        f"{row['verdict']} against {row['family']} at alpha {run.plan.alpha:g}: "
-        f"r {row['r']:.6f} {sign} critical {row['critical_r']:.6f}",
-        f"p {p_text(row['p'])}, q {p_text(row['q'])}, departure size {row['departure_size']:.4f} "
+        f"{row['verdict']} against {row['family']} at alpha {run.plan.alpha:g}, control {run.plan.control}: "
+        f"r {r_text(row['r'])} {sign} critical {r_text(row['critical_r'])}",
+        f"p {p_text(row['p'])}, q {p_text(row['q'])}, departure size {size_text(row['departure_size'])} "
         "(rms distance from the line, in standard deviations)",
     ]
 
 
-def _families(run: "RunFile", position: int) -> list[str]:
-    from screener.cli.report import aligned, p_text
+def _families(fits: Sequence[Row]) -> list[str]:
+    """A line for every family."""
+    from screener.cli.report import aligned
 
-    rows = [
-        (fit["family"], "-", "-", "-", "-", "-", fit["note"] or "-")
-        if fit["r"] is None
-        else (
-            fit["family"],
-            f"{fit['r']:.6f}",
-            f"{fit['critical_r']:.6f}",
-            p_text(fit["p"]) + ("*" if fit["extrapolated"] else ""),
-            f"{fit['location']:.6g}",
-            f"{fit['scale']:.6g}",
-            "",
-        )
-        for fit in run.fits(position).iter_rows(named=True)
-    ]
-    if not rows:
+    if not fits:
         return []
-    lines = aligned(("family", "r", "critical r", "p", "location", "scale", ""), rows)
+    lines = aligned(("family", "r", "critical r", "p", "location", "scale"), [_family_cells(fit) for fit in fits])
+    notes = [fit["note"] or "" for fit in fits]
+    lines = [lines[0], *(f"{line}  {note}" for line, note in zip(lines[1:], notes, strict=True))]
     lines.append("location and scale of a family on the log axis are those of ln x")
-    if any(row[3].endswith("*") for row in rows):
+    if any(fit["extrapolated"] for fit in fits):
         lines.append("* beyond what was simulated: from the fitted tail")
     return lines
 
 
-def _plot(run: "RunFile", position: int, family: str, width: int, height: int, *, plain: bool) -> list[str]:
-    import numpy as np
+def _family_cells(fit: Row) -> tuple[str, ...]:
+    from screener.ui.numbers import p_text, r_text, reading_text
 
-    from screener.plots import Charset, quantile_plot, quantile_view
-
-    points = run.points(position)
-    fits = run.fits(position)
-    fit = fits.filter(fits["family"] == family)
-    location, scale = (fit[0, "location"], fit[0, "scale"]) if fit.height else (None, None)
-    view = quantile_view(
-        points,
-        _count(run, position),
-        family,
-        run.plan.positions,
-        np.nan if location is None else location,
-        np.nan if scale is None else scale,
+    if fit["r"] is None:
+        return (fit["family"], *"-----")
+    return (
+        fit["family"],
+        r_text(fit["r"]),
+        r_text(fit["critical_r"]),
+        p_text(fit["p"]) + ("*" if fit["extrapolated"] else " "),
+        reading_text(fit["location"]),
+        reading_text(fit["scale"]),
     )
-    return quantile_plot(view, width=width, height=height, charset=Charset.ASCII if plain else Charset.UNICODE)
 
 
-def _count(run: "RunFile", position: int) -> int:
-    results = run.results()
-    found = results.filter(results["position"] == position)
-    return int(found[0, "n"]) if found.height else 0
+def _plot(run: "RunFile", position: int, n: int, family: str, given: dict[str, Any]) -> list[str]:
+    from screener.plots import Charset
+    from screener.ui.drawing import Wanted, drawing
+
+    wanted = Wanted(position, n, family, given["width"] or _width(), given["height"])
+    charset = Charset.ASCII if given["plain"] or not _draws_unicode() else Charset.UNICODE
+    return list(drawing(run, run.facts, run.plan, wanted, charset=charset).lines)
+
+
+def _apart(parts: Sequence[Sequence[str]]) -> list[str]:
+    """The lines of all parts that have any, an empty line between two."""
+    lines = [line for part in parts if part for line in (*part, "")]
+    return lines[:-1]
 
 
 def _width() -> int:
-    return min(100, os.get_terminal_size().columns if sys.stdout.isatty() else 80)
+    return min(100, shutil.get_terminal_size().columns) if sys.stdout.isatty() else 80
 
 
 def _draws_unicode() -> bool:
-    return (sys.stdout.encoding or "").lower().replace("-", "") == "utf8"
+    """Whether the output takes more than ASCII, and the terminal too if it goes to one."""
+    from screener.ui.abilities import abilities
+
+    if (sys.stdout.encoding or "").lower().replace("-", "") != "utf8":
+        return False
+    return not sys.stdout.isatty() or abilities(os.environ).unicode

@@ -5,15 +5,14 @@ from collections.abc import Callable, Iterator, Sequence
 from concurrent.futures import FIRST_COMPLETED, Executor, Future, wait
 from typing import Protocol
 
+from screener.errors import ScreenerError
 from screener.records import Block, BlockFailed, BlockScored, BlockScores, Event, Plan, RunFinished, Span, TableFacts
 from screener.stats.families import FAMILIES
 from screener.stats.null.table import NullTable
 from screener.stats.scoring import score
 
-AHEAD = 4
-"""Blocks handed out before the oldest comes back: enough to keep two workers busy, few enough to bound memory."""
-
 POLL_SECONDS = 0.1
+"""How soon a request to stop is noticed."""
 
 
 class ReadableTable(Protocol):
@@ -34,14 +33,19 @@ def screen(
     *,
     spans: Sequence[Span],
     executor: Executor,
+    ahead: int = 4,
     cancelled: Callable[[], bool] = lambda: False,
 ) -> Iterator[Event]:
-    """Score the spans; nothing runs until the caller iterates, and stopping the iteration stops the work."""
+    """Score the spans; nothing runs until the caller iterates, and stopping the iteration stops the work.
+
+    `ahead` is how many blocks are handed out before the oldest comes back: enough to keep every worker busy, few enough
+    to bound memory.
+    """
     started = time.monotonic()
     waiting = list(reversed(spans))
     running: dict[Future[BlockScores], Span] = {}
     while (waiting or running) and not cancelled():
-        while waiting and len(running) < AHEAD:
+        while waiting and len(running) < ahead:
             span = waiting.pop()
             running[executor.submit(score_span, table, span, plan, null)] = span
         finished, _ = wait(running, timeout=POLL_SECONDS, return_when=FIRST_COMPLETED)
@@ -78,7 +82,19 @@ def _event(future: Future[BlockScores], span: Span, facts: TableFacts) -> BlockS
     error = future.exception()
     if error is None:
         return BlockScored(future.result())
+    return BlockFailed(span, f"Couldn't score {_channels_of(span, facts)}: {_told(error)}.")
+
+
+def _channels_of(span: Span, facts: TableFacts) -> str:
     first, last = facts.channels[span.first].name, facts.channels[span.stop - 1].name
-    which = f"channel {first!r}" if first == last else f"channels {first!r} to {last!r}"
-    why = str(error) or type(error).__name__
-    return BlockFailed(span, f"Couldn't score {which}: {why}.".replace("..", "."))
+    return f"channel {first!r}" if span.stop - span.first == 1 else f"channels {first!r} to {last!r}"
+
+
+def _told(error: BaseException) -> str:
+    """What went wrong on one line, without a full stop; an error of our own making is named by its kind too."""
+    if isinstance(error, MemoryError):
+        return "there is not enough memory; fewer workers (--jobs 1) need less"
+    words = " ".join(str(error).split()).rstrip(".")
+    if isinstance(error, ScreenerError):
+        return words
+    return f"{type(error).__name__}: {words}" if words else type(error).__name__

@@ -37,7 +37,7 @@ def start(
         done = run.done()
         yield TableOpened(table.facts, plan, run.path, sum(span.stop - span.first for span in done))
         todo = [span for span in spans(table.facts) if span not in done]
-        for event in screen(table, plan, null, spans=todo, executor=executor, cancelled=cancelled):
+        for event in screen(table, plan, null, spans=todo, executor=executor, ahead=jobs + 2, cancelled=cancelled):
             if isinstance(event, BlockScored):
                 run.store(event.scores)
             elif isinstance(event, BlockFailed):
@@ -62,34 +62,48 @@ def run_for(facts: TableFacts, plan: Plan, path: Path | None) -> RunFile:
     Raises: RunFileError when the file at a given path is something else.
     """
     if path is not None:
-        if not path.exists():
-            return _create(path, facts, plan)
-        run = RunFile.open(path)
-        if _same_run(run, facts, plan):
-            return run
-        run.close()
-        raise RunFileError(
-            f"Couldn't use run file {str(path)!r}: it holds another table, table content or plan. "
-            "Give another name with -o, or remove it."
-        )
+        return _at(path, facts, plan)
     beside = default_run_path(facts.path)
-    if os.access(beside.parent, os.W_OK):
-        return _first_fitting(beside, facts, plan)
-    return _first_fitting(user_state_path("screener", ensure_exists=True) / beside.name, facts, plan)
+    if not os.access(beside.parent, os.W_OK):
+        beside = user_state_path("screener", ensure_exists=True) / beside.name
+    return _at_first_fitting(beside, facts, plan)
 
 
-def _first_fitting(path: Path, facts: TableFacts, plan: Plan) -> RunFile:
+def _at(path: Path, facts: TableFacts, plan: Plan) -> RunFile:
+    if not os.path.lexists(path):
+        return _create(path, facts, plan)
+    run = RunFile.open(path)
+    if _same_run(run, facts, plan):
+        return run
+    run.close()
+    raise RunFileError(
+        f"Couldn't use run file {str(path)!r}: it holds another table, table content or plan. "
+        "Give another name with -o, or remove it."
+    )
+
+
+def _at_first_fitting(path: Path, facts: TableFacts, plan: Plan) -> RunFile:
     number = 1
     while True:
         candidate = path if number == 1 else path.with_name(f"{path.stem}-{number}{path.suffix}")
-        if not candidate.exists():
+        if not os.path.lexists(candidate):
             return _create(candidate, facts, plan)
-        if is_run_file(candidate):
-            run = RunFile.open(candidate)
+        run = _opened(candidate)
+        if run is not None:
             if _same_run(run, facts, plan):
                 return run
             run.close()
         number += 1
+
+
+def _opened(path: Path) -> RunFile | None:
+    """The run file at path; None when it is none, is damaged, of another schema, or not ours to write."""
+    if not (is_run_file(path) and os.access(path, os.W_OK)):
+        return None
+    try:
+        return RunFile.open(path)
+    except RunFileError:
+        return None
 
 
 def _create(path: Path, facts: TableFacts, plan: Plan) -> RunFile:
