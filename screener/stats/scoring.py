@@ -71,6 +71,8 @@ def _against_null(
     if enough.size == 0:
         return critical, p, extrapolated
     for column, family in enumerate(families):
+        if family.null_name not in table.families:
+            continue
         null = table.rows(family.null_name, sizes)
         critical[enough, column] = null.critical(alpha)[row]
         p[enough, column] = null.p_against(r[enough, column], row, alpha)

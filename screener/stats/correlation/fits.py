@@ -2,14 +2,15 @@
 
 from collections.abc import Sequence
 from dataclasses import dataclass
-from functools import lru_cache
 
 import numpy as np
 from numpy.typing import NDArray
 
+from screener.stats.correlation.on_grid import carried, products
 from screener.stats.correlation.projection import IntArray, Projection, project
-from screener.stats.correlation.score_grid import Products, ScoreGrid, products, score_grid
-from screener.stats.families import Axis, Family, family_named
+from screener.stats.correlation.score_table import score_table
+from screener.stats.correlation.shape_search import best_shape, shape_table
+from screener.stats.families import Axis, Family
 from screener.stats.families.family import FloatArray
 from screener.stats.ordering import brought_near, differences, log_differences
 
@@ -24,14 +25,10 @@ class Fits:
     """[C, F] least squares of actual on expected, on the family's axis, in the channel's units."""
     scale: FloatArray
     """[C, F]"""
+    shapes: FloatArray
+    """[C, F, 2] shape parameters at which r is largest; NaN where the family has fewer."""
     outside: NDArray[np.bool_]
     """[C, F] the channel has readings outside the family's support."""
-
-
-@lru_cache(maxsize=8)
-def _scores(names: tuple[str, ...]) -> ScoreGrid:
-    families = [family_named(name) for name in names]
-    return score_grid([family.branches or (family.quantile, family.quantile) for family in families])
 
 
 def fit_families(ordered: FloatArray, n: IntArray, families: Sequence[Family], rule: str) -> Fits:
@@ -41,50 +38,94 @@ def fit_families(ordered: FloatArray, n: IntArray, families: Sequence[Family], r
     """
     shape = (ordered.shape[0], len(families))
     r, location, scale = (np.full(shape, np.nan) for _ in range(3))
-    fits = Fits(r, location, scale, np.zeros(shape, dtype=np.bool_))
+    fits = Fits(r, location, scale, np.full((*shape, 2), np.nan), np.zeros(shape, dtype=np.bool_))
     enough = np.flatnonzero(n >= 3)
-    for axis in Axis:
-        columns = np.array([i for i, family in enumerate(families) if family.axis is axis], dtype=np.int64)
-        if columns.size and enough.size:
-            scores = _scores(tuple(families[i].name for i in columns))
-            fit = _fit_linear if axis is Axis.LINEAR else _fit_log
-            fit(fits, ordered, n, scores, rule, enough, columns)
+    varying = enough[ordered[enough, 0] < ordered[enough, n[enough] - 1]]
+    if varying.size:
+        _fit_linear(fits, ordered, n, families, rule, varying)
+        _fit_log(fits, ordered, n, families, rule, varying)
     return fits
 
 
 def _fit_linear(
-    fits: Fits, ordered: FloatArray, n: IntArray, scores: ScoreGrid, rule: str, rows: IntArray, columns: IntArray
+    fits: Fits, ordered: FloatArray, n: IntArray, families: Sequence[Family], rule: str, rows: IntArray
 ) -> None:
-    near, exponent = brought_near(ordered, n)
-    projection = project(near, n, rows, rule, differences)
-    _fill(fits, projection, products(projection, scores), near[rows, n[rows] // 2], exponent[rows], rows, columns)
+    columns = _on_axis(families, Axis.LINEAR)
+    if columns.size:
+        near, exponent = brought_near(ordered, n)
+        projection = project(near, n, rows, rule, differences)
+        centre = near[rows, n[rows] // 2] + projection.mean
+        _fill(fits, projection, families, columns, rows, centre, exponent[rows])
 
 
 def _fit_log(
-    fits: Fits, ordered: FloatArray, n: IntArray, scores: ScoreGrid, rule: str, rows: IntArray, columns: IntArray
+    fits: Fits, ordered: FloatArray, n: IntArray, families: Sequence[Family], rule: str, rows: IntArray
 ) -> None:
+    columns = _on_axis(families, Axis.LOG)
     positive = ordered[rows, 0] > 0.0
     fits.outside[np.ix_(rows[~positive], columns)] = True
     rows = rows[positive]
-    if rows.size:
+    if rows.size and columns.size:
         projection = project(ordered, n, rows, rule, log_differences)
-        middle = np.log(ordered[rows, n[rows] // 2])
-        _fill(fits, projection, products(projection, scores), middle, np.zeros_like(rows), rows, columns)
+        centre = np.log(ordered[rows, n[rows] // 2]) + projection.mean
+        _fill(fits, projection, families, columns, rows, centre, np.zeros_like(rows))
+
+
+def _on_axis(families: Sequence[Family], axis: Axis) -> IntArray:
+    """Places of the families on an axis."""
+    return np.array([i for i, family in enumerate(families) if family.axis is axis], dtype=np.int64)
 
 
 def _fill(
     fits: Fits,
     projection: Projection,
-    product: Products,
-    middle: FloatArray,
-    exponent: IntArray,
-    rows: IntArray,
+    families: Sequence[Family],
     columns: IntArray,
+    rows: IntArray,
+    centre: FloatArray,
+    exponent: IntArray,
 ) -> None:
-    """Turn products into r, location and scale, in the channel's units, at [rows, columns]."""
-    place = np.ix_(rows, columns)
-    r = product.cross / product.length
+    """Fill in the families `columns` at the channels `rows`, whose mean is centre x 2^exponent on their axis."""
+    plain = np.array([i for i in columns if not families[i].shapes], dtype=np.int64)
+    shaped = [int(i) for i in columns if families[i].shapes]
+    names = tuple(families[i].name for i in plain)
+    for x in carried(projection):
+        at = rows[x.members]
+        back = _WayBack(centre[x.members, None], exponent[x.members, None], x.length[:, None])
+        if plain.size:
+            table = score_table(names, x.start)
+            found = products(x, table.columns)
+            _place(fits, np.ix_(at, plain), back, found.r, found.mean + table.median, found.length)
+        for column in shaped:
+            best = best_shape(x, shape_table(families[column].name, x.start))
+            place = np.ix_(at, np.array([column]))
+            _place(fits, place, back, best.r[:, None], best.mean[:, None], best.length[:, None])
+            fits.shapes[at, column] = _shapes(families[column], best.coordinates)
+
+
+@dataclass(frozen=True, slots=True)
+class _WayBack:
+    """From deviations to the channel's units, each [C, 1]."""
+
+    centre: FloatArray
+    exponent: IntArray
+    length: FloatArray
+
+
+def _place(
+    fits: Fits, place: tuple[IntArray, ...], back: _WayBack, r: FloatArray, mean: FloatArray, length: FloatArray
+) -> None:
+    """r, location and scale from the mean and length of the standard quantiles, each [C, K]."""
+    slope = r * back.length / length
     fits.r[place] = np.clip(r, 0.0, 1.0)
-    slope = r * projection.length[:, None] / product.length
-    fits.scale[place] = np.ldexp(slope, exponent[:, None])
-    fits.location[place] = np.ldexp((middle + projection.mean)[:, None] - slope * product.mean, exponent[:, None])
+    fits.scale[place] = np.ldexp(slope, back.exponent)
+    fits.location[place] = np.ldexp(back.centre - slope * mean, back.exponent)
+
+
+def _shapes(family: Family, coordinates: FloatArray) -> FloatArray:
+    """Shape parameters, float64[C, 2], at places on the family's grid, float64[C, shapes] in steps."""
+    shapes = np.full((coordinates.shape[0], 2), np.nan)
+    for place, shape in enumerate(family.shapes):
+        first, last, count = shape.grid
+        shapes[:, place] = shape.value(first + coordinates[:, place] * ((last - first) / (count - 1)))
+    return shapes

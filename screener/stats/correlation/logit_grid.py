@@ -12,6 +12,9 @@ STEP = 0.1
 POINTS = 10
 """Grid points that an interpolated value is taken from."""
 
+COARSE = 10
+"""Grid points by which the start of a shortened grid moves."""
+
 LOWEST = -20.0
 """u = 2e-9: the first plotting position of 3e8 readings."""
 
@@ -26,6 +29,11 @@ LOWER: FloatArray = 1.0 / (1.0 + np.exp(-GRID))
 
 UPPER: FloatArray = 1.0 / (1.0 + np.exp(GRID))
 """u of the upper half, mirrored: UPPER = 1 - LOWER."""
+
+
+def first_needed(v: float) -> int:
+    """The grid point to start from when nothing lies below v, in coarse steps so that like channels share it."""
+    return max(0, int((v - LOWEST) / STEP - POINTS) // COARSE * COARSE)
 
 
 def spread(v: FloatArray) -> FloatArray:

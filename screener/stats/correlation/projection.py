@@ -7,7 +7,7 @@ from functools import lru_cache
 import numpy as np
 from numpy.typing import NDArray
 
-from screener.stats.correlation.logit_grid import spread
+from screener.stats.correlation.logit_grid import first_needed, spread
 from screener.stats.correlation.segments import class_size, compress, counted, segments
 from screener.stats.families.family import FloatArray
 from screener.stats.positions import positions_at
@@ -37,6 +37,8 @@ class SizeGroup:
     """[2 M] the same sums for readings that are all 1."""
     to_grid: FloatArray
     """[M, grid] weights that carry node sums of either half to the probability grid."""
+    start: int
+    """Grid points before this one are not needed; the same for all n of about the same size."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -51,13 +53,14 @@ class Projection:
 
 
 @lru_cache(maxsize=256)
-def _to_grid(n: int, rule: str) -> tuple[FloatArray, FloatArray]:
-    """For n readings: weights from nodes to the grid, [M, grid], and the node sums of ones, [2 M]."""
+def _to_grid(n: int, rule: str) -> tuple[FloatArray, FloatArray, int]:
+    """For n readings: weights from nodes to the grid, [M, grid], the node sums of ones, [2 M], and the grid's start."""
     cut = segments(class_size(n) // 2)
     # Nodes of segments that reach beyond the median may lie anywhere beyond it; those without readings weigh nothing.
     u = np.minimum(positions_at(np.minimum(cut.nodes, 0.56 * n + 1.0), n, rule), 0.6)
     ones = np.concatenate([counted(cut, n // 2), counted(cut, n - n // 2)])
-    return spread(np.log(u) - np.log1p(-u)), ones
+    v = np.log(u) - np.log1p(-u)
+    return spread(v), ones, first_needed(float(v[0]))
 
 
 def project(ordered: FloatArray, n: IntArray, rows: IntArray, rule: str, deviations: Deviations) -> Projection:
@@ -104,8 +107,8 @@ def _by_size(counts: IntArray, members: IntArray, compressed: FloatArray, rule: 
     """The members of a class, whose counts do not fall, split by n."""
     sizes, first = np.unique(counts, return_index=True)
     for size, start, stop in zip(sizes, first, [*first[1:], counts.size], strict=True):
-        table, ones = _to_grid(int(size), rule)
-        yield SizeGroup(int(size), members[start:stop], compressed[start:stop], ones, table)
+        table, ones, begin = _to_grid(int(size), rule)
+        yield SizeGroup(int(size), members[start:stop], compressed[start:stop], ones, table, begin)
 
 
 def _aligned(

@@ -20,7 +20,7 @@ KEPT = 32
 GROWTH = 1.5
 """Ratio of the last to the first rank of a segment."""
 
-NODES = 11
+NODES = 9
 """Chebyshev nodes of a segment."""
 
 CLASS_RATIO = 1.06

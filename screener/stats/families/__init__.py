@@ -2,9 +2,13 @@
 
 from screener.errors import PlanError
 from screener.stats.families import (
+    beta,
     cauchy,
     double_exponential,
     exponential,
+    f,
+    gamma,
+    generalized_extreme_value,
     half_normal,
     largest_extreme_value,
     log_logistic,
@@ -14,28 +18,36 @@ from screener.stats.families import (
     normal,
     rayleigh,
     smallest_extreme_value,
+    student_t,
+    tukey_lambda,
     uniform,
     weibull,
 )
-from screener.stats.families.family import Axis, Family, Support
+from screener.stats.families.family import Axis, Family, Shape, Support
 
-__all__ = ["FAMILIES", "Axis", "Family", "Support", "family_named"]
+__all__ = ["FAMILIES", "Axis", "Family", "Shape", "Support", "family_named"]
 
 FAMILIES: tuple[Family, ...] = (
     normal.FAMILY,
     logistic.FAMILY,
     double_exponential.FAMILY,
     cauchy.FAMILY,
+    student_t.FAMILY,
     uniform.FAMILY,
+    beta.FAMILY,
     exponential.FAMILY,
-    rayleigh.FAMILY,
-    maxwell_boltzmann.FAMILY,
-    half_normal.FAMILY,
-    largest_extreme_value.FAMILY,
-    smallest_extreme_value.FAMILY,
+    gamma.FAMILY,
     lognormal.FAMILY,
     weibull.FAMILY,
     log_logistic.FAMILY,
+    rayleigh.FAMILY,
+    maxwell_boltzmann.FAMILY,
+    half_normal.FAMILY,
+    f.FAMILY,
+    largest_extreme_value.FAMILY,
+    smallest_extreme_value.FAMILY,
+    generalized_extreme_value.FAMILY,
+    tukey_lambda.FAMILY,
 )
 
 

@@ -27,15 +27,36 @@ class Axis(StrEnum):
 
 
 @dataclass(frozen=True, slots=True)
+class Shape:
+    """A shape parameter, and the even grid of a coordinate in which quantiles change smoothly with it."""
+
+    name: str
+    grid: tuple[float, float, int]
+    """First and last coordinate, and how many there are."""
+    value: Callable[[FloatArray], FloatArray]
+    """The parameter at a coordinate, same shape."""
+
+    def coordinates(self) -> FloatArray:
+        """The grid, float64[count], evenly spaced."""
+        first, last, count = self.grid
+        return np.linspace(first, last, count)
+
+
+@dataclass(frozen=True, slots=True)
 class Family:
-    """A location-scale family on its axis."""
+    """A location-scale family on its axis, with up to two shape parameters."""
 
     name: str
     support: Support
-    quantile: Callable[[FloatArray], FloatArray]
-    """Standard quantiles at probabilities u, same shape as u."""
+    quantile: Callable[..., FloatArray]
+    """Standard quantiles at probabilities u and, broadcast against them, the shape parameters."""
     arises_from: str
     axis: Axis = Axis.LINEAR
+    shapes: tuple[Shape, ...] = ()
+    typical: tuple[tuple[float, ...], ...] = ((),)
+    """Shape parameters at which the laws of all families are tested."""
+    diagnostic: bool = False
+    """Tells how a channel departs; never named as its distribution."""
     null_of: str = ""
     """The family whose null distribution of r this one shares, as its mirror image or its logarithm; empty: its own."""
     branches: tuple[Callable[[FloatArray], FloatArray], Callable[[FloatArray], FloatArray]] | None = None

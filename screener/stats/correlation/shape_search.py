@@ -1,0 +1,209 @@
+"""The shape that makes the plot straightest: r is largest there.
+
+Quantile functions are tabled over an even grid of shape coordinates. The best grid point and its neighbours give the
+place of the maximum; the quantile function there is interpolated in the coordinates, so that r is the correlation with
+one member of the family, not a value read off a curve.
+"""
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from functools import lru_cache
+
+import numpy as np
+from numpy.typing import NDArray
+
+from screener.stats.correlation.logit_grid import LOWER, UPPER
+from screener.stats.correlation.on_grid import IntArray, OnGrid, products
+from screener.stats.families import Family, family_named
+from screener.stats.families.family import FloatArray
+
+POINTS = 6
+"""Grid points, in each coordinate, that a quantile function is interpolated from."""
+
+FINE = 8
+"""Parts of a grid step in which the interpolated r is looked through for its maximum."""
+
+MOVES = 3
+"""Times that the search may go on from a neighbouring grid point."""
+
+CHUNK = 64
+"""Channels whose interpolated quantile functions are held at a time."""
+
+SPREAD = np.array([0.1, 0.5, 0.9])
+
+
+def lagrange_weights(at: FloatArray, points: int) -> FloatArray:
+    """Weights of values at 0, 1, ..., points - 1 in the polynomial through them, at any places: [..., points]."""
+    weights = np.ones((*at.shape, points))
+    offsets = np.arange(points)
+    for other in range(points):
+        factor = (at - other)[..., None] / np.where(offsets == other, 1, offsets - other)
+        weights *= np.where(offsets == other, 1.0, factor)
+    return weights
+
+
+OFFSETS = np.arange(-FINE, FINE + 1) / FINE
+"""Fine places from one grid step before the best grid point to one after."""
+
+FINE_WEIGHTS = lagrange_weights(np.arange(POINTS)[:, None] + OFFSETS, POINTS)
+"""[POINTS, fine, POINTS] weights of a window of grid points at the fine places around each of its points."""
+
+
+@dataclass(frozen=True, slots=True)
+class ShapeTable:
+    """One family over its grid of shapes: K columns, the last coordinate running fastest."""
+
+    family: Family
+    columns: FloatArray
+    """[K, 2 grid] quantiles less the median, over the range from 10 % to 90 %."""
+    median: FloatArray
+    """[K]"""
+    log_range: FloatArray
+    """[K] logarithm of the range from 10 % to 90 %."""
+    counts: tuple[int, ...]
+    """Grid points in each coordinate."""
+
+
+@dataclass(frozen=True, slots=True)
+class BestShape:
+    """The straightest member of a family for each of C channels."""
+
+    r: FloatArray
+    coordinates: FloatArray
+    """[C, shapes] place on the grid, in steps."""
+    mean: FloatArray
+    """[C] mean of the standard quantiles at the channel's positions."""
+    length: FloatArray
+    """[C] root of the sum of squared deviations of the standard quantiles."""
+
+
+@lru_cache(maxsize=32)
+def shape_table(name: str, start: int) -> ShapeTable:
+    """The table of the named family, on the grid from its point start."""
+    family = family_named(name)
+    axes = [shape.value(shape.coordinates()) for shape in family.shapes]
+    shapes = [axis.reshape(-1, 1) for axis in np.meshgrid(*axes, indexing="ij")]
+    low, median, high = family.quantile(SPREAD, *shapes).T
+    halves = [family.quantile(u[start:], *shapes) for u in (LOWER, UPPER)]
+    columns = (np.concatenate(halves, axis=1) - median[:, None]) / (high - low)[:, None]
+    return ShapeTable(family, columns, median, np.log(high - low), tuple(axis.size for axis in axes))
+
+
+def best_shape(x: OnGrid, table: ShapeTable) -> BestShape:
+    """Find the straightest member of a family for every channel."""
+    at_grid = products(x, table.columns.T)
+    each, start = np.arange(x.members.size), np.argmax(at_grid.r, axis=1)
+    steps = np.stack(np.unravel_index(start, table.counts), axis=1)
+    refined = _climbed(at_grid.r.reshape(-1, *table.counts), steps)
+    members, weights = neighbours(table.counts, refined)
+    parts = [_interpolated(x, table, members, weights, first) for first in range(0, each.size, CHUNK)]
+    r, mean, length = (np.concatenate(part) for part in zip(*parts, strict=True))
+    median = (weights * table.median[members]).sum(axis=1)
+    breadth = np.exp((weights * table.log_range[members]).sum(axis=1))
+    # A grid point may be as good as the place found between them, for instance at the edge of the grid.
+    worse = r < at_grid.r[each, start]
+    grid_breadth = np.exp(table.log_range[start])
+    return BestShape(
+        r=np.where(worse, at_grid.r[each, start], r),
+        coordinates=np.where(worse[:, None], steps, refined),
+        mean=np.where(worse, table.median[start] + grid_breadth * at_grid.mean[each, start], median + breadth * mean),
+        length=np.where(worse, grid_breadth * at_grid.length[each, start], breadth * length),
+    )
+
+
+def _climbed(r: FloatArray, at: IntArray) -> FloatArray:
+    """The maximum that is reached from the best grid point, in a few moves where a ridge runs between grid points."""
+    found = _maximum(r, at)
+    for _ in range(MOVES):
+        moved = np.flatnonzero(np.any(np.abs(found - at) > 0.99, axis=1))
+        at = np.round(found).astype(np.int64)
+        if moved.size:
+            found[moved] = _maximum(r[moved], at[moved])
+    return found
+
+
+def _maximum(r: FloatArray, at: IntArray) -> FloatArray:
+    """Where r, [C, grid...] interpolated between grid points, is largest near the best of them: float64[C, d]."""
+    counts = np.array(r.shape[1:])
+    first = np.clip(at - POINTS // 2 + 1, 0, counts - POINTS)
+    index = first[:, :, None] + np.arange(POINTS)
+    each = np.arange(at.shape[0])
+    places = at[:, :, None] + OFFSETS
+    weights = FINE_WEIGHTS[at - first]
+    if at.shape[1] == 1:
+        fine = np.matmul(weights[:, 0], r[each[:, None], index[:, 0]][:, :, None])[:, :, 0]
+    else:
+        window = r[each[:, None, None], index[:, 0, :, None], index[:, 1, None, :]]
+        fine = np.matmul(np.matmul(weights[:, 0], window), weights[:, 1].transpose(0, 2, 1))
+    for axis, count in enumerate(counts):
+        off_grid = (places[:, axis] < 0.0) | (places[:, axis] > count - 1.0)
+        fine[off_grid if fine.ndim == 2 else _lines(off_grid, axis, fine)] = -1.0
+    best = np.stack(np.unravel_index(np.argmax(fine.reshape(each.size, -1), axis=1), fine.shape[1:]), axis=1)
+    step = _towards_vertex(fine, best) / FINE
+    return np.clip(np.take_along_axis(places, best[:, :, None], axis=2)[:, :, 0] + step, 0.0, counts - 1.0)
+
+
+def _lines(off_grid: NDArray[np.bool_], axis: int, fine: FloatArray) -> NDArray[np.bool_]:
+    """The places of two coordinates, [C, fine, fine], of which the one on `axis` is off the grid."""
+    lines = off_grid[:, :, None] if axis == 0 else off_grid[:, None, :]
+    return np.broadcast_to(lines, fine.shape)
+
+
+def _towards_vertex(fine: FloatArray, best: IntArray) -> FloatArray:
+    """From the best of fine places, int64[C, d], to the vertex of a quadratic through its neighbours, in fine steps."""
+    inner = np.clip(best, 1, np.array(fine.shape[1:]) - 2)
+    each = np.arange(best.shape[0])
+
+    def value(*offsets: int) -> FloatArray:
+        return np.asarray(fine[(each, *(inner + np.array(offsets)).T)], dtype=np.float64)
+
+    step = _vertex(value(-1), value(0), value(1))[:, None] if best.shape[1] == 1 else _vertex_2d(value)
+    return np.where(np.any(inner != best, axis=1, keepdims=True), 0.0, np.clip(step, -1.0, 1.0))
+
+
+def _vertex(before: FloatArray, centre: FloatArray, after: FloatArray) -> FloatArray:
+    """Where a parabola through three evenly spaced values is highest, from the middle one; 0 if it has no top."""
+    bend = before - 2.0 * centre + after
+    return np.where(bend < 0.0, -0.5 * (after - before) / np.where(bend < 0.0, bend, -1.0), 0.0)
+
+
+def _vertex_2d(value: Callable[[int, int], FloatArray]) -> FloatArray:
+    """The same for a quadratic in two coordinates."""
+    centre = value(0, 0)
+    left, right, down, up = value(-1, 0), value(1, 0), value(0, -1), value(0, 1)
+    slope = 0.5 * np.stack([right - left, up - down], axis=1)
+    bend = np.stack([left - 2.0 * centre + right, down - 2.0 * centre + up], axis=1)
+    twist = 0.25 * (value(1, 1) - value(1, -1) - value(-1, 1) + value(-1, -1))
+    determinant = bend[:, 0] * bend[:, 1] - twist**2
+    peaked = (determinant > 0.0) & (bend[:, 0] < 0.0)
+    newton = np.stack(
+        [twist * slope[:, 1] - bend[:, 1] * slope[:, 0], twist * slope[:, 0] - bend[:, 0] * slope[:, 1]], axis=1
+    )
+    return np.where(peaked[:, None], newton / np.where(peaked, determinant, 1.0)[:, None], 0.0)
+
+
+def neighbours(counts: tuple[int, ...], at: FloatArray) -> tuple[IntArray, FloatArray]:
+    """Columns, int64[C, P], and weights, float64[C, P], that interpolate at grid places, float64[C, d]."""
+    members = np.zeros((at.shape[0], 1), dtype=np.int64)
+    weights = np.ones((at.shape[0], 1))
+    for axis, count in enumerate(counts):
+        first = np.clip(np.floor(at[:, axis]).astype(np.int64) - POINTS // 2 + 1, 0, count - POINTS)
+        lagrange = lagrange_weights(at[:, axis] - first, POINTS)
+        index = first[:, None] + np.arange(POINTS)
+        members = (members[:, :, None] * count + index[:, None, :]).reshape(at.shape[0], -1)
+        weights = (weights[:, :, None] * lagrange[:, None, :]).reshape(at.shape[0], -1)
+    return members, weights
+
+
+def _interpolated(
+    x: OnGrid, table: ShapeTable, members: IntArray, weights: FloatArray, first: int
+) -> tuple[FloatArray, FloatArray, FloatArray]:
+    """r, mean and length of the members of a family interpolated for each channel, for one chunk of channels."""
+    part = slice(first, first + CHUNK)
+    quantiles = np.matmul(weights[part, None, :], table.columns[members[part]])[:, 0]
+    ones = x.ones[x.which[part]]
+    sums = np.einsum("cg,cg->c", ones, quantiles)
+    mean = sums / x.sizes[x.which[part]]
+    length = np.sqrt(np.einsum("cg,cg,cg->c", ones, quantiles, quantiles) - mean * sums)
+    cross = np.einsum("cg,cg->c", x.readings[part], quantiles) - x.mean[part] * sums
+    return cross / (x.length[part] * length), mean, length
