@@ -10,6 +10,8 @@ from numpy.typing import NDArray
 _GLANCED_ROWS = 256
 _FEWEST_RISING = 3
 _BATCH_READINGS = 8_000_000
+_STEADY = 8 * np.finfo(np.float64).eps
+"""How far, relative to the largest reading, decimal steps such as 0.1 may stray from one line in binary."""
 _TIME = re.compile(r"time|date|epoch|clock|elapsed", re.IGNORECASE)
 
 
@@ -74,8 +76,18 @@ def _reason(readings: NDArray[np.float64], name: str) -> str:
         return f"constant: every reading is {float(known[0])!r}"
     if len(known) < max(len(readings), _FEWEST_RISING):
         return ""
-    if float(known[0]).is_integer() and (known[1:] == known[:-1] + 1).all():
-        return "a row counter: it goes up by 1 from row to row"
+    if step := _steady_step(known):
+        return f"a row counter: it goes up by {step:.12g} from row to row"
     if _TIME.search(name) and (known[1:] > known[:-1]).all():
         return "time stamps: they rise from row to row, and the name says time"
     return ""
+
+
+def _steady_step(known: NDArray[np.float64]) -> float:
+    """The step by which the readings rise from every row to the next; 0 when it is not always the same."""
+    first, last = float(known[0]), float(known[-1])
+    if not (np.isfinite(first) and np.isfinite(last) and last > first):
+        return 0.0
+    step = last / (len(known) - 1) - first / (len(known) - 1)
+    steady = np.abs(known - (first + step * np.arange(len(known)))) <= _STEADY * max(abs(first), abs(last))
+    return step if bool(steady.all() and (known[1:] > known[:-1]).all()) else 0.0

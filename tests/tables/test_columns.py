@@ -48,6 +48,9 @@ def reason(folder: Path, column: pl.Series, plan: Plan | None = None) -> str:
         (["7", " 7"] * 150, "constant: every reading is 7.0"),
         (list(range(ROWS)), "a row counter: it goes up by 1 from row to row"),
         ([value + 17.0 for value in range(ROWS)], "a row counter: it goes up by 1 from row to row"),
+        ([25 * value for value in range(ROWS)], "a row counter: it goes up by 25 from row to row"),
+        ([0.1 * value for value in range(ROWS)], "a row counter: it goes up by 0.1 from row to row"),
+        ([value + 0.5 for value in range(ROWS)], "a row counter: it goes up by 1 from row to row"),
         ([str(value) for value in range(ROWS)], "a row counter: it goes up by 1 from row to row"),
     ],
 )
@@ -66,8 +69,9 @@ def test_rising_readings_named_as_time_are_time_stamps(tmp_path: Path, name: str
     [
         ("rise time [ms]", VARYING),
         ("wear", [value**1.01 for value in range(ROWS)]),
-        ("steps", [2.0 * value for value in range(ROWS)]),
-        ("halves", [value + 0.5 for value in range(ROWS)]),
+        ("nearly steps", [2.0 * value + 1e-9 * (value % 2) for value in range(ROWS)]),
+        ("falling", [-2.0 * value for value in range(ROWS)]),
+        ("steps at infinity", [*map(float, range(ROWS - 1)), float("inf")]),
         ("gap", [*range(150), None, *range(151, ROWS)]),
         ("late jump", [*range(ROWS - 1), 0]),
         ("late change", [5.0] * (ROWS - 1) + [6.0]),
