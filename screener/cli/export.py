@@ -1,5 +1,6 @@
 """`screener export`: the results in a file, by its extension."""
 
+from contextlib import suppress
 from pathlib import Path
 from typing import Any
 
@@ -23,9 +24,9 @@ def command(ctx: click.Context, /, path: Path, file: Path, *, flagged_only: bool
     from screener.cli.source import exit_code, finished_run
     from screener.runs import export
 
+    _refuse_source(file, path)
     with finished_run(ctx, path, given) as run:
-        if any(_are_one(file, source) for source in (path, run.path, run.facts.path)):
-            raise click.UsageError(f"{str(file)!r} is what the results come from. Give another name to export to.")
+        _refuse_source(file, run.path, run.facts.path)
         results = run.results()
         rows = results.filter(results["verdict"] == "flagged") if flagged_only else results
         export(rows, run.facts, run.plan, file)
@@ -33,9 +34,9 @@ def command(ctx: click.Context, /, path: Path, file: Path, *, flagged_only: bool
         ctx.exit(exit_code(run, results))
 
 
-def _are_one(one: Path, other: Path) -> bool:
-    """Whether two paths lead to the same file."""
-    try:
-        return one.samefile(other)
-    except OSError:
-        return False
+def _refuse_source(file: Path, *sources: Path) -> None:
+    """Raise UsageError when the export would replace what it comes from."""
+    for source in sources:
+        with suppress(OSError):
+            if file.samefile(source):
+                raise click.UsageError(f"{str(file)!r} is what the results come from. Give another name to export to.")

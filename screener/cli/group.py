@@ -120,5 +120,5 @@ def _exit_code() -> int:
         tell(f"screener: {error}")
         return error.exit_code
     except (click.Abort, KeyboardInterrupt):
-        tell("screener: interrupted.")
+        tell("screener: interrupted; the same command goes on where it was.")
         return INTERRUPTED

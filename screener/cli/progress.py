@@ -4,8 +4,8 @@ import signal
 import sys
 import threading
 import time
-from collections.abc import Callable, Iterator
-from contextlib import contextmanager
+from collections.abc import Callable, Generator, Iterator
+from contextlib import closing, contextmanager
 from types import FrameType
 
 from screener.cli.output import path_text, tell
@@ -25,20 +25,26 @@ class StoppedError(ScreenerError):
     exit_code = 130
 
 
-def watched(begin: Callable[[Callable[[], bool]], Iterator[Event]]) -> TableOpened:
+Begin = Callable[[Callable[[], bool]], Generator[Event, None, None]]
+"""Begins a run; its argument says whether the user has asked it to stop."""
+
+
+def watched(begin: Begin) -> TableOpened:
     """Go through a run's events, telling of them; the opening event. Ctrl-C ends the run between two blocks.
 
     Raises: StoppedError when that happened.
     """
     stop = threading.Event()
-    events = begin(stop.is_set)
-    opened = next(events)
-    assert isinstance(opened, TableOpened)
-    tell(*opening_lines(opened))
-    progress = Progress(opened)
-    with _noting_interrupts(stop):
-        for event in events:
-            progress.note(event)
+    with closing(begin(stop.is_set)) as events:
+        opened = next(events)
+        assert isinstance(opened, TableOpened)
+        tell(*opening_lines(opened))
+        progress = Progress(opened)
+        with _noting_interrupts(stop):
+            for event in events:
+                progress.note(event)
+    if progress.stopped:
+        raise StoppedError(f"Stopped after {progress.reached}; the same command goes on from there.")
     return opened
 
 
@@ -49,6 +55,7 @@ class Progress:
         self._before = self._done = opened.channels_done
         self._total = len(opened.facts.channels)
         self._started = self._told = time.monotonic()
+        self.stopped = False
         self._rewriting = sys.stderr is not None and sys.stderr.isatty()
 
     def note(self, event: Event) -> None:
@@ -62,9 +69,12 @@ class Progress:
         elif isinstance(event, RunFinished):
             if self._rewriting:
                 tell("")
-            if event.cancelled:
-                far = f"{self._done:,} of {self._total:,} channels"
-                raise StoppedError(f"Stopped after {far}; the same command goes on from there.")
+            self.stopped = event.cancelled
+
+    @property
+    def reached(self) -> str:
+        """How many channels were tried."""
+        return f"{self._done:,} of {self._total:,} channels"
 
     def _tell_progress(self) -> None:
         now = time.monotonic()

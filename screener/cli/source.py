@@ -1,7 +1,7 @@
 """Where the results of a command come from: a run file as it is, or a table that is scored first."""
 
 import shlex
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Generator
 from dataclasses import fields
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
@@ -16,6 +16,7 @@ from screener.records import Event, Plan
 if TYPE_CHECKING:
     import polars as pl
 
+    from screener.cli.progress import Begin
     from screener.runs import RunFile
 
 STORE_HEAD = b"SQLite format 3\x00"
@@ -55,13 +56,11 @@ def scored(path: Path, given: dict[str, Any], run_path: Path | None) -> Path:
     return watched(beginning(path, given, run_path)).run_path
 
 
-def beginning(
-    path: Path, given: dict[str, Any], run_path: Path | None
-) -> Callable[[Callable[[], bool]], Iterator[Event]]:
+def beginning(path: Path, given: dict[str, Any], run_path: Path | None) -> "Begin":
     """What begins the run of a table when it is called with a function that says whether to stop."""
     plan = plan_from(given)
 
-    def begin(cancelled: Callable[[], bool]) -> Iterator[Event]:
+    def begin(cancelled: Callable[[], bool]) -> Generator[Event, None, None]:
         from screener.runs import RunFile
         from screener.screening.start import start
         from screener.screening.workers import usable_cores

@@ -42,7 +42,7 @@ def start(
                 run.store(event.scores)
             elif isinstance(event, BlockFailed):
                 run.store_failure(event.span, event.message)
-            elif isinstance(event, RunFinished) and not event.cancelled:
+            elif isinstance(event, RunFinished) and not (event.cancelled or run.finished):
                 run.finish()
             yield event
 
