@@ -9,6 +9,8 @@ from numpy.typing import NDArray
 
 _GLANCED_ROWS = 256
 _FEWEST_RISING = 3
+_FEWEST_STEADY = 5
+"""Three readings may rise evenly by chance, unless by 1."""
 _BATCH_READINGS = 8_000_000
 _STEADY = 8 * np.finfo(np.float64).eps
 """How far, relative to the largest reading, decimal steps such as 0.1 may stray from one line in binary."""
@@ -76,7 +78,8 @@ def _reason(readings: NDArray[np.float64], name: str) -> str:
         return f"constant: every reading is {float(known[0])!r}"
     if len(known) < max(len(readings), _FEWEST_RISING):
         return ""
-    if step := _steady_step(known):
+    step = _steady_step(known)
+    if step and (step == 1 or len(known) >= _FEWEST_STEADY):
         return f"a row counter: it goes up by {step:.12g} from row to row"
     if _TIME.search(name) and (known[1:] > known[:-1]).all():
         return "time stamps: they rise from row to row, and the name says time"
