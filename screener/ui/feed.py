@@ -188,9 +188,10 @@ class Reader:
                 self._serve(run)
 
     def _serve(self, run: RunFile) -> None:
-        """Wait for the next task and do it."""
+        """Do the next task; without one, wait until something changes or results are due."""
         with self._wake:
-            self._wake.wait_for(self._has_task, timeout=self._pause())
+            if not self._has_task():
+                self._wake.wait(self._pause())
             wanted, self._wanted = self._wanted, None
             export = self._exports.pop(0) if wanted is None and self._exports else None
             read = wanted is None and export is None and self._results_are_due()

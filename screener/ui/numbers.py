@@ -16,7 +16,7 @@ def count_text(value: int | None) -> str:
         return separated
     if value < 10**COUNT_LIMIT:
         return str(value)
-    return f"{value / 1e6:.{2 if value < 10**8 else 1 if value < 10**10 else 0}f}M"
+    return f"{value / 1e6:.{2 if value < 10**8 else 1 if value < 10**9 else 0}f}M"
 
 
 def p_text(value: float | None) -> str:

@@ -109,6 +109,7 @@ async def test_a_channel_is_found_while_its_name_is_typed_and_the_next_by_n(revi
         await pilot.press("slash", *"zz")
         await shows(pilot, "No channel here has 'zz' in its name.")
         await pilot.press("escape", "q")
+    assert reviewed.return_value == 0
 
 
 async def test_enter_opens_the_plot_over_the_table_and_escape_closes_it(reviewed: ScreenerApp) -> None:

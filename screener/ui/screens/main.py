@@ -14,8 +14,9 @@ from textual.screen import Screen
 from screener.ui import messages
 from screener.ui.captions import order_words, place_words, title
 from screener.ui.columns import COLUMNS
-from screener.ui.drawing import Drawing, Wanted
+from screener.ui.drawing import Wanted
 from screener.ui.feed import Feed
+from screener.ui.keys import ACTIONS, PLOT_KEYS, TABLE_KEYS, WHILE_ASKING, WIDE_KEYS
 from screener.ui.numbers import seconds_text
 from screener.ui.palette import NOTICE, PLAIN, QUIET, STRONG
 from screener.ui.screens.help import help_page
@@ -38,47 +39,14 @@ WIDE = 110
 LEAST_WIDTH, LEAST_HEIGHT = 60, 15
 FIND, EXPORT = "find", "export"
 
-TABLE_KEYS = (
-    ("Enter", "plot", "open_plot"),
-    ("/", "find", "find"),
-    ("f", "flagged", "flagged_only"),
-    ("s S", "sort", "sort_next"),
-    ("e", "export", "export"),
-    ("i", "input", "reading"),
-    ("?", "help", "help"),
-    ("q", "quit", "quit"),
-)
-TURN_KEY = ("[ ]", "family", "turn_family(1)")
-PLOT_KEYS = (("Esc", "table", "back"), TURN_KEY, *(key for key in TABLE_KEYS[1:] if key[0] != "e"))
-WIDE_KEYS = (TABLE_KEYS[0], TURN_KEY, *TABLE_KEYS[1:])
-
 
 class MainScreen(Screen[None]):
     """Connects the table, the plot and the feed."""
 
     AUTO_FOCUS = ""
+    # With priority: keys are then acted upon in the order typed, also when many arrive together over a slow line.
     BINDINGS: ClassVar[list[BindingType]] = [
-        Binding("enter", "open_plot", "Plot of this channel over the table"),
-        Binding("escape", "back", "Back to the table"),
-        Binding("right_square_bracket,right", "turn_family(1)", "Next family in the plot"),
-        Binding("left_square_bracket,left", "turn_family(-1)", "Previous family in the plot"),
-        Binding("slash", "find", "Find a channel by name"),
-        Binding("n", "find_next", "Find the next one"),
-        Binding("f", "flagged_only", "Only flagged channels, or all"),
-        Binding("s", "sort_next", "Sort by the next column"),
-        Binding("S,upper_s", "reverse", "Reverse the order"),
-        Binding("0", "sort_by(0)", "Sort in table order"),
-        *(Binding(str(k), f"sort_by({k})", f"Sort by {c.title or 'verdict'}") for k, c in enumerate(COLUMNS, start=1)),
-        Binding("e", "export", "Export these rows to a file"),
-        Binding("i", "reading", "What was read and set aside"),
-        Binding("question_mark", "help", "Help"),
-        Binding("q", "quit", "Quit"),
-        Binding("down,j", "move(1)", "Down", show=False),
-        Binding("up,k", "move(-1)", "Up", show=False),
-        Binding("pagedown", "page(1)", "Page down", show=False),
-        Binding("pageup", "page(-1)", "Page up", show=False),
-        Binding("home", "move_to(0)", "First row", show=False),
-        Binding("end", "move_to(-1)", "Last row", show=False),
+        *(Binding(keys, action, description, priority=True) for keys, action, description in ACTIONS),
     ]
 
     def __init__(self, source_title: str, feed: Feed, *, unicode: bool) -> None:
@@ -86,15 +54,21 @@ class MainScreen(Screen[None]):
         self._source_title = source_title
         self._feed = feed
         self._unicode = unicode
+        self._table = ChannelTable(unicode=unicode)
+        self._panel = PlotPanel(unicode=unicode)
+        self._prompt = Prompt()
         self._opened: messages.RunOpened | None = None
         self._results: pl.DataFrame | None = None
         self._rows: pl.DataFrame | None = None
         self._sort: str | None = None
         self._falling = self._flagged_only = False
         self._family = ""
-        self._drawing: Drawing | None = None
+        self._families: tuple[str, ...] = ()
+        self._turns = 0
+        """Turns of the family asked for before the families were known."""
         self._searched = ""
         self._lost: list[str] = []
+        self._notice = ""
         self._to_replace: Path | None = None
 
     def compose(self) -> ComposeResult:
@@ -103,12 +77,16 @@ class MainScreen(Screen[None]):
         yield Lines(id="sentence")
         yield Lines(id="progress")
         with Container(id="body"):
-            yield ChannelTable(unicode=self._unicode)
-            yield PlotPanel(unicode=self._unicode)
+            yield self._table
+            yield self._panel
         yield Lines(id="status")
-        yield Prompt()
+        yield self._prompt
         yield KeyLine(id="keys")
         yield Lines(id="too-small")
+
+    def check_action(self, action: str, parameters: tuple[object, ...]) -> bool:
+        """While something is asked, keys belong to the field."""
+        return not self._prompt.purpose or action in WHILE_ASKING or not hasattr(self, f"action_{action}")
 
     def on_mount(self) -> None:
         """Say what is coming."""
@@ -164,8 +142,10 @@ class MainScreen(Screen[None]):
         """Show the plot, unless the cursor has gone on."""
         channel = self._table.channel
         if channel is not None and channel["position"] == event.drawing.wanted.position:
-            self._drawing = event.drawing
-            self.query_one(PlotPanel).draw(event.drawing)
+            self._panel.draw(event.drawing)
+            self._families = event.drawing.families
+            if self._turns:
+                self.action_turn_family(0)
 
     def exported(self, event: messages.Exported) -> None:
         """Say what was written."""
@@ -195,15 +175,19 @@ class MainScreen(Screen[None]):
             self._show_keys()
 
     def action_back(self) -> None:
-        """Show the table again."""
+        """Drop the question, or show the table again."""
+        if self._prompt.purpose:
+            self._close_prompt()
+            return
         self.remove_class("plot-over")
         self._show_keys()
 
     def action_turn_family(self, by: int) -> None:
         """Hold the channel against another family."""
-        if self._drawing is not None and self._drawing.families:
-            families = self._drawing.families
-            self._family = families[(self._drawing.place + by) % len(families)]
+        self._turns += by
+        if self._families:
+            place = self._families.index(self._family) + self._turns if self._family in self._families else 0
+            self._family, self._turns = self._families[place % len(self._families)], 0
             self._want_plot()
 
     def action_move(self, by: int) -> None:
@@ -230,12 +214,12 @@ class MainScreen(Screen[None]):
     def action_reverse(self) -> None:
         """Turn the order round."""
         self._falling = not self._falling
-        self._show_rows()
+        self._rearrange()
 
     def action_flagged_only(self) -> None:
         """Leave the others out, or take them in again."""
         self._flagged_only = not self._flagged_only
-        self._show_rows()
+        self._rearrange()
 
     def action_find(self) -> None:
         """Ask for a name."""
@@ -282,13 +266,12 @@ class MainScreen(Screen[None]):
         elif event.text.strip():
             self._export_to(Path(event.text.strip()).expanduser())
 
-    @on(Prompt.Closed)
     def _close_prompt(self) -> None:
-        self.query_one(Prompt).close()
+        self._prompt.close()
         self.query_one(KeyLine).display = True
 
     def _ask(self, purpose: str, question: str, text: str = "") -> None:
-        self.query_one(Prompt).ask(purpose, question, text)
+        self._prompt.ask(purpose, question, text)
         self.query_one(KeyLine).display = False
 
     def _export_to(self, path: Path) -> None:
@@ -302,10 +285,6 @@ class MainScreen(Screen[None]):
         self._feed.export(self._rows, path)
 
     # What follows from it all.
-
-    @property
-    def _table(self) -> ChannelTable:
-        return self.query_one(ChannelTable)
 
     def _arrangement(self) -> Arrangement:
         from screener.ui.rows import Arrangement
@@ -326,9 +305,14 @@ class MainScreen(Screen[None]):
         if self._table.channel != channel:
             self._want_plot()
 
+    def _rearrange(self) -> None:
+        """Show the rows as the user has just asked for; the last notice has been read."""
+        self._notice = ""
+        self._show_rows()
+
     def _move_to(self, row: int) -> None:
         """Put the cursor on a row; status and plot follow at once, in the same repaint."""
-        before = self._table.cursor
+        self._notice, before = "", self._table.cursor
         self._table.move_to(row)
         self._show_status()
         if self._table.cursor != before:
@@ -341,7 +325,7 @@ class MainScreen(Screen[None]):
         else:
             self._sort = key
             self._falling = any(column.key == key and column.falling_first for column in COLUMNS)
-        self._show_rows()
+        self._rearrange()
 
     def _go_to(self, text: str, start: int) -> None:
         if self._rows is None:
@@ -356,9 +340,9 @@ class MainScreen(Screen[None]):
 
     def _want_plot(self) -> None:
         """Ask for the plot of the channel under the cursor, if there is room to see it."""
-        channel, panel = self._table.channel, self.query_one(PlotPanel)
-        width, height = panel.room
-        if channel is not None and panel.display and width > 0 and height > 0:
+        channel = self._table.channel
+        width, height = self._panel.room
+        if channel is not None and self._panel.display and width > 0 and height > 0:
             self._feed.draw(Wanted(channel["position"], channel["n"] or 0, self._family, width, height))
 
     def _open_page(self, page: Page) -> None:
@@ -366,13 +350,17 @@ class MainScreen(Screen[None]):
 
     def _say(self, sentence: str) -> None:
         """Show a notice until the cursor moves or the order changes."""
-        self._line("status", plain(sentence, NOTICE))
+        self._notice = sentence
+        self._show_status()
 
     def _show_keys(self) -> None:
         beside = WIDE_KEYS if self.has_class("wide") else TABLE_KEYS
         self.query_one(KeyLine).show_keys(PLOT_KEYS if self.has_class("plot-over") else beside)
 
     def _show_status(self) -> None:
+        if self._notice:
+            self._line("status", plain(self._notice, NOTICE))
+            return
         place = place_words(self._table.cursor, self._table.row_count, flagged_only=self._flagged_only)
         order = order_words(self._sort, falling=self._falling)
         channel = self._table.channel

@@ -24,11 +24,11 @@ class Page(ModalScreen[None]):
     """Shows wrapped paragraphs until Esc."""
 
     BINDINGS: ClassVar[list[BindingType]] = [
-        Binding("escape,q,question_mark,i,enter", "close", "Close this page"),
-        Binding("down", "scroll(1)", "Down", show=False),
-        Binding("up", "scroll(-1)", "Up", show=False),
-        Binding("pagedown,space", "page(1)", "Page down", show=False),
-        Binding("pageup", "page(-1)", "Page up", show=False),
+        Binding("escape,q,question_mark,i,enter", "close", "Close this page", priority=True),
+        Binding("down", "scroll(1)", "Down", show=False, priority=True),
+        Binding("up", "scroll(-1)", "Up", show=False, priority=True),
+        Binding("pagedown,space", "page(1)", "Page down", show=False, priority=True),
+        Binding("pageup", "page(-1)", "Page up", show=False, priority=True),
     ]
 
     def __init__(self, paragraphs: Sequence[Line], *, id: str) -> None:  # noqa: A002 - the name that every screen has

@@ -3,14 +3,38 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import ClassVar
 
 from textual import events, on
 from textual.app import ComposeResult
+from textual.binding import Binding
 from textual.containers import Horizontal
 from textual.message import Message
 from textual.widgets import Input
 
 from screener.ui.widgets.lines import Lines, plain
+
+
+class Field(Input):
+    """A field that acts on every key in the order typed.
+
+    The library's own acts on letters at once but on other keys only when nobody else wanted them: of keys that arrive
+    together, as they do over a slow line, a backspace would come after the letters typed behind it.
+    """
+
+    ACTIONS: ClassVar[dict[str, str]] = {
+        key: binding.action
+        for binding in Input.BINDINGS
+        if isinstance(binding, Binding)
+        for key in binding.key.split(",")
+    }
+
+    async def on_key(self, event: events.Key) -> None:
+        """Run the key's action now, if it has one."""
+        if event.key in self.ACTIONS:
+            event.stop()
+            event.prevent_default()
+            await self.run_action(self.ACTIONS[event.key])
 
 
 class Prompt(Horizontal):
@@ -30,18 +54,13 @@ class Prompt(Horizontal):
         purpose: str
         text: str
 
-    @dataclass
-    class Closed(Message):
-        """The question was dropped."""
-
-        purpose: str
-
     purpose = ""
+    """What is asked for; empty while nothing is."""
 
     def compose(self) -> ComposeResult:
         """A label and the field."""
         yield Lines(id="question")
-        yield Input(id="answer", compact=True, select_on_focus=False)
+        yield Field(id="answer", compact=True, select_on_focus=False)
 
     def ask(self, purpose: str, question: str, text: str = "") -> None:
         """Appear, with this question and this text to begin with."""
@@ -49,15 +68,17 @@ class Prompt(Horizontal):
         label = self.query_one("#question", Lines)
         label.styles.width = len(question) + 1
         label.show([plain(question)])
-        field = self.query_one("#answer", Input)
+        field = self.query_one(Field)
         with field.prevent(Input.Changed):
             field.value = text
         field.cursor_position = len(text)
         self.display = True
-        field.focus()
+        # Not field.focus(), which waits: keys that have arrived already are meant for the field.
+        self.screen.set_focus(field)
 
     def close(self) -> None:
         """Disappear."""
+        self.purpose = ""
         self.display = False
         self.screen.set_focus(None)
 
@@ -70,10 +91,3 @@ class Prompt(Horizontal):
     def _submitted(self, event: Input.Submitted) -> None:
         event.stop()
         self.post_message(self.Answered(self.purpose, event.value))
-
-    def on_key(self, event: events.Key) -> None:
-        """Esc drops the question."""
-        if event.key == "escape":
-            event.stop()
-            self.close()
-            self.post_message(self.Closed(self.purpose))
