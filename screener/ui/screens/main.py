@@ -61,7 +61,7 @@ class MainScreen(Screen[None]):
         self._results: pl.DataFrame | None = None
         self._rows: pl.DataFrame | None = None
         self._sort: str | None = None
-        self._falling = self._flagged_only = False
+        self._falling = self._flagged_only = self._row_chosen = False
         self._family = ""
         self._families: tuple[str, ...] = ()
         self._turns = 0
@@ -299,7 +299,8 @@ class MainScreen(Screen[None]):
 
         channel = self._table.channel
         self._rows = arranged(self._results, self._arrangement())
-        cursor = row_of(self._rows, channel["position"]) if channel is not None else None
+        # Blocks may come in any order: until the user has chosen a row, the cursor stays on the first.
+        cursor = row_of(self._rows, channel["position"]) if channel is not None and self._row_chosen else None
         self._table.show(self._rows, cursor=cursor, sort=(self._sort, self._falling))
         self._show_status()
         if self._table.channel != channel:
@@ -312,7 +313,7 @@ class MainScreen(Screen[None]):
 
     def _move_to(self, row: int) -> None:
         """Put the cursor on a row; status and plot follow at once, in the same repaint."""
-        self._notice, before = "", self._table.cursor
+        self._notice, before, self._row_chosen = "", self._table.cursor, True
         self._table.move_to(row)
         self._show_status()
         if self._table.cursor != before:

@@ -6,7 +6,7 @@ from screener.ui.numbers import seconds_text
 from screener.ui.palette import DONE, PLAIN, QUIET
 from screener.ui.widgets.lines import Line
 
-BAR_SHARE = 0.3
+BAR_SHARE = 0.25
 """Of the width, what the bar takes."""
 
 
