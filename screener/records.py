@@ -50,6 +50,24 @@ class Plan:
     missing: tuple[str, ...] = ()
     """Cell texts that mean a missing reading, beside the usual ones."""
     seed: int = 1
+    separator: str = ""
+    """What stands between the cells of a text table, a character or its name; empty means as found."""
+    decimal: str = ""
+    """The decimal sign of a text table, `.` or `,`; empty means as voted by its cells."""
+    header_line: int = -1
+    """The line of a text table that holds the names, from 1; 0 means there is none, -1 as found."""
+    units_line: int = -1
+    """The line of a text table that holds the units, from 1; 0 means there is none, -1 as found."""
+    encoding: str = ""
+    """The encoding of a text table; empty means as found."""
+    comment: str = ""
+    """How a line begins that is no row of a text table; empty means as found."""
+    shape: str = ""
+    """What holds a channel: `columns`, `rows`, or `long` (each row a name and a value); empty means as found."""
+    expect: tuple[str, ...] = ()
+    """`PATTERN=FAMILY`: channels of such names are held against that family, instead of `family`; first match."""
+    part: str = ""
+    """The sheet, group or variable of a file that holds several; empty means the first that is a table."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -61,6 +79,10 @@ class Channel:
     name: str
     """Unique within the table and safe to show: control characters made visible."""
     unit: str = ""
+    below: int = 0
+    """Readings only known to lie below a detection limit (`<0.5`); each stands in the readings as the limit itself."""
+    above: int = 0
+    """Readings only known to lie above a detection limit (`>100`); each stands in the readings as the limit itself."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -69,6 +91,35 @@ class SetAside:
 
     name: str
     reason: str
+
+
+@dataclass(frozen=True, slots=True)
+class Proposal:
+    """A value that looks like a code for a missing reading; it counts as a reading unless `Plan.missing` names it."""
+
+    value: str
+    """As `Plan.missing` takes it."""
+    channels: int
+    cells: int
+
+    def sentence(self) -> str:
+        """What the user is asked."""
+        where = "1 channel" if self.channels == 1 else f"{self.channels:,} channels"
+        cells = "1 cell" if self.cells == 1 else f"{self.cells:,} cells"
+        return (
+            f"{self.value} looks like a code for a missing reading ({cells} in {where}, far off the rest): "
+            f"it was read as a number; --missing={self.value} leaves it out."
+        )
+
+
+@dataclass(frozen=True, slots=True)
+class SourceFile:
+    """One of several files of one layout that make up a table."""
+
+    name: str
+    """Safe to show."""
+    first_row: int
+    rows: int
 
 
 @dataclass(frozen=True, slots=True)
@@ -84,6 +135,11 @@ class TableFacts:
     """Changes when the content that was read changes."""
     remarks: tuple[str, ...] = ()
     """What the reader did that the user should know, one sentence each."""
+    dialect: str = ""
+    """How the table is written, on one line: `semicolon, decimal comma, 3 preamble lines, units in line 5`."""
+    proposals: tuple[Proposal, ...] = ()
+    files: tuple[SourceFile, ...] = ()
+    """In the order of their rows; empty for a table of one file."""
 
 
 @dataclass(frozen=True, slots=True, order=True)

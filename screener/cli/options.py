@@ -53,7 +53,28 @@ JOBS = click.option("--jobs", type=click.IntRange(min=1), default=None, help="Wo
 
 def plan_options(command: Command) -> Command:
     """Add the options that make a plan, and --jobs."""
-    for option in reversed((*PLAN_OPTIONS, JOBS)):
+    for option in reversed((*PLAN_OPTIONS, *TABLE_OPTIONS, JOBS)):
+TABLE_OPTIONS = (
+    click.option("--separator", default="", metavar="SIGN", help="What separates cells, such as ; or tab.  [as found]"),
+    click.option("--decimal", default="", metavar="SIGN", help="The decimal sign, . or ,  [as voted by the cells]"),
+    click.option(
+        "--header-line", type=click.IntRange(min=-1), default=-1, metavar="LINE", help="Line of the names; 0: none."
+    ),
+    click.option(
+        "--units-line", type=click.IntRange(min=-1), default=-1, metavar="LINE", help="Line of the units; 0: none."
+    ),
+    click.option("--encoding", default="", metavar="NAME", help="Encoding of the text, such as cp1252.  [as found]"),
+    click.option("--comment", default="", metavar="SIGN", help="Lines that begin so are left out.  [as found]"),
+    click.option(
+        "--shape",
+        type=click.Choice(["columns", "rows", "long"]),
+        default=None,
+        help="Where a channel stands: a column, a row, or a name beside each value.  [as found]",
+    ),
+    click.option("--part", default="", metavar="NAME", help="Sheet, group or variable to read.  [the first table]"),
+)
+"""How a table is written, where what is found is wrong."""
+
         command = option(command)
     return command
 
@@ -75,6 +96,14 @@ def plan_from(given: dict[str, Any]) -> Plan:
 def refuse_plan_for_run(ctx: click.Context, path: Path) -> None:
     """Raise UsageError when options for a table are given together with a run file, which has its own plan."""
     options = [option for option in ctx.command.params if option.name in {*Plan.__dataclass_fields__, "run_path"}]
+        separator=given["separator"],
+        decimal=given["decimal"],
+        header_line=given["header_line"],
+        units_line=given["units_line"],
+        encoding=given["encoding"],
+        comment=given["comment"],
+        shape=given["shape"] or "",
+        part=given["part"],
     given = [option for option in options if _was_given(ctx, option)]
     if given:
         raise click.UsageError(

@@ -8,7 +8,7 @@ from datetime import UTC, datetime
 from pathlib import Path
 from typing import Any
 
-from screener.records import Channel, Control, Plan, SetAside, TableFacts
+from screener.records import Channel, Control, Plan, Proposal, SetAside, SourceFile, TableFacts
 from screener.runs.connection import SCHEMA
 from screener.runs.text import visible
 
@@ -31,8 +31,15 @@ def store_origin(connection: sqlite3.Connection, facts: TableFacts, plan: Plan, 
     created = datetime.now(UTC).isoformat(timespec="seconds")
     execute("INSERT INTO version (schema, tool, null_table, created) VALUES (?, ?, ?, ?)", (SCHEMA, *versions, created))
     execute(
-        "INSERT INTO run (plan, table_path, table_format, table_rows, fingerprint) VALUES (?, ?, ?, ?, ?)",
-        (json.dumps(asdict(plan)), os.fsencode(facts.path), facts.format, facts.rows, facts.fingerprint),
+        "INSERT INTO run (plan, table_path, table_format, table_rows, fingerprint, dialect) VALUES (?, ?, ?, ?, ?, ?)",
+        (
+            json.dumps(asdict(plan)),
+            os.fsencode(facts.path),
+            facts.format,
+            facts.rows,
+            facts.fingerprint,
+            visible(facts.dialect),
+        ),
     )
     executemany("INSERT INTO remark (position, sentence) VALUES (?, ?)", enumerate(map(visible, facts.remarks)))
     executemany(
@@ -40,8 +47,16 @@ def store_origin(connection: sqlite3.Connection, facts: TableFacts, plan: Plan, 
         ((k, visible(column.name), visible(column.reason)) for k, column in enumerate(facts.set_aside)),
     )
     executemany(
-        "INSERT INTO channel (position, name, unit) VALUES (?, ?, ?)",
-        ((c.position, visible(c.name), visible(c.unit) or None) for c in facts.channels),
+        "INSERT INTO channel (position, name, unit, below, above) VALUES (?, ?, ?, ?, ?)",
+        ((c.position, visible(c.name), visible(c.unit) or None, c.below, c.above) for c in facts.channels),
+    )
+    executemany(
+        "INSERT INTO proposal (position, value, channels, cells) VALUES (?, ?, ?, ?)",
+        ((k, visible(one.value), one.channels, one.cells) for k, one in enumerate(facts.proposals)),
+    )
+    executemany(
+        "INSERT INTO source_file (position, name, first_row, rows) VALUES (?, ?, ?, ?)",
+        ((k, visible(file.name), file.first_row, file.rows) for k, file in enumerate(facts.files)),
     )
 
 
@@ -79,20 +94,28 @@ def _like(default: object, value: object, name: str) -> Any:
 
 
 def _read_facts(connection: sqlite3.Connection) -> TableFacts:
-    path, form, rows, fingerprint = _one_row(
-        connection, "SELECT table_path, table_format, table_rows, fingerprint FROM run"
+    path, form, rows, fingerprint, dialect = _one_row(
+        connection, "SELECT table_path, table_format, table_rows, fingerprint, dialect FROM run"
     )
-    channels = connection.execute("SELECT position, name, unit FROM channel ORDER BY position")
+    channels = connection.execute("SELECT position, name, unit, below, above FROM channel ORDER BY position")
+    proposals = connection.execute("SELECT value, channels, cells FROM proposal ORDER BY position")
+    files = connection.execute("SELECT name, first_row, rows FROM source_file ORDER BY position")
     set_aside = connection.execute("SELECT name, reason FROM set_aside ORDER BY position")
     remarks = connection.execute("SELECT sentence FROM remark ORDER BY position")
     return TableFacts(
         path=Path(os.fsdecode(path)),
         format=visible(form),
         rows=int(rows),
-        channels=tuple(Channel(position, visible(name), visible(unit or "")) for position, name, unit in channels),
+        channels=tuple(
+            Channel(position, visible(name), visible(unit or ""), int(below), int(above))
+            for position, name, unit, below, above in channels
+        ),
         set_aside=tuple(SetAside(visible(name), visible(reason)) for name, reason in set_aside),
         fingerprint=visible(fingerprint),
         remarks=tuple(visible(sentence) for (sentence,) in remarks),
+        dialect=visible(dialect),
+        proposals=tuple(Proposal(visible(value), int(count), int(cells)) for value, count, cells in proposals),
+        files=tuple(SourceFile(visible(name), int(first), int(count)) for name, first, count in files),
     )
 
 

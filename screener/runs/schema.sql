@@ -22,6 +22,7 @@ CREATE TABLE run (
     table_format TEXT NOT NULL,
     table_rows INTEGER NOT NULL,
     fingerprint TEXT NOT NULL,
+    dialect TEXT NOT NULL DEFAULT '', -- how the table is written, on one line
     finished INTEGER NOT NULL DEFAULT 0
 );
 
@@ -42,7 +43,25 @@ CREATE TABLE set_aside (
 CREATE TABLE channel (
     position INTEGER PRIMARY KEY,
     name TEXT NOT NULL,
-    unit TEXT
+    unit TEXT,
+    below INTEGER NOT NULL DEFAULT 0, -- readings known only to lie below a detection limit
+    above INTEGER NOT NULL DEFAULT 0
+);
+
+-- One row per value that looks like a code for a missing reading and was read as a number.
+CREATE TABLE proposal (
+    position INTEGER PRIMARY KEY,
+    value TEXT NOT NULL,
+    channels INTEGER NOT NULL,
+    cells INTEGER NOT NULL
+);
+
+-- One row per file of a table made of several.
+CREATE TABLE source_file (
+    position INTEGER PRIMARY KEY,
+    name TEXT NOT NULL,
+    first_row INTEGER NOT NULL,
+    rows INTEGER NOT NULL
 );
 
 -- One row per span of channels that was tried. A span with a failure is tried again when the run is resumed.

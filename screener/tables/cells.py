@@ -1,5 +1,6 @@
 """What a text cell means: a number, a missing reading, or a word."""
 
+import re
 from collections.abc import Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
@@ -7,11 +8,26 @@ import polars as pl
 
 from screener.tables.names import shortlist, visible
 
-MISSING = ("NA", "N/A", "n/a", "na", "#N/A", "nan", "NaN", "NAN", "null", "NULL", "Null", "none", "None", "-", "--")
+MISSING = (
+    *("NA", "N/A", "n/a", "na", "n.a.", "#N/A", "#NA", "nan", "NaN", "NAN", "null", "NULL", "Null", "none", "None"),
+    *("-", "--", "---", "----", "–", "—", ".", "?", "#NV"),
+)
 """The cell texts, beside blank ones, that always mean a missing reading."""
+LOGGER_WORDS = frozenset({
+    *("OVER", "UNDER", "OVERFLOW", "UNDERFLOW", "OVERRANGE", "UNDERRANGE", "OVERLOAD", "OVLD", "OVL", "OL", "O.L"),
+    *("+OVER", "-OVER", "+OL", "-OL", "OR", "UR", "HIGH", "LOW", "SAT", "SATURATED", "TRIP", "OPEN", "SHORT"),
+    *("BAD", "TIMEOUT", "ERR", "ERROR", "FAIL", "FAILED", "FAULT", "INVALID", "OFF", "OFFLINE", "NC", "N.C."),
+    *("ND", "N.D.", "BDL", "LOD", "LOQ", "<LOD", "<LOQ", "NO_DATA", "NODATA", "MISSING", "INF"),
+})  # fmt: skip
+"""Words that instruments write in place of a reading: a row that holds one is no header."""
+BLANKS = " \t\r\n\x0b\x0c\0\u00a0\u2007\u202f\ufeff"
+"""What may stand around a number without meaning anything."""
 _WORDS_SHOWN = 10
 _BATCH_COLUMNS = 64
+_BATCH_CELLS = 8_000_000
+_GLANCED_ROWS = 256
 _DATE = r"^\d{1,4}[-/.]\d{1,2}[-/.]\d{1,4}([ T]+\d{1,2}:\d{2}.*)?$|^\d{1,2}:\d{2}(:\d{2}.*)?$"
+_DATED = re.compile(_DATE)
 _TRUTHS = ("true", "false", "yes", "no", "on", "off")
 
 
@@ -51,6 +67,11 @@ def is_number(cell: str) -> bool:
     return True
 
 
+def is_date(cell: str) -> bool:
+    """Whether the cell looks like a date or a time."""
+    return _DATED.match(cell.strip()) is not None
+
+
 def is_missing(cell: str) -> bool:
     """Whether the cell always means a missing reading."""
     return not cell or cell in MISSING
@@ -58,7 +79,7 @@ def is_missing(cell: str) -> bool:
 
 def meaningful(column: str, missing: Sequence[str]) -> pl.Expr:
     """The stripped cells of a text column, null where they are blank or mean a missing reading."""
-    cell = pl.col(column).cast(pl.String).str.strip_chars()
+    cell = pl.col(column).cast(pl.String).str.strip_chars(BLANKS)
     return pl.when(cell.is_in(["", *MISSING, *missing])).then(None).otherwise(cell).alias(column)
 
 
@@ -85,18 +106,28 @@ def count_cells(
     }
 
 
-def count_words(
-    frame: pl.LazyFrame, columns: Sequence[str], missing: Sequence[str], *, decimal_comma: bool
-) -> dict[str, dict[str, int]]:
-    """For each word that stands among numbers: how many cells of which columns hold it."""
-    counted: dict[str, dict[str, int]] = {}
-    for start in range(0, len(columns), _BATCH_COLUMNS):
-        batch = columns[start : start + _BATCH_COLUMNS]
+def refused_cells(
+    frame: pl.LazyFrame, columns: Sequence[str], missing: Sequence[str], *, decimal_comma: bool, rows: int
+) -> pl.DataFrame:
+    """The cells that mean something but are no plain number, counted: `column`, `cell`, `cells`."""
+    counted = [pl.DataFrame(schema={"column": pl.String, "cell": pl.String, "cells": pl.UInt32})]
+    width = max(1, min(_BATCH_COLUMNS, _BATCH_CELLS // rows))
+    for start in range(0, len(columns), width):
+        batch = columns[start : start + width]
         words = frame.select(_words(column, missing, decimal_comma=decimal_comma) for column in batch).collect()
-        found = words.unpivot().drop_nulls().group_by("variable", "value", maintain_order=True).len()
-        for column, word, cells in found.rows():
-            counted.setdefault(word, {})[column] = cells
-    return counted
+        found = words.unpivot(variable_name="column", value_name="cell").drop_nulls()
+        counted.append(found.group_by("column", "cell", maintain_order=True).len("cells"))
+    return pl.concat(counted)
+
+
+def may_hold_numbers(frame: pl.LazyFrame, columns: Sequence[str], missing: Sequence[str], pattern: str) -> list[str]:
+    """The columns in which half of the first cells that mean something fit the pattern."""
+    if not columns:
+        return []
+    first = frame.select(meaningful(column, missing) for column in columns).head(_GLANCED_ROWS)
+    fitting = pl.all().str.contains(pattern)
+    shares = pl.collect_all([first.select(fitting.sum()), first.select(pl.all().count())])
+    return [column for column in columns if 2 * shares[0][column].item() >= max(1, shares[1][column].item())]
 
 
 def _words(column: str, missing: Sequence[str], *, decimal_comma: bool) -> pl.Expr:
@@ -105,8 +136,11 @@ def _words(column: str, missing: Sequence[str], *, decimal_comma: bool) -> pl.Ex
     return pl.when(refused).then(meaningful(column, missing)).alias(column)
 
 
-def word_remarks(counted: dict[str, dict[str, int]], shown: Mapping[str, str]) -> Iterator[str]:
+def word_remarks(words: pl.DataFrame, shown: Mapping[str, str]) -> Iterator[str]:
     """One sentence a word, the commonest first; `shown` gives the name of each column."""
+    counted: dict[str, dict[str, int]] = {}
+    for column, word, cells in words.select("column", "cell", "cells").rows():
+        counted.setdefault(word, {})[column] = cells
     ranked = sorted(counted.items(), key=lambda item: (-sum(item[1].values()), item[0]))
     for word, places in ranked[:_WORDS_SHOWN]:
         where = shortlist([shown[column] for column in places])

@@ -1,19 +1,32 @@
 """The text of a table as polars reads it, UTF-8 with newlines, whatever its encoding and line ends."""
 
 import codecs
+import csv
 import gzip
-from collections.abc import Iterable, Iterator
+import io
+import re
+from collections.abc import Callable, Iterable, Iterator
 from dataclasses import dataclass
 from pathlib import Path
+from typing import BinaryIO, cast
 
 import polars as pl
 
-from screener.tables.formats import Packing, source_of
+from screener.errors import PlanError
+from screener.tables.formats import Packing, source_of, utf16_without_mark
+from screener.tables.head import cell_rows
 
-HEAD_LINES = 64
+HEAD_LINES = 200
 _HEAD_BYTES = 1 << 18
 _FEWEST_LINES = 8
-_NAMES = {"utf-16": "UTF-16", "cp1252": "Windows-1252"}
+_CHUNK_BYTES = 1 << 22
+_NAMES = {"utf-16": "UTF-16", "utf-16-le": "UTF-16", "utf-16-be": "UTF-16", "utf-32": "UTF-32"}
+_NAMES |= {"cp1252": "Windows-1252", "latin-1": "Latin-1", "iso8859-1": "Latin-1", "utf-8": "UTF-8"}
+_NOT_IN_1252 = frozenset(b"\x81\x8d\x8f\x90\x9d")
+_LONE_RETURN = re.compile(rb"\r(?!\n|\Z)")
+
+Sink = Callable[[Iterable[bytes]], Path | bytes]
+"""Keeps converted text, in memory or in a temporary file."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -21,28 +34,48 @@ class Text:
     """What polars is given to parse, and its first lines."""
 
     source: Path | bytes
-    """The file itself, or its text converted in memory."""
+    """The file itself, or its text converted."""
     head: list[str]
+    words: tuple[str, ...] = ()
+    """What the user is told about it, a few words each."""
     remarks: tuple[str, ...] = ()
 
 
-def utf8_text(path: Path, packing: Packing) -> Text:
-    """The text of a file; converted in memory when it is not UTF-8 or its lines end in carriage returns alone."""
+def in_memory(pieces: Iterable[bytes]) -> bytes:
+    """The simplest sink."""
+    return b"".join(pieces)
+
+
+def utf8_text(path: Path, packing: Packing, *, given: str = "", keep: Sink = in_memory) -> Text:
+    """The text of a file; converted where it is not UTF-8 or where carriage returns alone end lines.
+
+    Raises PlanError when there is no encoding of the given name.
+    """
     if packing is Packing.ZSTD:
         source = source_of(path)
         return Text(source, _without_mark(text_lines(source, HEAD_LINES).to_list()))
-    with gzip.open(path) if packing else path.open("rb") as file:
+    with cast("BinaryIO", gzip.open(path)) if packing else path.open("rb") as file:
         head = list(_first_lines(file))
         sample = b"".join(head)
-        encoding = _encoding(sample)
-        if encoding == "utf-8" and (b"\r" not in sample or b"\n" in sample):
-            return Text(source_of(path), _without_mark([line.decode().rstrip("\r\n") for line in head]))
-        content = sample + file.read()
-    text = content.decode(encoding, errors="replace").removeprefix("\ufeff")
-    if "\n" not in text:
-        text = text.replace("\r", "\n")
-    remarks = () if encoding == "utf-8" else (f"The text was read as {_NAMES[encoding]}.",)
-    return Text(text.encode(), text.split("\n", HEAD_LINES)[:HEAD_LINES], remarks)
+        encoding = _known(given) if given else _encoding(sample)
+        returns = _LONE_RETURN.search(sample) is not None
+        words = [*((_NAMES.get(encoding, encoding),) if encoding != "utf-8" else ())]
+        words += ["lines end in carriage returns"] if returns else []
+        if encoding == "utf-8" and not returns:
+            lines = [line.decode(errors="replace").rstrip("\r\n") for line in head]
+            return Text(source_of(path), _without_mark(lines))
+        source = keep(_converted(_pieces(sample, file), encoding))
+    remarks = () if encoding == "utf-8" else (f"The text was read as {_NAMES.get(encoding, encoding)}.",)
+    return Text(source, _head_of(source), tuple(words), remarks)
+
+
+def blanks_as_tabs(text: Text, keep: Sink = in_memory) -> Path | bytes:
+    """The text with one tab between two cells instead of blanks, every line on its own line as before."""
+    source = text.source
+    if isinstance(source, bytes):
+        return keep(_tabbed(source.splitlines()))
+    with cast("BinaryIO", gzip.open(source)) if source.read_bytes()[:2] == b"\x1f\x8b" else source.open("rb") as file:
+        return keep(_tabbed(file))
 
 
 def text_lines(source: Path | bytes, count: int | None = None) -> pl.Series:
@@ -64,6 +97,49 @@ def text_lines(source: Path | bytes, count: int | None = None) -> pl.Series:
         return whole_lines.select(pl.col("line").fill_null("")).collect().to_series()
 
 
+def _tabbed(lines: Iterable[bytes]) -> Iterator[bytes]:
+    for line in lines:
+        if b'"' in line:
+            row = io.StringIO()
+            cells = next(cell_rows([line.decode(errors="replace").rstrip("\r\n")], " "), [])
+            csv.writer(row, delimiter="\t", lineterminator="\n").writerow(cells)
+            yield row.getvalue().encode()
+        else:
+            yield b"\t".join(line.split()) + b"\n"
+
+
+def _known(name: str) -> str:
+    try:
+        return codecs.lookup(name).name
+    except LookupError as error:
+        known = "utf-8, utf-16, latin-1, cp1252"
+        raise PlanError(f"Couldn't use encoding {name!r}: there is none of that name. Known are {known}...") from error
+
+
+def _converted(pieces: Iterable[bytes], encoding: str) -> Iterator[bytes]:
+    """UTF-8 with newlines, without a byte order mark."""
+    decoder = io.IncrementalNewlineDecoder(codecs.getincrementaldecoder(encoding)("replace"), translate=True)
+    first = True
+    for piece in pieces:
+        text = decoder.decode(piece)
+        yield (text.removeprefix("\ufeff") if first else text).encode(errors="replace")
+        first = first and not text
+    yield decoder.decode(b"", final=True).encode(errors="replace")
+
+
+def _pieces(sample: bytes, file: BinaryIO) -> Iterator[bytes]:
+    yield sample
+    while piece := file.read(_CHUNK_BYTES):
+        yield piece
+
+
+def _head_of(source: Path | bytes) -> list[str]:
+    if isinstance(source, bytes):
+        return [line.decode(errors="replace") for line in source.split(b"\n", HEAD_LINES)[:HEAD_LINES]]
+    with source.open("rb") as file:
+        return [line.decode(errors="replace").rstrip("\n") for line in _first_lines(file)]
+
+
 def _without_mark(lines: list[str]) -> list[str]:
     """The lines without the byte order mark before the first."""
     return [line.removeprefix("\ufeff") for line in lines[:1]] + lines[1:]
@@ -80,10 +156,14 @@ def _first_lines(file: Iterable[bytes]) -> Iterator[bytes]:
 
 
 def _encoding(sample: bytes) -> str:
+    if sample.startswith((codecs.BOM_UTF32_LE, codecs.BOM_UTF32_BE)):
+        return "utf-32"
     if sample.startswith((codecs.BOM_UTF16_LE, codecs.BOM_UTF16_BE)):
         return "utf-16"
+    if unmarked := utf16_without_mark(sample):
+        return unmarked
     try:
         sample.decode()
     except UnicodeDecodeError:
-        return "cp1252"
+        return "latin-1" if _NOT_IN_1252.intersection(sample) else "cp1252"
     return "utf-8"

@@ -17,6 +17,7 @@ T = TypeVar("T")
 
 _HEAD_BYTES = 65_536
 _CONTROL_SHARE = 0.05
+_ZERO_SHARE = 0.4
 _KNOWN = "Known formats: CSV and TSV (also .gz and .zst), Parquet, Arrow IPC, newline-delimited JSON"
 
 
@@ -130,13 +131,26 @@ def _unpacked_head(path: Path, packing: Packing) -> bytes:
 def _refuse_foreign(path: Path, head: bytes) -> None:
     if foreign := _starting(head, _FOREIGN):
         raise TableError(f"Couldn't read {str(path)!r}: it is {foreign}, not a table. {_KNOWN}.")
-    if not head.startswith((b"\xff\xfe", b"\xfe\xff")) and _looks_binary(head):
+    marked = head.startswith((b"\xff\xfe", b"\xfe\xff", b"\0\0\xfe\xff"))
+    if not marked and not utf16_without_mark(head) and _looks_binary(head):
         raise TableError(f"Couldn't read {str(path)!r}: it holds binary data, not a table. {_KNOWN}.")
 
 
+def utf16_without_mark(head: bytes) -> str:
+    """The byte order of UTF-16 text that does not say it: of Western text every other byte is zero."""
+    if len(head) < 4 or head.count(0) < _ZERO_SHARE * len(head):
+        return ""
+    even, odd = head[::2].count(0), head[1::2].count(0)
+    if min(even, odd) > 0 or head[:1] + head[1:2] == b"\0\0":
+        return ""
+    return "utf-16-be" if even else "utf-16-le"
+
+
 def _looks_binary(head: bytes) -> bool:
-    controls = sum(head.count(code) for code in range(32) if code not in b"\t\n\r\x0b\x0c\x1b")
-    return b"\0" in head or controls > _CONTROL_SHARE * len(head)
+    """Whether there is more than a sprinkle of control characters; a logger may leave a few zero bytes."""
+    text = head.rstrip(b"\0")
+    controls = sum(text.count(code) for code in range(32) if code not in b"\t\n\r\x0b\x0c\x1b")
+    return controls > _CONTROL_SHARE * len(text) or not text
 
 
 def _kind_of_text(path: Path, head: bytes) -> Kind:

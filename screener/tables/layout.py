@@ -1,25 +1,18 @@
 """How a text table is laid out: its separator, its header and what its first rows hold."""
 
-import csv
-import re
-from collections.abc import Iterable, Iterator, Sequence
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
-from itertools import islice
-from typing import TYPE_CHECKING
 
-from screener.tables.cells import is_missing, is_number
+from screener.errors import PlanError
+from screener.records import Plan
+from screener.tables.cells import is_number
+from screener.tables.head import SEPARATORS, HeadRow, head_rows, separator_of
+from screener.tables.header import Header, header_of
+from screener.tables.votes import decimal_vote
 
-if TYPE_CHECKING:
-    from _csv import Reader
-
-SEPARATORS = {",": "comma", ";": "semicolon", "\t": "tab"}
 _SAMPLED_ROWS = 20
 _SAMPLED_CELLS = 10_000
 _FEWEST_ROWS = 4
-_LONGEST_CELL = 1 << 30
-"""A wide row is one long cell when it is tried with a separator it does not have."""
-_DECIMAL_COMMA = re.compile(r"[+-]?\d*,\d+(?:[eE][+-]?\d+)?")
-_DECIMAL_POINT = re.compile(r"[+-]?\d*\.\d+(?:[eE][+-]?\d+)?")
 
 
 @dataclass(frozen=True, slots=True)
@@ -36,67 +29,90 @@ class Layout:
     """Columns in which a sampled cell is neither a number nor blank."""
     extra_cells: bool
     """Whether the sampled rows all have more cells than the header, and not only blank ones."""
+    header: Header
+    doubt: str = ""
+    """A cell whose comma may stand before decimals or between thousands."""
+    drop_comments: bool = False
+    """Whether the plan names the sign of comment lines, which may then stand anywhere."""
+
+    def words_of(self) -> Iterator[str]:
+        """What the user is told about the lay-out, a few words each."""
+        yield SEPARATORS.get(self.separator, repr(self.separator))
+        if self.decimal_comma:
+            yield "decimal comma"
+        if count := self.header.preamble:
+            yield f"{count} preamble line{'s' if count > 1 else ''}"
+        if not self.header.header_line:
+            yield "no header"
+        elif self.header.header_line > 1:
+            yield f"names in line {self.header.header_line}"
+        if self.header.units_line:
+            yield f"units in line {self.header.units_line}"
+        if count := self.header.left_out:
+            yield f"{count} more line{'s' if count > 1 else ''} above the readings left out"
+        if self.header.comment:
+            yield f"comments begin with {self.header.comment}"
 
 
-def layout_of(lines: Sequence[str], *, prefer_tab: bool = False) -> Layout:
-    """The layout guessed from the first lines of a table, which hold at least one that is not blank."""
-    blank = next(number for number, line in enumerate(lines) if line.strip())
-    kept = lines[blank:]
-    separator = _separator(kept, prefer_tab=prefer_tab)
-    reader = cell_rows(kept, separator)
-    header = next(reader)
-    headed = not _only_numbers(header)
-    lines_before = blank + (reader.line_num if headed else 0)
-    names = tuple(header) if headed else ("",) * len(header)
-    rows = list(_sample(reader, len(header)))
-    rows = rows if headed else [header, *rows]
-    decimal_comma = separator != "," and _votes_for_comma(rows)
-    words = frozenset(_word_columns(rows, decimal_comma=decimal_comma))
-    extra_cells = bool(rows) and all(any(cell.strip() for cell in row[len(names) :]) for row in rows)
-    return Layout(separator, names, lines_before, decimal_comma, words, extra_cells)
+def layout_of(lines: Sequence[str], plan: Plan | None = None, *, prefer_tab: bool = False) -> Layout:
+    """The layout guessed from the first lines of a table, which hold at least one that is not blank.
+
+    What the plan says about it is taken as said. Raises PlanError when the plan says something impossible.
+    """
+    plan = plan or Plan()
+    separator = _given_separator(plan.separator) or separator_of(lines, prefer_tab=prefer_tab)
+    rows = list(head_rows(lines, separator))
+    header = header_of(rows, header_line=plan.header_line, units_line=plan.units_line, comment=plan.comment)
+    sampled = list(_sample(rows, header))
+    cells = (cell.strip() for row in sampled for cell in row)
+    vote = decimal_vote(cells, separator=separator)
+    comma = vote.comma if not plan.decimal else _given_decimal(plan.decimal)
+    names = header.names
+    words = frozenset(_word_columns(sampled, decimal_comma=comma, separator=separator))
+    extra = bool(sampled) and all(any(cell.strip() for cell in row[len(names) :]) for row in sampled)
+    return Layout(
+        separator=separator,
+        names=names,
+        lines_before=header.lines_before,
+        decimal_comma=comma,
+        words=words,
+        extra_cells=extra,
+        header=header,
+        doubt="" if plan.decimal else vote.doubt,
+        drop_comments=bool(plan.comment),
+    )
 
 
-def cell_rows(lines: Iterable[str], separator: str) -> "Reader":
-    """The cells of each row, a quoted cell over several lines being one; `line_num` counts the lines read so far."""
-    csv.field_size_limit(_LONGEST_CELL)
-    return csv.reader((line.replace("\r", " ") + "\n" for line in lines), delimiter=separator)
+def _given_separator(said: str) -> str:
+    """The separator that the plan names, by itself or in a word."""
+    by_name = {name: sign for sign, name in SEPARATORS.items()} | {"space": " ", "blank": " ", "\\t": "\t", "pipe": "|"}
+    sign = by_name.get(said.lower(), said)
+    if len(sign) > 1 or not sign.isascii() or sign in tuple('"\r\n'):
+        known = ", ".join(SEPARATORS.values())
+        raise PlanError(f"Couldn't use separator {said!r}: it must be one ASCII character or one of {known}.")
+    return sign
 
 
-def _separator(lines: Sequence[str], *, prefer_tab: bool) -> str:
-    """The separator by which most sampled rows have as many cells as the header; more cells win a tie."""
-    if prefer_tab and "\t" in lines[0]:
-        return "\t"
-    return max(SEPARATORS, key=lambda separator: _agreement(lines, separator))
+def _given_decimal(said: str) -> bool:
+    by_name = {",": True, "comma": True, ".": False, "point": False}
+    if said.lower() not in by_name:
+        raise PlanError(f"Couldn't use decimal sign {said!r}: it must be . or , (point or comma).")
+    return by_name[said.lower()]
 
 
-def _agreement(lines: Sequence[str], separator: str) -> tuple[bool, float, int]:
-    reader = cell_rows(lines, separator)
-    header = len(next(reader))
-    widths = [len(row) for row in _sample(reader, header)] if header > 1 else []
-    agreeing = sum(width == header for width in widths)
-    return header > 1, agreeing / max(1, len(widths)), header
+def _sample(rows: Sequence[HeadRow], header: Header) -> Iterator[list[str]]:
+    """The first rows of readings: fewer of a wide table."""
+    width = max(1, len(header.names))
+    count = max(_FEWEST_ROWS, min(_SAMPLED_ROWS, _SAMPLED_CELLS // width))
+    below = [row for row in rows if row.first > header.lines_before]
+    kept = [row for row in below if not (header.comment and row.cells[0].lstrip().startswith(header.comment))]
+    for row in kept[:count]:
+        yield row.cells
 
 
-def _sample(reader: Iterator[list[str]], width: int) -> Iterator[list[str]]:
-    """The first rows that are not blank: fewer of a wide table."""
-    count = max(_FEWEST_ROWS, min(_SAMPLED_ROWS, _SAMPLED_CELLS // max(1, width)))
-    return islice((row for row in reader if row), count)
-
-
-def _only_numbers(header: Sequence[str]) -> bool:
-    cells = [cell.strip() for cell in header if cell.strip()]
-    return bool(cells) and all(is_number(cell) and not is_missing(cell) for cell in cells)
-
-
-def _votes_for_comma(rows: Sequence[Sequence[str]]) -> bool:
-    cells = [cell.strip() for row in rows for cell in row]
-    commas = sum(_DECIMAL_COMMA.fullmatch(cell) is not None for cell in cells)
-    return commas > sum(_DECIMAL_POINT.fullmatch(cell) is not None for cell in cells)
-
-
-def _word_columns(rows: Sequence[Sequence[str]], *, decimal_comma: bool) -> Iterator[int]:
+def _word_columns(rows: Sequence[Sequence[str]], *, decimal_comma: bool, separator: str) -> Iterator[int]:
     for row in rows:
         for at, cell in enumerate(row):
-            plain = cell.replace(",", ".") if decimal_comma else cell
+            plain = cell.replace(",", ".") if decimal_comma and separator != "," else cell
             if plain.strip() and (plain != plain.strip() or not is_number(plain)):
                 yield at

@@ -12,6 +12,7 @@ _QUALIFIERS = re.compile(
     r"max|min|mean|avg|average|median|rms|std|sd|raw|left|right|front|rear|top|bottom|old|new|\d+", re.I
 )
 _REMARKS_SHOWN = 5
+_LONGEST_UNIT = 16
 
 
 @dataclass(frozen=True, slots=True)
@@ -40,12 +41,20 @@ def unit_of(name: str) -> str:
     return ""
 
 
-def labels(written: Sequence[str]) -> tuple[tuple[Label, ...], tuple[str, ...]]:
+def bare_unit(written: str) -> str:
+    """A unit from a row or attribute of units, without brackets; a dash stands for none."""
+    unit = visible(written).strip("[](){} ")[:_LONGEST_UNIT]
+    return "" if unit in {"-", "--", "none", "None"} else unit
+
+
+def labels(written: Sequence[str], units: Sequence[str] = ()) -> tuple[tuple[Label, ...], tuple[str, ...]]:
     """One label per name as written, in order, and a remark for every name that had to be changed."""
     shown = [visible(name) for name in written]
     named = [name or f"column {number}" for number, name in enumerate(shown, 1)]
     unique = list(_told_apart(named))
-    made = tuple(Label(name, unit_of(plain)) for name, plain in zip(unique, named, strict=True))
+    apart = [bare_unit(unit) for unit in units[: len(named)]] + [""] * (len(named) - len(units))
+    known = zip(unique, named, apart, strict=True)
+    made = tuple(Label(name, unit_of(plain) or unit) for name, plain, unit in known)
     return made, (*_nameless_remark(shown), *_repeated_remarks(named, unique))
 
 

@@ -20,3 +20,7 @@ class RawTable:
     remarks: tuple[str, ...] = ()
     decimal_comma: bool = False
     """Whether numbers in text columns are written with a decimal comma."""
+    units: tuple[str, ...] = ()
+    """The unit of each column where the format keeps it apart from the name; empty where it has none."""
+    dialect: str = ""
+    """How the table is written, on one line."""

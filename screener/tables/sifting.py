@@ -1,13 +1,23 @@
 """From a raw table to channels of numbers: text turned into numbers, missing codes blanked, the rest set aside."""
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, field, replace
 
 import polars as pl
 
-from screener.tables.cells import count_cells, count_words, is_number, number, word_remarks
+from screener.tables.cells import (
+    TextColumn,
+    count_cells,
+    is_number,
+    may_hold_numbers,
+    meaningful,
+    number,
+    refused_cells,
+    word_remarks,
+)
 from screener.tables.chosen import Choice
 from screener.tables.columns import reading, reason_for_type, unfit
+from screener.tables.forms import CELL, Form, Forms, forms_of, unusual
 from screener.tables.raw import RawTable
 
 GUESSES = ("a row counter", "time stamps")
@@ -22,6 +32,21 @@ class Sifted:
     columns: tuple[str, ...]
     reasons: dict[str, str]
     remarks: tuple[str, ...]
+    below: Mapping[str, int] = field(default_factory=dict)
+    """Readings of a column that are known only to lie below a detection limit."""
+    above: Mapping[str, int] = field(default_factory=dict)
+    units: Mapping[str, str] = field(default_factory=dict)
+    """The unit that follows the numbers of a column."""
+
+
+@dataclass(frozen=True, slots=True)
+class _Text:
+    """The text columns of a table as numbers."""
+
+    frame: pl.LazyFrame
+    reasons: dict[str, str]
+    remarks: tuple[str, ...] = ()
+    forms: Forms | None = None
 
 
 def sift(raw: RawTable, shown: Mapping[str, str], choice: Choice, missing: Sequence[str]) -> Sifted:
@@ -34,15 +59,19 @@ def sift(raw: RawTable, shown: Mapping[str, str], choice: Choice, missing: Seque
     wanted = [column for column in schema if column not in reasons]
     raw = replace(raw, frame=_settled(_only(raw.frame, wanted), held=raw.held and not raw.loaded))
     texts = [token for token in missing if not is_number(token)]
-    frame, text_reasons, words = _text_as_numbers(raw, shown, texts)
-    numeric = [column for column in schema if column not in reasons and column not in text_reasons]
-    frame, codes = _without_codes(frame, numeric, missing, held=raw.held)
-    reasons |= text_reasons
+    text = _text_as_numbers(raw, shown, texts)
+    reasons |= text.reasons
+    numeric = [column for column in schema if column not in reasons]
+    frame, codes = _without_codes(text.frame, numeric, missing, held=raw.held)
     unfit_reasons = unfit(frame, [column for column in schema if column not in reasons], raw.rows, shown)
     by_name = {column for at, column in enumerate(schema) if at in choice.by_name}
     reasons |= {c: why for c, why in unfit_reasons.items() if not (c in by_name and why.startswith(GUESSES))}
     columns = tuple(column for column in schema if column not in reasons)
-    return Sifted(_only(frame, columns), columns, reasons, (*words, *codes))
+    remarks = (*text.remarks, *codes)
+    if text.forms is None:
+        return Sifted(_only(frame, columns), columns, reasons, remarks)
+    units = {column: form.suffix for column, form in text.forms.by_column.items()}
+    return Sifted(_only(frame, columns), columns, reasons, remarks, text.forms.below, text.forms.above, units)
 
 
 def _settled(frame: pl.LazyFrame, *, held: bool) -> pl.LazyFrame:
@@ -55,25 +84,60 @@ def _only(frame: pl.LazyFrame, columns: Sequence[str]) -> pl.LazyFrame:
     return frame if frame.collect_schema().names() == list(columns) else frame.select(pl.col(columns))
 
 
-def _text_as_numbers(
-    raw: RawTable, shown: Mapping[str, str], missing: Sequence[str]
-) -> tuple[pl.LazyFrame, dict[str, str], tuple[str, ...]]:
+def _text_as_numbers(raw: RawTable, shown: Mapping[str, str], missing: Sequence[str]) -> _Text:
     """The frame with its text columns as numbers, the reasons of those that are not, and remarks on words."""
     frame = _clean_text_as_numbers(raw)
     text = [column for column, dtype in frame.collect_schema().items() if not dtype.is_numeric()]
     if not text:
-        return frame, {}, ()
-    as_numbers = [number(column, missing, decimal_comma=raw.decimal_comma) for column in text]
-    numbers = _settled(frame.select(as_numbers), held=raw.held)
+        return _Text(frame, {})
+    comma = raw.decimal_comma
+    numbers = _settled(frame.select(number(c, missing, decimal_comma=comma) for c in text), held=raw.held)
     counts = count_cells(frame, numbers, text, missing)
+    mixed = _mixed(frame, counts, missing)
+    refused = refused_cells(frame, mixed, missing, decimal_comma=comma, rows=raw.rows)
+    forms = forms_of(refused, {column: counts[column].numbers for column in mixed}, decimal_comma=comma)
+    counts = _recounted(counts, forms)
     reasons = {column: reason for column in text if (reason := counts[column].reason())}
-    mixed = [column for column in text if column not in reasons and counts[column].numbers < counts[column].cells]
-    words = count_words(frame, mixed, missing, decimal_comma=raw.decimal_comma)
-    remarks = tuple(word_remarks(words, shown))
-    if raw.held:
-        return pl.concat([frame.drop(text), numbers.drop(reasons)], how="horizontal"), reasons, remarks
-    kept = [cells for column, cells in zip(text, as_numbers, strict=True) if column not in reasons]
-    return frame.drop(reasons).with_columns(kept), reasons, remarks
+    forms = forms.without(reasons)
+    remarks = (*forms.remarks(shown), *word_remarks(forms.words, shown))
+    kept = [column for column in text if column not in reasons]
+    as_numbers = [_as_number(column, missing, forms.by_column.get(column), decimal_comma=comma) for column in kept]
+    if not raw.held:
+        return _Text(frame.drop(reasons).with_columns(as_numbers), reasons, remarks, forms)
+    formed = frame.select(e for c, e in zip(kept, as_numbers, strict=True) if c in forms.by_column)
+    plain = numbers.select(column for column in kept if column not in forms.by_column)
+    parts = [frame.drop(text), plain, _settled(formed, held=True)]
+    filled = [part for part in parts if part.collect_schema()]
+    return _Text(pl.concat(filled, how="horizontal") if filled else formed, reasons, remarks, forms)
+
+
+def _as_number(column: str, missing: Sequence[str], form: Form | None, *, decimal_comma: bool) -> pl.Expr:
+    """The cells of a text column as numbers; plain ones are taken as they stand unless the column groups thousands."""
+    plain = number(column, missing, decimal_comma=decimal_comma)
+    if form is None:
+        return plain
+    formed = unusual(meaningful(column, missing), form)
+    return (formed if form.group else pl.coalesce(plain, formed)).alias(column)
+
+
+def _mixed(frame: pl.LazyFrame, counts: Mapping[str, TextColumn], missing: Sequence[str]) -> list[str]:
+    """The columns with cells that are no plain number, but may be one in another form, or words among numbers."""
+    unclear = {column: count for column, count in counts.items() if count.numbers < count.cells}
+    few = [column for column, count in unclear.items() if 2 * count.numbers < count.cells and not count.dates]
+    odd = set(may_hold_numbers(frame, few, missing, CELL))
+    return [c for c, count in unclear.items() if 2 * count.numbers >= count.cells or c in odd]
+
+
+def _recounted(counts: Mapping[str, TextColumn], forms: Forms) -> dict[str, TextColumn]:
+    found = dict(forms.understood.group_by("column").agg(pl.col("cells").sum()).rows())
+    return {
+        column: replace(
+            count,
+            numbers=count.numbers + found.get(column, 0),
+            cells=count.cells - forms.undefined.get(column, 0),
+        )
+        for column, count in counts.items()
+    }
 
 
 def _clean_text_as_numbers(raw: RawTable) -> pl.LazyFrame:

@@ -2,7 +2,7 @@
 
 import csv
 import zlib
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterator, Mapping, Sequence
 from concurrent.futures import ThreadPoolExecutor
 from contextlib import contextmanager
 from dataclasses import dataclass
@@ -20,7 +20,7 @@ from screener.tables.fingerprint import fingerprint
 from screener.tables.formats import Kind, Recognised, recognise
 from screener.tables.names import Label, labels, shortlist, visible
 from screener.tables.raw import RawTable
-from screener.tables.sifting import sift
+from screener.tables.sifting import Sifted, sift
 from screener.tables.stored import read_stored
 from screener.tables.text import read_text
 
@@ -64,7 +64,7 @@ def open_table(path: Path, plan: Plan, *, held_bytes: int = HELD_BYTES) -> Table
     recognised = recognise(path)
     with readable(path, str(recognised.kind)), ThreadPoolExecutor(1) as aside:
         print_of_content = aside.submit(fingerprint, path)
-        raw = _load(path, recognised, held_bytes)
+        raw = _load(path, recognised, plan, held_bytes)
         if not raw.rows:
             raise TableError(f"Couldn't read {str(path)!r}: it has columns but no readings.")
         return _table(path, plan, raw, print_of_content.result())
@@ -94,14 +94,14 @@ def _said(error: BaseException, what: str) -> str:
     return f"{first_line}. The file may be damaged or cut off; write it again."
 
 
-def _load(path: Path, recognised: Recognised, held_bytes: int) -> RawTable:
+def _load(path: Path, recognised: Recognised, plan: Plan, held_bytes: int) -> RawTable:
     if recognised.kind is Kind.TEXT:
-        return read_text(path, recognised)
+        return read_text(path, recognised, plan)
     return read_stored(path, recognised, held_bytes=held_bytes)
 
 
 def _table(path: Path, plan: Plan, raw: RawTable, content: str) -> Table:
-    shown, name_remarks = labels(raw.names)
+    shown, name_remarks = labels(raw.names, raw.units)
     choice = choose([label.name for label in shown], plan)
     stored = raw.frame.collect_schema().names()
     sifted = sift(raw, dict(zip(stored, (label.name for label in shown), strict=True)), choice, plan.missing)
@@ -110,13 +110,22 @@ def _table(path: Path, plan: Plan, raw: RawTable, content: str) -> Table:
     if not sifted.columns:
         raise _nothing_to_screen(path, choice, set_aside)
     remarks = (*raw.remarks, *name_remarks, *choice.remarks, *sifted.remarks)
-    channels = _channels([by_column[column] for column in sifted.columns])
-    facts = TableFacts(path, raw.format, raw.rows, channels, set_aside, content, remarks)
+    channels = _channels(sifted, by_column)
+    facts = TableFacts(path, raw.format, raw.rows, channels, set_aside, content, remarks, raw.dialect)
     return Table(facts, sifted.columns, sifted.frame.collect() if raw.held else None, sifted.frame)
 
 
-def _channels(shown: Sequence[Label]) -> tuple[Channel, ...]:
-    return tuple(Channel(position, label.name, label.unit) for position, label in enumerate(shown))
+def _channels(sifted: Sifted, shown: Mapping[str, Label]) -> tuple[Channel, ...]:
+    return tuple(
+        Channel(
+            position,
+            shown[column].name,
+            shown[column].unit or sifted.units.get(column, ""),
+            sifted.below.get(column, 0),
+            sifted.above.get(column, 0),
+        )
+        for position, column in enumerate(sifted.columns)
+    )
 
 
 def _nothing_to_screen(path: Path, choice: Choice, set_aside: Sequence[SetAside]) -> PlanError | TableError:

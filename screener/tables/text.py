@@ -1,62 +1,98 @@
 """Text tables: parsed as numbers at once where they are clean, cell by cell where they are not."""
 
-from collections.abc import Collection, Sequence
+import re
+from collections.abc import Collection, Iterator, Sequence
+from dataclasses import dataclass, replace
 from os import SEEK_END
 from pathlib import Path
 
+import numpy as np
 import polars as pl
 
 from screener.errors import TableError
-from screener.tables.encoding import text_lines, utf8_text
+from screener.records import Plan
+from screener.tables.encoding import Text, blanks_as_tabs, text_lines, utf8_text
 from screener.tables.formats import Recognised
-from screener.tables.layout import SEPARATORS, Layout, layout_of
-from screener.tables.ragged import row_widths
+from screener.tables.head import SEPARATORS
+from screener.tables.layout import Layout, layout_of
+from screener.tables.ragged import last_rows_sum_up, row_widths
 from screener.tables.raw import RawTable
 
 _PARSE_ERRORS = (pl.exceptions.ComputeError, pl.exceptions.SchemaError)
 _TAB_SUFFIXES = frozenset({".tsv", ".tab"})
+_REFUSED_COLUMN = re.compile(r"at column 'c(\d+)'")
+_TRIES = 3
+"""Parses of a text whose words show one column at a time, before every column is read as text."""
 
 
-def read_text(path: Path, recognised: Recognised) -> RawTable:
+@dataclass(frozen=True, slots=True)
+class _Parsed:
+    frame: pl.DataFrame
+    words: tuple[str, ...] = ()
+    remarks: tuple[str, ...] = ()
+
+
+def read_text(path: Path, recognised: Recognised, plan: Plan | None = None) -> RawTable:
     """The table in memory: Float64 columns, and String columns where a cell is no plain number.
 
     Raises:
         TableError: there is no row of readings, or the header does not name every column.
     """
-    text = utf8_text(path, recognised.packing)
-    if not any(line.strip() for line in text.head):
+    plan = plan or Plan()
+    text = utf8_text(path, recognised.packing, given=plan.encoding)
+    if not any(line.strip("\0 \t\r\n") for line in text.head):
         raise TableError(f"Couldn't read {str(path)!r}: it begins with nothing but blank lines.")
-    layout = layout_of(text.head, prefer_tab=bool(_TAB_SUFFIXES & {suffix.lower() for suffix in path.suffixes}))
+    prefer_tab = bool(_TAB_SUFFIXES & {suffix.lower() for suffix in path.suffixes})
+    layout = layout_of(text.head, plan, prefer_tab=prefer_tab)
     if layout.extra_cells:
         raise TableError(
             f"Couldn't read {str(path)!r}: its header names {len(layout.names):,} columns, "
             "but the rows have more cells. Give every column a name."
         )
-    frame, more = _parse(text.source, layout)
-    if frame.is_empty():
+    parsed = _parse(*_parseable(text, layout))
+    if parsed.frame.is_empty():
         raise TableError(f"Couldn't read {str(path)!r}: it has a header but no readings.")
-    remarks = (*text.remarks, *_layout_remarks(layout), *more)
     return RawTable(
-        frame=frame.lazy(),
+        frame=parsed.frame.lazy(),
         names=layout.names,
         format=_label(recognised, layout),
-        rows=len(frame),
+        rows=len(parsed.frame),
         held=True,
         loaded=True,
-        remarks=remarks,
+        remarks=(*text.remarks, *_layout_remarks(layout), *parsed.remarks),
         decimal_comma=layout.decimal_comma,
+        units=layout.header.units,
+        dialect=", ".join((*layout.words_of(), *text.words, *parsed.words)),
     )
 
 
-def _parse(source: Path | bytes, layout: Layout) -> tuple[pl.DataFrame, tuple[str, ...]]:
+def _parseable(text: Text, layout: Layout) -> tuple[Path | bytes, Layout]:
+    """The text and its layout as polars takes them: one sign between two cells."""
+    if layout.separator != " ":
+        return text.source, layout
+    return blanks_as_tabs(text), replace(layout, separator="\t")
+
+
+def _parse(source: Path | bytes, layout: Layout) -> _Parsed:
     columns = [f"c{at}" for at in range(len(layout.names))]
-    words = range(len(columns)) if _ends_in_quote(source) else layout.words
-    try:
-        frame, long_rows = _scan(source, layout, columns, words).collect(), False
-    except _PARSE_ERRORS:
-        frame, long_rows = _all_as_text(source, layout, columns)
-    regular = not long_rows and frame.to_series(-1).null_count() == 0
-    return (frame, ()) if regular else _without_blank_lines(frame, source, layout)
+    frame, long_rows = _frame(source, layout, columns)
+    irregular = long_rows or layout.drop_comments or frame.to_series(-1).null_count() > 0
+    parsed = _without_other_rows(frame, source, layout) if irregular else _Parsed(frame)
+    return _without_sums(parsed)
+
+
+def _frame(source: Path | bytes, layout: Layout, columns: Sequence[str]) -> tuple[pl.DataFrame, bool]:
+    """The cells, and whether a row has more of them than the header."""
+    words = set(range(len(columns)) if _ends_in_quote(source) else layout.words)
+    for _ in range(_TRIES):
+        try:
+            return _scan(source, layout, columns, words).collect(), False
+        except _PARSE_ERRORS as error:
+            refused = _REFUSED_COLUMN.search(str(error))
+            if not refused or int(refused[1]) in words:
+                break
+            words.add(int(refused[1]))
+    return _all_as_text(source, layout, columns)
 
 
 def _ends_in_quote(source: Path | bytes) -> bool:
@@ -92,7 +128,7 @@ def _scan(
         separator=layout.separator,
         skip_lines=layout.lines_before,
         schema=schema,
-        decimal_comma=layout.decimal_comma,
+        decimal_comma=layout.decimal_comma and layout.separator != ",",
         encoding="utf8-lossy" if ragged else "utf8",
         extra_columns="ignore" if ragged else "raise",
         missing_columns="insert",
@@ -100,20 +136,42 @@ def _scan(
     )
 
 
-def _without_blank_lines(
-    frame: pl.DataFrame, source: Path | bytes, layout: Layout
-) -> tuple[pl.DataFrame, tuple[str, ...]]:
+def _without_other_rows(frame: pl.DataFrame, source: Path | bytes, layout: Layout) -> _Parsed:
+    """The frame without blank lines, comments and footers."""
     widths = row_widths(text_lines(source), layout, len(frame))
     left_out = widths.left_out()
     if left_out.any() and len(left_out) == len(frame):
         frame = frame.filter(pl.Series(~left_out))
-    return frame, tuple(widths.remarks())
+    count = int(widths.footers.sum())
+    words = [f"{count} footer line{'s' if count > 1 else ''}"] if count else []
+    return _Parsed(frame, tuple(words), tuple(widths.remarks()))
 
 
-def _layout_remarks(layout: Layout) -> tuple[str, ...]:
-    if any(layout.names):
-        return ()
-    return ("The first line holds only numbers: it was read as readings, and the columns are called by their place.",)
+def _without_sums(parsed: _Parsed) -> _Parsed:
+    """The frame without last rows that sum up the ones above, which are no readings."""
+    first = parsed.frame.to_series(0)
+    if first.dtype != pl.String or parsed.frame.width == 1:
+        return parsed
+    sums = last_rows_sum_up(first)
+    if not sums.any():
+        return parsed
+    named = ", ".join(repr(cell.strip()) for cell in first.filter(pl.Series(sums)).head(3))
+    count = int(np.count_nonzero(sums))
+    remark = f"{count} last row{'s' if count > 1 else ''} ({named}) sum up the others: left out."
+    return replace(parsed, frame=parsed.frame.filter(pl.Series(~sums)), remarks=(*parsed.remarks, remark))
+
+
+def _layout_remarks(layout: Layout) -> Iterator[str]:
+    if not any(layout.names):
+        what = "reads like those below" if layout.words else "holds only numbers"
+        yield f"The first line {what}: it was read as readings, and the columns are called by their place."
+    if layout.doubt:
+        read = "before decimals" if layout.decimal_comma else "between thousands"
+        other = "." if layout.decimal_comma else ","
+        yield (
+            f"The comma in cells such as {layout.doubt!r} was read as standing {read}; "
+            f"--decimal={other} reads it the other way."
+        )
 
 
 def _label(recognised: Recognised, layout: Layout) -> str:
