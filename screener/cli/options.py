@@ -48,12 +48,6 @@ PLAN_OPTIONS = (
     click.option("--seed", type=int, default=DEFAULTS.seed, show_default=True, help="Seed of everything random."),
 )
 
-JOBS = click.option("--jobs", type=click.IntRange(min=1), default=None, help="Workers.  [default: usable cores]")
-
-
-def plan_options(command: Command) -> Command:
-    """Add the options that make a plan, and --jobs."""
-    for option in reversed((*PLAN_OPTIONS, *TABLE_OPTIONS, JOBS)):
 TABLE_OPTIONS = (
     click.option("--separator", default="", metavar="SIGN", help="What separates cells, such as ; or tab.  [as found]"),
     click.option("--decimal", default="", metavar="SIGN", help="The decimal sign, . or ,  [as voted by the cells]"),
@@ -75,6 +69,12 @@ TABLE_OPTIONS = (
 )
 """How a table is written, where what is found is wrong."""
 
+JOBS = click.option("--jobs", type=click.IntRange(min=1), default=None, help="Workers.  [default: usable cores]")
+
+
+def plan_options(command: Command) -> Command:
+    """Add the options that make a plan, and --jobs."""
+    for option in reversed((*PLAN_OPTIONS, *TABLE_OPTIONS, JOBS)):
         command = option(command)
     return command
 
@@ -90,12 +90,6 @@ def plan_from(given: dict[str, Any]) -> Plan:
         skip=given["skip"],
         missing=given["missing"],
         seed=given["seed"],
-    )
-
-
-def refuse_plan_for_run(ctx: click.Context, path: Path) -> None:
-    """Raise UsageError when options for a table are given together with a run file, which has its own plan."""
-    options = [option for option in ctx.command.params if option.name in {*Plan.__dataclass_fields__, "run_path"}]
         separator=given["separator"],
         decimal=given["decimal"],
         header_line=given["header_line"],
@@ -104,6 +98,12 @@ def refuse_plan_for_run(ctx: click.Context, path: Path) -> None:
         comment=given["comment"],
         shape=given["shape"] or "",
         part=given["part"],
+    )
+
+
+def refuse_plan_for_run(ctx: click.Context, path: Path) -> None:
+    """Raise UsageError when options for a table are given together with a run file, which has its own plan."""
+    options = [option for option in ctx.command.params if option.name in {*Plan.__dataclass_fields__, "run_path"}]
     given = [option for option in options if _was_given(ctx, option)]
     if given:
         raise click.UsageError(
