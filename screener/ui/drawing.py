@@ -50,7 +50,12 @@ def drawing(run: RunFile, facts: TableFacts, plan: Plan, wanted: Wanted, *, char
     fit = next((fit for fit in fits if fit["family"] == wanted.family), {})
     location, scale = (float("nan") if fit.get(name) is None else fit[name] for name in ("location", "scale"))
     points = run.points(wanted.position)
-    view = quantile_view(points, wanted.n, wanted.family, plan.positions, location, scale)
+    view = quantile_view(points, wanted.n, wanted.family, plan.positions, location, scale, shapes(fit))
     lines = quantile_plot(view, width=wanted.width, height=wanted.height, charset=charset)
     families = tuple(str(fit["family"]) for fit in fits)
     return Drawing(wanted, channel.name, channel.unit, families, fit, tuple(lines))
+
+
+def shapes(fit: dict[str, Any]) -> tuple[float, ...]:
+    """The shape parameters of a fit, in the family's order; none for most families."""
+    return tuple(fit[name] for name in ("shape_1", "shape_2") if fit.get(name) is not None)

@@ -113,7 +113,7 @@ class Feed:
         elif isinstance(event, RunFinished):
             self._reader.results_changed(last=True)
             self._post(messages.ScoringEnded(event.cancelled, event.seconds))
-        else:
+        elif isinstance(event, BlockScored | BlockFailed):
             self._reader.results_changed(last=False)
             self._post(messages.Progressed(tried, tried_now, seconds))
         if isinstance(event, BlockFailed):

@@ -83,7 +83,7 @@ class ChannelTable(Widget):
 
     def show(self, rows: pl.DataFrame, *, cursor: int | None, sort: tuple[str | None, bool]) -> None:
         """Replace the rows; the cursor goes to row `cursor`, at the same height on the screen if possible."""
-        height_on_screen = self._cursor - self._top
+        height_on_screen, seen_before = self._cursor - self._top, self._seen()
         from screener.ui.rows import has_remarks, longest_name
 
         self._rows, self._sort = rows.select(SOURCES), sort
@@ -93,7 +93,9 @@ class ChannelTable(Widget):
         self._cursor = min(self._cursor if cursor is None else cursor, max(0, rows.height - 1))
         self._top = self._cursor - height_on_screen
         self._keep_in_sight()
-        self.refresh()
+        # While rows stream in, most frames change nothing that is seen, and lines may be slow.
+        if self._seen() != seen_before:
+            self.refresh()
 
     def move_to(self, row: int) -> None:
         """Put the cursor on that row, or the nearest there is."""
@@ -186,6 +188,13 @@ class ChannelTable(Widget):
                 return column.key
             start += width + GAP
         return None
+
+    def _seen(self) -> tuple[object, ...]:
+        """All that the drawing depends on."""
+        lines = self.height_in_rows
+        rows = [] if self._rows is None else self._rows.slice(self._top, lines).rows()
+        thumbs = [self._thumb(HEADER_LINES + line) for line in range(lines)]
+        return str(rows), thumbs, self._top, self._cursor, self._sort, self._widths()
 
     def _keep_in_sight(self) -> None:
         seen = self.height_in_rows

@@ -5,7 +5,7 @@ from __future__ import annotations
 from textual import events
 from textual.message import Message
 
-from screener.ui.drawing import Drawing
+from screener.ui.drawing import Drawing, shapes
 from screener.ui.numbers import p_text, r_text, reading_text
 from screener.ui.palette import FLAGGED, PLAIN, QUIET, STRONG
 from screener.ui.shown import ascii_only, shown
@@ -77,4 +77,5 @@ def _parameters(drawing: Drawing) -> Line:
     location, scale = drawing.fit.get("location"), drawing.fit.get("scale")
     if location is None or scale is None:
         return plain("")
-    return plain(f"location {reading_text(location)}   scale {reading_text(scale)}", QUIET)
+    shape = "   shape " + ", ".join(map(reading_text, shapes(drawing.fit))) if shapes(drawing.fit) else ""
+    return plain(f"location {reading_text(location)}   scale {reading_text(scale)}{shape}", QUIET)
