@@ -71,7 +71,7 @@ COLUMNS: tuple[Column, ...] = (
     Column("critical_r", "critical r", 10, lambda row: r_text(row["critical_r"])),
     Column("p", "p", 7, lambda row: p_text(row["p"])),
     Column("departure_size", "off (sd)", 8, lambda row: size_text(row["departure_size"]), falling_first=True),
-    Column("remark", "closest/reason", 0, lambda row: shown(remark(row))),
+    Column("remark", "closest", 0, lambda row: shown(remark(row))),
 )
 
 SOURCES = ("position", "channel", "unit", "n", "r", "critical_r", "p", "departure_size", "verdict", "reason", "closest")

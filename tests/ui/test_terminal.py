@@ -108,7 +108,7 @@ def test_keys_that_arrive_together_are_acted_upon_in_order(folder: Path) -> None
         run.wait_for("1 of 240 channels")
         run.send("f/w_15x\x7f3")
         run.wait_for("Find: w_153")
-        assert any(line.startswith(">! flow_153 ") for line in run.lines)
+        run.wait_for("\n>! flow_153 ")
         run.send("\x1b")
         run.wait_for("q quit")
         run.send("\x1b[B\x1b[B6f\r]")
