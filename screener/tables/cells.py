@@ -72,6 +72,11 @@ def is_date(cell: str) -> bool:
     return _DATED.match(cell.strip()) is not None
 
 
+def is_blank(line: str) -> bool:
+    """Whether a line holds nothing that shows."""
+    return not line.replace("\0", "").replace("\ufeff", "").strip()
+
+
 def is_missing(cell: str) -> bool:
     """Whether the cell always means a missing reading."""
     return not cell or cell in MISSING

@@ -7,14 +7,30 @@ import numpy as np
 import polars as pl
 from numpy.typing import NDArray
 
-_GLANCED_ROWS = 256
+_GLANCED_READINGS = 2_000_000
+_GLANCED_ROWS = (32, 256)
 _FEWEST_RISING = 3
 _FEWEST_STEADY = 5
 """Three readings may rise evenly by chance, unless by 1."""
+_FEWEST_FLAGS = 10
+_FEWEST_CODES = 40
+_MOST_CODES = 20
 _BATCH_READINGS = 8_000_000
 _STEADY = 8 * np.finfo(np.float64).eps
 """How far, relative to the largest reading, decimal steps such as 0.1 may stray from one line in binary."""
 _TIME = re.compile(r"time|date|epoch|clock|elapsed", re.IGNORECASE)
+_WORD = re.compile(r"[A-Z]?[a-z]+|[A-Z]+")
+_IDENTIFIES = frozenset({
+    *("id", "ids", "uid", "uuid", "serial", "barcode", "sn", "part", "unit", "dut", "no", "nr", "key"),
+    *("lot", "batch", "wafer", "sample", "specimen"),
+})  # fmt: skip
+_CODES = frozenset({
+    *("code", "codes", "status", "state", "mode", "flag", "class", "category", "grade", "bin", "type", "variant"),
+    *("recipe", "program", "tool", "lot", "batch", "shift", "operator", "station", "cavity", "slot", "group", "site"),
+    *("ok", "pass", "fail", "alarm", "error", "quality"),
+})  # fmt: skip
+_EPOCH_SECONDS = (1.0e9, 2.3e9)
+_EPOCH_UNITS = {1.0: "seconds", 1e3: "milliseconds", 1e6: "microseconds", 1e9: "nanoseconds"}
 
 
 def reading(*columns: str) -> pl.Expr:
@@ -36,37 +52,42 @@ def reason_for_type(dtype: pl.DataType) -> str:
 
 
 def unfit(frame: pl.LazyFrame, columns: Sequence[str], rows: int, shown: Mapping[str, str]) -> dict[str, str]:
-    """For each numeric column that is constant, empty, a row counter or a time stamp: the reason.
+    """For each numeric column that is constant, empty, a counter, a time, an identifier, a code or a flag: the reason.
 
     The first rows clear most columns; only the rest is read to the end, some at a time. `shown` gives each
     column's name.
     """
     if not columns:
         return {}
-    first = _readings(frame.select(reading(*columns)).head(_GLANCED_ROWS))
+    fewest, most = _GLANCED_ROWS
+    glanced = max(fewest, min(most, _GLANCED_READINGS // len(columns)))
+    first = readings_of(frame.select(reading(*columns)).head(glanced))
     suspects = [column for column, suspect in zip(columns, _suspects(first), strict=True) if suspect]
     reasons: dict[str, str] = {}
     width = max(1, _BATCH_READINGS // rows)
     for start in range(0, len(suspects), width):
         batch = suspects[start : start + width]
-        readings = _readings(frame.select(reading(*batch)))
+        readings = readings_of(frame.select(reading(*batch)))
         reasons |= {column: _reason(row, shown[column]) for column, row in zip(batch, readings, strict=True)}
     return {column: reason for column, reason in reasons.items() if reason}
 
 
-def _readings(frame: pl.LazyFrame) -> NDArray[np.float64]:
+def readings_of(frame: pl.LazyFrame) -> NDArray[np.float64]:
     """float64[columns, rows], null as NaN."""
     readings: NDArray[np.float64] = frame.collect().to_numpy(order="fortran").T
     return readings
 
 
-def _suspects(first: NDArray[np.float64]) -> list[bool]:
-    """Columns that do not vary in the first rows, or rise from each row to the next."""
+def _suspects(first: NDArray[np.float64]) -> NDArray[np.bool_]:
+    """Columns that do not vary in the first rows, rise from each row to the next, or hold whole numbers only."""
     known = ~np.isnan(first)
     low = np.where(known, first, np.inf).min(axis=1)
     high = np.where(known, first, -np.inf).max(axis=1)
-    rising = (first[:, 1:] > first[:, :-1]).all(axis=1)
-    return list(~(low < high) | rising)
+    few = first[:, : min(_GLANCED_ROWS)]
+    rising = np.all(few[:, 1:] >= few[:, :-1], axis=1)
+    whole = np.all((few == np.floor(few)) | np.isnan(few), axis=1)
+    suspects: NDArray[np.bool_] = np.logical_or(np.logical_or(~(low < high), rising), whole)
+    return suspects
 
 
 def _reason(readings: NDArray[np.float64], name: str) -> str:
@@ -76,13 +97,39 @@ def _reason(readings: NDArray[np.float64], name: str) -> str:
         return "empty: no readings"
     if len(known) > 1 and (known == known[0]).all():
         return f"constant: every reading is {float(known[0])!r}"
-    if len(known) < max(len(readings), _FEWEST_RISING):
+    return _counting(known, len(readings), name) or _coding(known, name)
+
+
+def _counting(known: NDArray[np.float64], rows: int, name: str) -> str:
+    """Why readings that rise with the rows are no measurement."""
+    if len(known) < max(rows, _FEWEST_RISING):
         return ""
     step = _steady_step(known)
     if step and (step == 1 or len(known) >= _FEWEST_STEADY):
         return f"a row counter: it goes up by {step:.12g} from row to row"
+    if not (known[1:] >= known[:-1]).all():
+        return ""
+    for factor, unit in _EPOCH_UNITS.items():
+        low, high = (bound * factor for bound in _EPOCH_SECONDS)
+        if low <= known[0] and known[-1] <= high:
+            return f"time stamps: {unit} since 1970, never falling"
     if _TIME.search(name) and (known[1:] > known[:-1]).all():
         return "time stamps: they rise from row to row, and the name says time"
+    return ""
+
+
+def _coding(known: NDArray[np.float64], name: str) -> str:
+    """Why whole numbers that stand for something else are no measurement."""
+    if len(known) < _FEWEST_STEADY or not (known == np.floor(known)).all():
+        return ""
+    words = {word.lower() for word in _WORD.findall(name)}
+    different = len(np.unique(known))
+    if len(known) >= _FEWEST_FLAGS and different == 2 and set(np.unique(known).tolist()) == {0.0, 1.0}:
+        return "flags: every reading is 0 or 1"
+    if different == len(known) and words & _IDENTIFIES:
+        return "identifiers: whole numbers, no two alike, and the name says so"
+    if len(known) >= _FEWEST_CODES and different <= _MOST_CODES and words & _CODES:
+        return f"codes: {different} different whole numbers, and the name says so"
     return ""
 
 
@@ -92,5 +139,6 @@ def _steady_step(known: NDArray[np.float64]) -> float:
     if not (np.isfinite(first) and np.isfinite(last) and last > first):
         return 0.0
     step = last / (len(known) - 1) - first / (len(known) - 1)
-    steady = np.abs(known - (first + step * np.arange(len(known)))) <= _STEADY * max(abs(first), abs(last))
+    at = np.arange(len(known)) / (len(known) - 1)
+    steady = np.abs(known - (first * (1 - at) + last * at)) <= _STEADY * max(abs(first), abs(last))
     return step if bool(steady.all() and (known[1:] > known[:-1]).all()) else 0.0

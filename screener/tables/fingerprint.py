@@ -10,7 +10,6 @@ from pathlib import Path
 
 WHOLE_BYTES = 256 << 20
 _PIECES = 64
-_DIGEST_BYTES = 20
 _PIECE_BYTES = 1 << 20
 
 
@@ -23,7 +22,7 @@ def fingerprint(path: Path, *, whole_bytes: int = WHOLE_BYTES) -> str:
 
 
 def _whole(path: Path) -> str:
-    digest = hashlib.blake2b(digest_size=_DIGEST_BYTES)
+    digest = hashlib.sha256()
     with path.open("rb") as file:
         while piece := file.read(_PIECE_BYTES):
             digest.update(piece)
@@ -31,7 +30,7 @@ def _whole(path: Path) -> str:
 
 
 def _sampled(path: Path, size: int) -> str:
-    digest = hashlib.blake2b(digest_size=_DIGEST_BYTES)
+    digest = hashlib.sha256()
     digest.update(f"{size} {path.stat().st_mtime_ns} ".encode())
     last = max(0, size - _PIECE_BYTES)
     with path.open("rb") as file:

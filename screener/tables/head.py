@@ -7,7 +7,7 @@ from collections.abc import Iterable, Iterator, Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
-from screener.tables.cells import is_missing, is_number
+from screener.tables.cells import is_blank, is_missing, is_number
 
 if TYPE_CHECKING:
     from _csv import Reader
@@ -53,7 +53,7 @@ def head_rows(lines: Sequence[str], separator: str) -> Iterator[HeadRow]:
     """The rows that are not blank; a line whose quotation mark is never closed is a row of its own."""
     at = 0
     while at < len(lines):
-        if not lines[at].strip("\0 \t\r\n"):
+        if is_blank(lines[at]):
             at += 1
             continue
         cells, used = _row(lines[at:], separator)
@@ -72,14 +72,15 @@ def _row(lines: Sequence[str], separator: str) -> tuple[list[str], int]:
 
 def separator_of(lines: Sequence[str], *, prefer_tab: bool) -> str:
     """The separator that makes most lines rows of equal length whose cells are values; more cells win a tie."""
-    first = next(line for line in lines if line.strip())
+    first = next(line for line in lines if not is_blank(line))
     if prefer_tab and "\t" in first:
         return "\t"
     if _one_column_of_decimal_commas(lines):
         return ";"
     tried = [separator for separator in SEPARATORS if any(separator in line.strip() for line in lines)]
-    best = max(tried, key=lambda separator: _agreement(lines, separator), default="")
-    if best and _agreement(lines, best)[0] > 0:
+    agreements = {separator: _agreement(lines, separator) for separator in tried}
+    best = max(tried, key=agreements.__getitem__, default="")
+    if best and agreements[best][0] > 0:
         return best
     return next((separator for separator in SEPARATORS if separator not in tried), ",")
 
@@ -102,6 +103,6 @@ def _agreement(lines: Sequence[str], separator: str) -> tuple[float, int]:
 
 def _one_column_of_decimal_commas(lines: Sequence[str]) -> bool:
     """Whether every line after the name is one number with a decimal comma, which a comma would cut in two."""
-    kept = [line.strip() for line in lines if line.strip()]
+    kept = [line.strip() for line in lines if not is_blank(line)]
     numbers = [line for line in kept if re.fullmatch(r"[+-]?\d+,\d+(?:[eE][+-]?\d+)?", line)]
     return len(kept) > 1 and len(numbers) == len(kept) - 1 and "," not in kept[0] and kept[0] not in numbers

@@ -13,6 +13,7 @@ from screener.tables.votes import decimal_vote
 _SAMPLED_ROWS = 20
 _SAMPLED_CELLS = 10_000
 _FEWEST_ROWS = 4
+_VOTING_CELLS = 200
 
 
 @dataclass(frozen=True, slots=True)
@@ -64,7 +65,7 @@ def layout_of(lines: Sequence[str], plan: Plan | None = None, *, prefer_tab: boo
     rows = list(head_rows(lines, separator))
     header = header_of(rows, header_line=plan.header_line, units_line=plan.units_line, comment=plan.comment)
     sampled = list(_sample(rows, header))
-    cells = (cell.strip() for row in sampled for cell in row)
+    cells = (cell.strip() for row in sampled for cell in row[:: max(1, len(row) // _VOTING_CELLS)])
     vote = decimal_vote(cells, separator=separator)
     comma = vote.comma if not plan.decimal else _given_decimal(plan.decimal)
     names = header.names
@@ -112,7 +113,20 @@ def _sample(rows: Sequence[HeadRow], header: Header) -> Iterator[list[str]]:
 
 def _word_columns(rows: Sequence[Sequence[str]], *, decimal_comma: bool, separator: str) -> Iterator[int]:
     for row in rows:
+        if _all_plain(row):
+            continue
         for at, cell in enumerate(row):
             plain = cell.replace(",", ".") if decimal_comma and separator != "," else cell
             if plain.strip() and (plain != plain.strip() or not is_number(plain)):
                 yield at
+
+
+def _all_plain(row: Sequence[str]) -> bool:
+    """Whether every cell is a plain number, told quickly; false where a closer look is needed."""
+    text = "".join(row)
+    if not text.isascii() or "_" in text or len(text.split(maxsplit=1)) > 1 or text != text.strip():
+        return False
+    try:
+        return all(map(float, row)) or True
+    except ValueError:
+        return False

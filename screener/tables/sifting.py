@@ -3,8 +3,10 @@
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field, replace
 
+import numpy as np
 import polars as pl
 
+from screener.records import Proposal
 from screener.tables.cells import (
     TextColumn,
     count_cells,
@@ -16,11 +18,12 @@ from screener.tables.cells import (
     word_remarks,
 )
 from screener.tables.chosen import Choice
+from screener.tables.codes import proposed_codes
 from screener.tables.columns import reading, reason_for_type, unfit
 from screener.tables.forms import CELL, Form, Forms, forms_of, unusual
 from screener.tables.raw import RawTable
 
-GUESSES = ("a row counter", "time stamps")
+GUESSES = ("a row counter", "time stamps", "identifiers", "codes", "flags")
 """How the reasons begin that rest on a guess; a column asked for by its very name is kept all the same."""
 
 
@@ -32,6 +35,7 @@ class Sifted:
     columns: tuple[str, ...]
     reasons: dict[str, str]
     remarks: tuple[str, ...]
+    proposals: tuple[Proposal, ...] = ()
     below: Mapping[str, int] = field(default_factory=dict)
     """Readings of a column that are known only to lie below a detection limit."""
     above: Mapping[str, int] = field(default_factory=dict)
@@ -67,11 +71,14 @@ def sift(raw: RawTable, shown: Mapping[str, str], choice: Choice, missing: Seque
     by_name = {column for at, column in enumerate(schema) if at in choice.by_name}
     reasons |= {c: why for c, why in unfit_reasons.items() if not (c in by_name and why.startswith(GUESSES))}
     columns = tuple(column for column in schema if column not in reasons)
-    remarks = (*text.remarks, *codes)
+    proposals = proposed_codes(frame, columns, raw.rows, held=raw.held)
+    remarks = (*text.remarks, *codes, *(proposal.sentence() for proposal in proposals))
     if text.forms is None:
-        return Sifted(_only(frame, columns), columns, reasons, remarks)
+        return Sifted(_only(frame, columns), columns, reasons, remarks, proposals)
     units = {column: form.suffix for column, form in text.forms.by_column.items()}
-    return Sifted(_only(frame, columns), columns, reasons, remarks, text.forms.below, text.forms.above, units)
+    return Sifted(
+        _only(frame, columns), columns, reasons, remarks, proposals, text.forms.below, text.forms.above, units
+    )
 
 
 def _settled(frame: pl.LazyFrame, *, held: bool) -> pl.LazyFrame:
@@ -163,7 +170,9 @@ def _without_codes(
     codes = [float(token) for token in missing if is_number(token)]
     if not codes or not columns:
         return frame, ()
-    marked = [reading(column).is_in(codes) for column in columns]
+    schema = frame.collect_schema()
+    rounded = [float(np.float32(code)) for code in codes]
+    marked = [reading(column).is_in(rounded if schema[column] == pl.Float32 else codes) for column in columns]
     cells = sum(frame.select(mark.sum() for mark in marked).collect().row(0))
     blanked = [
         pl.when(mark).then(None).otherwise(reading(column)).alias(column)

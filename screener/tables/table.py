@@ -111,7 +111,7 @@ def _table(path: Path, plan: Plan, raw: RawTable, content: str) -> Table:
         raise _nothing_to_screen(path, choice, set_aside)
     remarks = (*raw.remarks, *name_remarks, *choice.remarks, *sifted.remarks)
     channels = _channels(sifted, by_column)
-    facts = TableFacts(path, raw.format, raw.rows, channels, set_aside, content, remarks, raw.dialect)
+    facts = TableFacts(path, raw.format, raw.rows, channels, set_aside, content, remarks, raw.dialect, sifted.proposals)
     return Table(facts, sifted.columns, sifted.frame.collect() if raw.held else None, sifted.frame)
 
 

@@ -11,6 +11,7 @@ import polars as pl
 
 from screener.errors import TableError
 from screener.records import Plan
+from screener.tables.cells import is_blank
 from screener.tables.encoding import Text, blanks_as_tabs, text_lines, utf8_text
 from screener.tables.formats import Recognised
 from screener.tables.head import SEPARATORS
@@ -40,7 +41,7 @@ def read_text(path: Path, recognised: Recognised, plan: Plan | None = None) -> R
     """
     plan = plan or Plan()
     text = utf8_text(path, recognised.packing, given=plan.encoding)
-    if not any(line.strip("\0 \t\r\n") for line in text.head):
+    if not any(not is_blank(line) for line in text.head):
         raise TableError(f"Couldn't read {str(path)!r}: it begins with nothing but blank lines.")
     prefer_tab = bool(_TAB_SUFFIXES & {suffix.lower() for suffix in path.suffixes})
     layout = layout_of(text.head, plan, prefer_tab=prefer_tab)

@@ -146,14 +146,16 @@ def test_a_path_that_is_not_unicode_text(tmp_path: Path) -> None:
     assert opened(path).readings.tolist() == [[1, 4]]
 
 
-def test_the_digits_bundled_with_scikit_learn_have_three_constant_pixels(tmp_path: Path) -> None:
+def test_the_digits_bundled_with_scikit_learn_have_three_constant_pixels_and_three_flags(tmp_path: Path) -> None:
     pixels = load_digits(as_frame=False).data
     columns = {f"pixel {at}": pixels[:, at] for at in range(pixels.shape[1])}
     pl.DataFrame(columns).write_csv(tmp_path / "digits.csv")
     table = opened(tmp_path / "digits.csv")
     assert table.facts.rows == 1797
-    assert table.reasons == dict.fromkeys(["pixel 0", "pixel 32", "pixel 39"], "constant: every reading is 0.0")
-    assert_array_equal(table.readings, np.delete(pixels, [0, 32, 39], axis=1).T)
+    constant = dict.fromkeys(["pixel 0", "pixel 32", "pixel 39"], "constant: every reading is 0.0")
+    flags = dict.fromkeys(["pixel 24", "pixel 31", "pixel 56"], "flags: every reading is 0 or 1")
+    assert table.reasons == constant | flags
+    assert_array_equal(table.readings, np.delete(pixels, [0, 24, 31, 32, 39, 56], axis=1).T)
 
 
 def test_the_measurements_bundled_with_scikit_learn_are_thirty_channels(tmp_path: Path) -> None:

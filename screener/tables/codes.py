@@ -1,0 +1,104 @@
+"""Codes for a missing reading, such as -9999: an exact value far off all others that comes again and again.
+
+They are only proposed. A value is proposed when it is the lowest or the highest of its channel, stands there at least
+twice, and lies further from the other readings than three times the range of those.
+"""
+
+from collections.abc import Iterator, Sequence
+from decimal import Decimal
+from math import nan
+
+import numpy as np
+import polars as pl
+from numpy.typing import NDArray
+
+from screener.records import Proposal
+
+_GLANCED_ROWS = 64
+_MIDDLE = (0.1, 0.9)
+_FAR_FOR_A_GLANCE = 4.0
+"""Widths of the middle of a few rows; a rough sieve in front of the rule."""
+_FAR = 3.0
+_FEWEST_CELLS = 2
+_FEWEST_OTHERS = 3
+_BATCH_READINGS = 8_000_000
+
+
+def proposed_codes(frame: pl.LazyFrame, columns: Sequence[str], rows: int, *, held: bool) -> tuple[Proposal, ...]:
+    """The values that look like codes for a missing reading, those in most cells first."""
+    if rows < _FEWEST_CELLS + _FEWEST_OTHERS or not columns:
+        return ()
+    found: dict[str, list[int]] = {}
+    schema = frame.collect_schema()
+    for batch in _batches(columns, rows, held=held):
+        part = frame.collect() if held and len(schema) == len(columns) else frame.select(batch).collect()
+        for column in _far_reaching(part):
+            for value, cells in _codes(column.cast(pl.Float64).to_numpy()):
+                found.setdefault(_written(value, column.dtype), []).append(cells)
+    ranked = sorted(found.items(), key=lambda item: (-sum(item[1]), item[0]))
+    return tuple(Proposal(value, len(cells), sum(cells)) for value, cells in ranked)
+
+
+def _batches(columns: Sequence[str], rows: int, *, held: bool) -> Iterator[Sequence[str]]:
+    """All columns where they stand in memory already, else as many as can be read at a time."""
+    width = len(columns) if held else max(1, _BATCH_READINGS // rows)
+    for start in range(0, len(columns), width):
+        yield columns[start : start + width]
+
+
+def _far_reaching(frame: pl.DataFrame) -> list[pl.Series]:
+    """The columns whose lowest or highest reading lies far from the middle of some of their rows."""
+    glance = frame[list(range(0, len(frame), max(1, len(frame) // _GLANCED_ROWS)))]
+    ordered = np.sort(glance.to_numpy(order="fortran").T.astype(np.float64), axis=1)
+    known = np.count_nonzero(~np.isnan(ordered), axis=1)
+    at = np.arange(len(ordered))
+    bottom, top = (ordered[at, np.maximum(0, (share * (known - 1)).astype(np.int64))] for share in _MIDDLE)
+    series = frame.get_columns()
+    lowest, highest = (np.array([_float(one) for one in ends]) for ends in zip(*map(_ends, series), strict=True))
+    with np.errstate(invalid="ignore", over="ignore"):
+        far = _FAR_FOR_A_GLANCE * (top - bottom)
+        reaching = (lowest < bottom - far) | (highest > top + far)
+    return [column for column, one in zip(series, reaching, strict=True) if one]
+
+
+def _ends(column: pl.Series) -> tuple[object, object]:
+    return column.min(), column.max()
+
+
+def _float(value: object) -> float:
+    return float(value) if isinstance(value, int | float | Decimal) else nan
+
+
+def _codes(readings: NDArray[np.float64]) -> Iterator[tuple[float, int]]:
+    """The code at the low end and at the high end of a channel, with the number of its cells."""
+    known = np.sort(readings[np.isfinite(readings)])
+    if len(known) < _FEWEST_CELLS + _FEWEST_OTHERS:
+        return
+    at_bottom = int(np.searchsorted(known, known[0], "right"))
+    at_top = len(known) - int(np.searchsorted(known, known[-1], "left"))
+    low = at_bottom if at_bottom >= _FEWEST_CELLS else 0
+    high = at_top if at_top >= _FEWEST_CELLS else 0
+    for first, last in ((low, high), (low, 0), (0, high)):
+        others = known[first : len(known) - last]
+        if (first or last) and _are_codes(known, others, bottom=bool(first), top=bool(last)):
+            if first:
+                yield float(known[0]), first
+            if last:
+                yield float(known[-1]), last
+            return
+
+
+def _are_codes(known: NDArray[np.float64], others: NDArray[np.float64], *, bottom: bool, top: bool) -> bool:
+    """Whether the ends lie far off the other readings, of which at least three differ."""
+    if len(np.unique(others)) < _FEWEST_OTHERS:
+        return False
+    with np.errstate(over="ignore"):
+        reach = _FAR * (others[-1] - others[0])
+        return (not bottom or others[0] - known[0] > reach) and (not top or known[-1] - others[-1] > reach)
+
+
+def _written(value: float, dtype: pl.DataType) -> str:
+    """The value as a user would write it."""
+    if value.is_integer() and abs(value) < 1e15:
+        return str(int(value))
+    return str(np.float32(value)) if dtype == pl.Float32 else repr(value)
