@@ -93,7 +93,8 @@ def again(run: "RunFile") -> str:
     for field in fields(Plan):
         value = getattr(plan, field.name)
         if value != getattr(usual, field.name):
-            words += [f"--{field.name}={one}" for one in (value if isinstance(value, tuple) else (value,))]
+            option = f"--{field.name.replace('_', '-')}"
+            words += [f"{option}={one}" for one in (value if isinstance(value, tuple) else (value,))]
     command = shlex.join([*words, "-o", str(run.path)])
     return f"`{command}`" if command.isprintable() else "`screener score` with the same table and options"
 

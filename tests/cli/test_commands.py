@@ -1,6 +1,7 @@
 """Every command on a real table."""
 
 import json
+import shlex
 from pathlib import Path
 
 import numpy as np
@@ -204,13 +205,11 @@ def test_a_table_of_another_rule_is_asked_for_in_a_sentence(table: Path, monkeyp
 
 
 def test_the_command_that_goes_on_names_every_option_of_the_plan(table: Path) -> None:
-    screener("score", table, "--alpha", "0.01", "--control", "fdr", "--skip", "x *", "--skip", "y", "-o", "my run.run")
+    words = ["--alpha=0.01", "--control=fdr", "--skip=x *", "--skip=y", "--header-line=1", "-o", "my run.run"]
+    assert screener("score", table, *words).code == 0
     sentence = screener("score", "my run.run").complaints[0]
-    command = "screener score rig.csv --alpha=0.01 --control=fdr '--skip=x *' --skip=y -o 'my run.run'"
-    assert f"`{command}`" in sentence
-    assert (
-        screener(
-            *["score", "rig.csv", "--alpha=0.01", "--control=fdr", "--skip=x *", "--skip=y", "-o", "my run.run"]
-        ).code
-        == 0
-    )
+    command = shlex.split(sentence.split("`")[1])
+    assert command == ["screener", "score", "rig.csv", *words]
+    again = screener(*command[1:])
+    assert again.code == 0
+    assert "scored before: 3 of 3 channels" in again.err
