@@ -27,6 +27,15 @@ class Control(StrEnum):
     """The Benjamini-Hochberg adjusted p (q) is below alpha."""
 
 
+class Decision(StrEnum):
+    """What a person decided to do with a channel."""
+
+    USE = "use as it is"
+    TRANSFORM = "use transformed"
+    LEAVE_OUT = "leave out"
+    LOOK_AGAIN = "look again"
+
+
 class Verdict(StrEnum):
     """The outcome for one channel."""
 
@@ -182,8 +191,16 @@ class BlockScores:
     scale: FloatArray
     notes: tuple[tuple[str, ...], ...]
     """[C][F] a word about the fit, such as `outside support`; usually empty."""
+    shapes: FloatArray
+    """[C, F, 2] shape parameters; NaN where the family has fewer."""
+    held: IntArray
+    """[C] which family the channel is held against."""
+    closest: IntArray
+    """[C] the closest family that its own test does not reject; -1 when there is none."""
     points: tuple[FloatArray, ...]
     """[C] sorted readings kept for the plot, at the ranks `stats.points.kept_ranks(n)`."""
+    in_order: tuple[FloatArray, ...] = ()
+    """[C] readings kept in row order, as `stats.row_order.kept_in_order` keeps them; empty when none are."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -221,7 +238,16 @@ class RunFinished:
     seconds: float
 
 
-Event = TableOpened | BlockScored | BlockFailed | RunFinished
+@dataclass(frozen=True, slots=True)
+class NullsPrepared:
+    """A part of the null distributions that this run needs was simulated."""
+
+    positions: str
+    work_done: float
+    """Share of the work, 0 to 1."""
+
+
+Event = TableOpened | NullsPrepared | BlockScored | BlockFailed | RunFinished
 
 RESULT_COLUMNS: dict[str, type[int] | type[float] | type[str]] = {
     "channel": str,
@@ -259,6 +285,8 @@ FIT_COLUMNS: dict[str, type[int] | type[float] | type[str] | type[bool]] = {
     "extrapolated": bool,
     "location": float,
     "scale": float,
+    "shape_1": float,
+    "shape_2": float,
     "note": str,
 }
 """One row per family for a single channel, in the order of the registry."""

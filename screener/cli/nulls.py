@@ -20,21 +20,33 @@ def command() -> None:
 def info(positions: str) -> None:
     """Show what a null table holds, how it was made, and its Monte Carlo error."""
     from screener.cli.output import put
-    from screener.screening.null_source import null_table
+    from screener.screening.null_source import held_nulls
 
-    table = null_table(positions)
+    nulls = held_nulls(positions)
+    if nulls is None:
+        raise ScreenerError(
+            f"There are no null tables for {positions!r} positions yet: `screener nulls build --positions {positions}` "
+            "makes them; a run under these positions simulates what it needs."
+        )
+    table = nulls.plain
     head = f"{'n':>8} {'samples':>9} {'s.e. of alpha 5 %':>18} {'s.e. of alpha 1 %':>18} {'counted down to p':>18}"
     lines = [
-        f"null table version {table.version}, {table.rule} positions",
-        f"families: {', '.join(table.families)}",
-        "the others share one of these: its mirror image, or its logarithm",
-        f"{table.sizes.size} sample sizes from {table.sizes[0]} to {table.sizes[-1]:,}",
+        f"null tables version {nulls.version}, {nulls.rule} positions; quantiles of ln(1 - r), simulated",
+        f"families without shapes: {', '.join(table.families)};",
+        "  smallest extreme value, lognormal, Weibull and log-logistic share one of these (mirror image or logarithm)",
+        f"families with shapes, given the estimated shape: {', '.join(nulls.shaped)}",
+        "p beyond what was counted is read from a fitted generalized Pareto tail and marked as extrapolated",
         "",
+        "families without shapes",
         head,
     ]
     for size, samples, floor in zip(table.sizes, table.samples, table.floor, strict=True):
         errors = "".join(f"{100 * (a * (1 - a) / samples) ** 0.5:>14.3f} pp. " for a in (0.05, 0.01))
         lines.append(f"{size:>8,} {samples:>9,}{errors} {floor:>17g}")
+    lines += ["", "families with shapes", f"{'n':>8} samples over all true shapes"]
+    for row, size in enumerate(next(iter(nulls.shaped.values())).sizes):
+        counts = sorted({int(shaped.samples[row]) for shaped in nulls.shaped.values()})
+        lines.append(f"{size:>8,} {' or '.join(f'{count:,}' for count in counts)}")
     put(lines)
 
 
@@ -53,22 +65,21 @@ def info(positions: str) -> None:
 def build(positions: str, output: Path | None, seed: int, share: float, jobs: int | None) -> None:
     """Simulate a null table; a build that was stopped goes on where it was."""
     from screener.cli.output import path_text, tell
-    from screener.screening.null_build import BuildPlan, build, built_table, write_table
+    from screener.screening.null_build import build, parts, write_arrays
     from screener.screening.null_source import built_path, null_folder
     from screener.screening.workers import usable_cores
-    from screener.stats.null.grid import SIZES, samples_at
+    from screener.stats.null.packing import packed, tasks
     from screener.stats.positions import rule_key
 
     rule = rule_key(positions)
-    samples = {n: max(2000, int(share * samples_at(n))) for n in SIZES}
-    plan = BuildPlan(rule, samples, seed, null_folder() / "parts")
+    wanted, folder = tasks(rule, seed, share), null_folder() / "parts"
     path = output or built_path(rule)
     with _explained():
         path.parent.mkdir(parents=True, exist_ok=True)
-        path.touch()
-        for node in build(plan, jobs or usable_cores()):
-            tell(f"n = {node.n:,}: {node.done} of {node.total} sizes, {node.work_done:.0%} of the work")
-        write_table(built_table(plan), path)
+        path.open("ab").close()
+        for part in build(wanted, folder, jobs or usable_cores()):
+            tell(f"{part.name}: {part.done} of {part.total} parts, {part.work_done:.0%} of the work")
+        write_arrays(packed(parts(wanted, folder), rule), path)
     tell(f"null table for {rule} positions written to {path_text(path)}")
 
 

@@ -45,6 +45,12 @@ PLAN_OPTIONS = (
     click.option("--channels", multiple=True, metavar="GLOB", help="Screen only the columns of these names."),
     click.option("--skip", multiple=True, metavar="GLOB", help="Leave the columns of these names aside."),
     click.option("--missing", multiple=True, metavar="TOKEN", help="A cell text that means a missing reading."),
+    click.option(
+        "--expect",
+        multiple=True,
+        metavar="GLOB=FAMILY",
+        help="Hold channels of these names against another family, such as 'runout*=half-normal'.",
+    ),
     click.option("--seed", type=int, default=DEFAULTS.seed, show_default=True, help="Seed of everything random."),
 )
 
@@ -98,6 +104,7 @@ def plan_from(given: dict[str, Any]) -> Plan:
         comment=given["comment"],
         shape=given["shape"] or "",
         part=given["part"],
+        expect=given["expect"],
     )
 
 

@@ -7,11 +7,15 @@ import time
 from collections.abc import Callable, Generator, Iterator
 from contextlib import closing, contextmanager
 from types import FrameType
+from typing import TYPE_CHECKING, cast
 
 from screener.cli.output import path_text, tell
 from screener.errors import ScreenerError
-from screener.records import BlockFailed, BlockScored, Event, RunFinished, TableOpened
+from screener.records import BlockFailed, BlockScored, Event, NullsPrepared, RunFinished, TableOpened
 from screener.ui.numbers import seconds_text
+
+if TYPE_CHECKING:
+    from screener.stats.null.nulls import Nulls
 
 SET_ASIDE_SHOWN = 8
 """Columns set aside that are named; the rest are counted."""
@@ -66,6 +70,9 @@ class Progress:
         elif isinstance(event, BlockScored):
             self._done += event.scores.span.stop - event.scores.span.first
             self._tell_progress()
+        elif isinstance(event, NullsPrepared):
+            self._tell(preparing_line(event))
+            self._started = time.monotonic()
         elif isinstance(event, RunFinished):
             if self._rewriting:
                 tell("")
@@ -77,15 +84,36 @@ class Progress:
         return f"{self._done:,} of {self._total:,} channels"
 
     def _tell_progress(self) -> None:
+        elapsed = max(time.monotonic() - self._started, 1e-9)
+        self._tell(progress_line(self._done, self._total, (self._done - self._before) / elapsed))
+
+    def _tell(self, line: str) -> None:
         now = time.monotonic()
         if not self._rewriting and now - self._told < PAUSE:
             return
         self._told = now
-        line = progress_line(self._done, self._total, (self._done - self._before) / max(now - self._started, 1e-9))
         if self._rewriting:
             tell("\r" + line.ljust(60), end="")
         else:
             tell(line)
+
+
+def finished(preparing: "Generator[NullsPrepared, None, Nulls | None]") -> "Nulls | None":
+    """Go through a preparation, telling of it; what it prepared."""
+    told = -PAUSE
+    while True:
+        try:
+            event = next(preparing)
+        except StopIteration as end:
+            return cast("Nulls | None", end.value)
+        if time.monotonic() - told >= PAUSE:
+            told = time.monotonic()
+            tell(preparing_line(event))
+
+
+def preparing_line(event: NullsPrepared) -> str:
+    """How far the simulation of null distributions is."""
+    return f"simulating the null distributions for {event.positions} positions: {event.work_done:.0%}"
 
 
 def progress_line(done: int, total: int, rate: float) -> str:

@@ -1,95 +1,75 @@
-"""Building a null table node by node: in parallel, seeded, and resumable after a stop."""
+"""Building null tables part by part: in parallel, seeded, and resumable after a stop."""
 
-from collections.abc import Iterator
+import zipfile
+from collections.abc import Iterator, Mapping
 from concurrent.futures import Future, ThreadPoolExecutor, as_completed
 from dataclasses import dataclass
 from pathlib import Path
 
 import numpy as np
+from numpy.typing import NDArray
 from threadpoolctl import threadpool_limits
 
-from screener.stats.null.grid import Node
-from screener.stats.null.packing import NULL_VERSION, packed, simulated_node, table_from_nodes
-from screener.stats.null.table import NullTable
+from screener.stats.null.packing import Arrays, Task
 
 
 @dataclass(frozen=True, slots=True)
-class BuildPlan:
-    """What to simulate, and where the finished nodes are kept until the table is whole."""
+class PartBuilt:
+    """One part is simulated."""
 
-    rule: str
-    samples: dict[int, int]
-    """Samples to simulate, by n."""
-    seed: int
-    folder: Path
-
-
-@dataclass(frozen=True, slots=True)
-class NodeBuilt:
-    """One n is simulated, or was found finished."""
-
-    n: int
+    name: str
     done: int
     total: int
     work_done: float
     """Share of all readings that are to be simulated, 0 to 1."""
 
 
-def build(plan: BuildPlan, jobs: int) -> Iterator[NodeBuilt]:
-    """Simulate what is missing, largest n first; stopping the iteration keeps every finished node."""
-    plan.folder.mkdir(parents=True, exist_ok=True)
-    work = {n: n * samples for n, samples in plan.samples.items()}
-    missing = [n for n in plan.samples if not node_path(plan, n).exists()]
-    done_work = sum(work.values()) - sum(work[n] for n in missing)
-    with threadpool_limits(1, "blas"), ThreadPoolExecutor(jobs) as pool:
-        running: dict[Future[None], int] = {
-            pool.submit(_simulate, plan, n): n for n in sorted(missing, key=lambda n: -work[n])
-        }
+def build(tasks: Mapping[str, Task], folder: Path, jobs: int) -> Iterator[PartBuilt]:
+    """Simulate what the folder does not hold, costliest first; stopping the iteration keeps every finished part."""
+    folder.mkdir(parents=True, exist_ok=True)
+    missing = [task for task in tasks.values() if _stored(task, folder) is None]
+    work = sum(task.readings for task in tasks.values())
+    done = work - sum(task.readings for task in missing)
+    with threadpool_limits(1, "blas"):
+        pool = ThreadPoolExecutor(jobs)
         try:
-            for count, future in enumerate(as_completed(running), start=len(work) - len(missing) + 1):
+            costliest_first = sorted(missing, key=lambda task: -task.readings)
+            running: dict[Future[None], Task] = {pool.submit(_simulate, task, folder): task for task in costliest_first}
+            for count, future in enumerate(as_completed(running), start=len(tasks) - len(missing) + 1):
                 future.result()
-                done_work += work[running[future]]
-                yield NodeBuilt(running[future], count, len(work), done_work / sum(work.values()))
+                done += running[future].readings
+                yield PartBuilt(running[future].name, count, len(tasks), done / work)
         finally:
             pool.shutdown(wait=False, cancel_futures=True)
 
 
-def built_table(plan: BuildPlan) -> NullTable:
-    """The table of a finished build."""
-    sizes = sorted(plan.samples)
-    nodes = {n: _loaded(node_path(plan, n)) for n in sizes}
-    return table_from_nodes(nodes, plan.rule, [plan.samples[n] for n in sizes])
+def parts(tasks: Mapping[str, Task], folder: Path) -> dict[str, Arrays]:
+    """The parts of a finished build, by key."""
+    found = {key: _stored(task, folder) for key, task in tasks.items()}
+    return {key: part for key, part in found.items() if part is not None}
 
 
-def write_table(table: NullTable, path: Path) -> None:
-    """Write the table as a compressed file, whole or not at all."""
+def write_arrays(arrays: Mapping[str, NDArray[np.generic]], path: Path) -> None:
+    """Write arrays as a compressed file, whole or not at all."""
+    path.parent.mkdir(parents=True, exist_ok=True)
     partial = path.with_name(path.name + ".partial")
     with partial.open("wb") as stream:
-        np.savez_compressed(stream, allow_pickle=False, **packed(table))
+        np.savez_compressed(stream, allow_pickle=False, **dict(arrays))
     partial.replace(path)
 
 
-def node_path(plan: BuildPlan, n: int) -> Path:
-    """Where the node of n is kept: its name holds everything that its content depends on."""
-    name = f"{plan.rule}-version{NULL_VERSION}-seed{plan.seed}-n{n}-samples{plan.samples[n]}.npz"
-    return plan.folder / name
+def _simulate(task: Task, folder: Path) -> None:
+    write_arrays(task.make(), _path(task, folder))
 
 
-def _simulate(plan: BuildPlan, n: int) -> None:
-    node = simulated_node(n, plan.rule, plan.samples[n], plan.seed)
-    path = node_path(plan, n)
-    partial = path.with_name(path.name + ".partial")
-    with partial.open("wb") as stream:
-        np.savez(
-            stream,
-            log_gap=node.log_gap,
-            tail_shape=node.tail_shape,
-            tail_scale=node.tail_scale,
-            floor=np.array(node.floor),
-        )
-    partial.replace(path)
+def _path(task: Task, folder: Path) -> Path:
+    return folder / f"{task.name}.npz"
 
 
-def _loaded(path: Path) -> Node:
-    with np.load(path) as arrays:
-        return Node(arrays["log_gap"], arrays["tail_shape"], arrays["tail_scale"], float(arrays["floor"]))
+def _stored(task: Task, folder: Path) -> Arrays | None:
+    """A finished part; a damaged one counts as missing."""
+    try:
+        with np.load(_path(task, folder)) as arrays:
+            return dict(arrays)
+    except (OSError, ValueError, EOFError, zipfile.BadZipFile):
+        return None

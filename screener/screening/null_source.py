@@ -1,15 +1,22 @@
-"""Which null table a run uses: the shipped one, or one that the user has built."""
+"""Which null tables a run uses: the shipped ones, or ones simulated for another rule of plotting positions."""
 
 import zipfile
+from collections.abc import Callable, Generator
 from pathlib import Path
 
 import numpy as np
 from platformdirs import user_cache_path
 
-from screener.errors import PlanError
-from screener.stats.null.packing import NULL_VERSION, shipped_table, unpacked
-from screener.stats.null.table import NullTable
+from screener.records import NullsPrepared
+from screener.screening.null_build import build, parts
+from screener.stats.null.nulls import Nulls
+from screener.stats.null.packing import NULL_VERSION, packed, shipped_nulls, tasks, unpacked
 from screener.stats.positions import DEFAULT_RULE, rule_key
+
+SEED = 20261
+
+SHARE_ON_DEMAND = 0.1
+"""Share of the shipped tables' samples that is simulated while a user waits."""
 
 
 def null_folder() -> Path:
@@ -18,27 +25,37 @@ def null_folder() -> Path:
 
 
 def built_path(rule: str) -> Path:
-    """Where the table of a rule without a shipped one is kept."""
+    """Where `screener nulls build` keeps the full table of a rule without a shipped one."""
     return null_folder() / f"{rule_key(rule)}-version{NULL_VERSION}.npz"
 
 
-def null_table(rule: str) -> NullTable:
-    """The null table for a rule of plotting positions.
+def nulls_for(
+    rule: str, largest: int, jobs: int, cancelled: Callable[[], bool] = lambda: False
+) -> Generator[NullsPrepared, None, Nulls | None]:
+    """Prepare the nulls of a rule for channels of up to `largest` readings; nothing when cancelled.
 
-    Raises: PlanError when there is none, or it is damaged.
+    What is simulated is kept in the cache, part by part; a damaged part is simulated again.
     """
+    held = held_nulls(rule)
+    if held is not None:
+        return held
+    key = rule_key(rule)
+    wanted = tasks(key, SEED, SHARE_ON_DEMAND, largest)
+    for part in build(wanted, null_folder() / "parts", jobs):
+        yield NullsPrepared(key, part.work_done)
+        if cancelled():
+            return None
+    return unpacked(packed(parts(wanted, null_folder() / "parts"), key))
+
+
+def held_nulls(rule: str) -> Nulls | None:
+    """The full tables of a rule, shipped or built before; None when there are none, or they are damaged or older."""
     key = rule_key(rule)
     if key == DEFAULT_RULE:
-        return shipped_table()
-    path = built_path(key)
-    way_out = f"`screener nulls build --positions {key}` makes it."
-    if not path.exists():
-        raise PlanError(f"There is no null table for {key!r} positions yet: {way_out}")
+        return shipped_nulls()
     try:
-        with np.load(path) as arrays:
-            table = unpacked(arrays)
-    except (OSError, ValueError, KeyError, zipfile.BadZipFile) as error:
-        raise PlanError(f"The null table for {key!r} positions is damaged ({error}): {way_out}") from error
-    if (table.version, table.rule) != (NULL_VERSION, key):
-        raise PlanError(f"The null table for {key!r} positions is of another version: {way_out}")
-    return table
+        with np.load(built_path(key)) as arrays:
+            nulls = unpacked(dict(arrays))
+    except (OSError, ValueError, KeyError, EOFError, zipfile.BadZipFile):
+        return None
+    return nulls if (nulls.version, nulls.rule) == (NULL_VERSION, key) else None

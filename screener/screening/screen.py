@@ -3,12 +3,17 @@
 import time
 from collections.abc import Callable, Iterator, Sequence
 from concurrent.futures import FIRST_COMPLETED, Executor, Future, wait
+from fnmatch import fnmatchcase
 from typing import Protocol
 
-from screener.errors import ScreenerError
+import numpy as np
+from numpy.typing import NDArray
+
+from screener.errors import PlanError, ScreenerError
 from screener.records import Block, BlockFailed, BlockScored, BlockScores, Event, Plan, RunFinished, Span, TableFacts
-from screener.stats.families import FAMILIES
-from screener.stats.null.table import NullTable
+from screener.stats.closest import closest
+from screener.stats.families import FAMILIES, family_named
+from screener.stats.null.nulls import Nulls
 from screener.stats.scoring import score
 
 POLL_SECONDS = 0.1
@@ -29,7 +34,7 @@ class ReadableTable(Protocol):
 def screen(
     table: ReadableTable,
     plan: Plan,
-    null: NullTable,
+    null: Nulls,
     *,
     spans: Sequence[Span],
     executor: Executor,
@@ -54,7 +59,27 @@ def screen(
     yield RunFinished(cancelled=bool(waiting or running), seconds=time.monotonic() - started)
 
 
-def score_span(table: ReadableTable, span: Span, plan: Plan, null: NullTable) -> BlockScores:
+def held_against(names: Sequence[str], plan: Plan) -> NDArray[np.int64]:
+    """The place in FAMILIES of the family that each named channel is held against, int64[names].
+
+    Raises: PlanError when an expectation names no family, or is not of the form PATTERN=FAMILY.
+    """
+    expected = [_expectation(text) for text in plan.expect]
+    default = FAMILIES.index(family_named(plan.family))
+    places = (next((place for pattern, place in expected if fnmatchcase(name, pattern)), default) for name in names)
+    return np.fromiter(places, dtype=np.int64, count=len(names))
+
+
+def _expectation(text: str) -> tuple[str, int]:
+    pattern, sign, family = text.rpartition("=")
+    if not (sign and pattern):
+        raise PlanError(
+            f"Couldn't use the expectation {text!r}: it must be PATTERN=FAMILY, such as 'runout*=half-normal'."
+        )
+    return pattern, FAMILIES.index(family_named(family))
+
+
+def score_span(table: ReadableTable, span: Span, plan: Plan, null: Nulls) -> BlockScores:
     """Read and score the channels of one span."""
     scoring = score(table.read(span).readings, FAMILIES, null, plan.alpha)
     fits = scoring.fits
@@ -73,7 +98,11 @@ def score_span(table: ReadableTable, span: Span, plan: Plan, null: NullTable) ->
         location=fits.location,
         scale=fits.scale,
         notes=notes,
+        shapes=fits.shapes,
+        held=held_against([channel.name for channel in table.facts.channels[span.first : span.stop]], plan),
+        closest=closest(scoring.p, FAMILIES, plan.alpha),
         points=scoring.points,
+        in_order=tuple(scoring.in_order),
     )
 
 

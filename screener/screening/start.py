@@ -10,11 +10,11 @@ from screener import __version__
 from screener.errors import PlanError, RunFileError
 from screener.records import BlockFailed, BlockScored, Event, Plan, RunFinished, TableFacts, TableOpened
 from screener.runs import RunFile, default_run_path, is_run_file
-from screener.screening.null_source import null_table
-from screener.screening.screen import screen
+from screener.screening.null_source import nulls_for
+from screener.screening.screen import held_against, screen
 from screener.screening.workers import thread_workers
-from screener.stats.families import family_named
 from screener.stats.null.packing import NULL_VERSION
+from screener.stats.positions import rule_key
 from screener.tables import open_table, spans
 
 
@@ -31,13 +31,16 @@ def start(
     An event is yielded when the run file already holds it.
     """
     check_plan(plan)
-    null = null_table(plan.positions)
     table = open_table(table_path, plan)
     with run_for(table.facts, plan, run_path) as run, thread_workers(jobs) as executor:
         done = run.done()
         yield TableOpened(table.facts, plan, run.path, sum(span.stop - span.first for span in done))
+        nulls = yield from nulls_for(plan.positions, table.facts.rows, jobs, cancelled)
+        if nulls is None:
+            yield RunFinished(cancelled=True, seconds=0.0)
+            return
         todo = [span for span in spans(table.facts) if span not in done]
-        for event in screen(table, plan, null, spans=todo, executor=executor, ahead=jobs + 2, cancelled=cancelled):
+        for event in screen(table, plan, nulls, spans=todo, executor=executor, ahead=jobs + 2, cancelled=cancelled):
             if isinstance(event, BlockScored):
                 run.store(event.scores)
             elif isinstance(event, BlockFailed):
@@ -49,7 +52,8 @@ def start(
 
 def check_plan(plan: Plan) -> None:
     """Raise PlanError when the plan asks for something impossible."""
-    family_named(plan.family)
+    held_against([], plan)
+    rule_key(plan.positions)
     if not 0.0 < plan.alpha < 1.0:
         raise PlanError(f"Couldn't use alpha {plan.alpha:g}: it must lie between 0 and 1, such as 0.05.")
 

@@ -9,9 +9,10 @@ from numpy.typing import NDArray
 from screener.stats.correlation import Fits, fit_families
 from screener.stats.families import Family
 from screener.stats.families.family import FloatArray
-from screener.stats.null.table import NullTable
+from screener.stats.null.nulls import Nulls
 from screener.stats.ordering import sort_in_place
 from screener.stats.points import kept_ranks
+from screener.stats.row_order import kept_in_order
 
 FEWEST = 3
 """Readings without which a plot has no shape."""
@@ -36,17 +37,20 @@ class Scoring:
     """[C, F] p lies below what was simulated and is read from the fitted tail."""
     points: tuple[FloatArray, ...]
     """[C] sorted readings at `kept_ranks(n)`."""
+    in_order: FloatArray
+    """[C, k] readings in row order, as `kept_in_order` keeps them."""
 
 
-def score(readings: FloatArray, families: Sequence[Family], table: NullTable, alpha: float) -> Scoring:
+def score(readings: FloatArray, families: Sequence[Family], nulls: Nulls, alpha: float) -> Scoring:
     """Score readings, float64[C, rows], which are sorted in place."""
+    in_order = kept_in_order(readings)
     n = sort_in_place(readings)
     reasons = tuple(_reason(channel, int(count)) for channel, count in zip(readings, n, strict=True))
     scored = np.array([not reason for reason in reasons], dtype=np.bool_)
-    fits = fit_families(readings, np.where(scored, n, 0), families, table.rule)
-    critical, p, extrapolated = _against_null(fits.r, n, families, table, alpha)
+    fits = fit_families(readings, np.where(scored, n, 0), families, nulls.rule)
+    critical, p, extrapolated = _against_null(fits, n, families, nulls, alpha)
     points = tuple(channel[kept_ranks(int(count))].copy() for channel, count in zip(readings, n, strict=True))
-    return Scoring(n, readings.shape[1] - n, reasons, fits, critical, p, extrapolated, points)
+    return Scoring(n, readings.shape[1] - n, reasons, fits, critical, p, extrapolated, points, in_order)
 
 
 def _reason(ordered: FloatArray, n: int) -> str:
@@ -61,21 +65,16 @@ def _reason(ordered: FloatArray, n: int) -> str:
 
 
 def _against_null(
-    r: FloatArray, n: NDArray[np.int64], families: Sequence[Family], table: NullTable, alpha: float
+    fits: Fits, n: NDArray[np.int64], families: Sequence[Family], nulls: Nulls, alpha: float
 ) -> tuple[FloatArray, FloatArray, NDArray[np.bool_]]:
     """Critical value, p, and whether p is extrapolated, each [C, F]."""
-    critical, p = np.full_like(r, np.nan), np.full_like(r, np.nan)
-    extrapolated = np.zeros(r.shape, dtype=np.bool_)
-    enough = np.flatnonzero(n >= FEWEST)
-    sizes, row = np.unique(n[enough], return_inverse=True)
-    if enough.size == 0:
-        return critical, p, extrapolated
+    critical, p = np.full_like(fits.r, np.nan), np.full_like(fits.r, np.nan)
+    extrapolated = np.zeros(fits.r.shape, dtype=np.bool_)
     for column, family in enumerate(families):
-        if family.null_name not in table.families:
-            continue
-        null = table.rows(family.null_name, sizes)
-        critical[enough, column] = null.critical(alpha)[row]
-        p[enough, column] = null.p_against(r[enough, column], row, alpha)
-        extrapolated[enough, column] = p[enough, column] < null.floor[row]
-    critical[np.isnan(r)] = np.nan
+        fitted = np.flatnonzero(~np.isnan(fits.r[:, column]))
+        if fitted.size:
+            null, row = nulls.rows(family, n[fitted], fits.steps[fitted, column])
+            critical[fitted, column] = null.critical(alpha)[row]
+            p[fitted, column] = null.p_against(fits.r[fitted, column], row, alpha)
+            extrapolated[fitted, column] = p[fitted, column] < null.floor[row]
     return critical, p, extrapolated

@@ -14,7 +14,7 @@ from threadpoolctl import threadpool_limits
 
 from screener.stats.correlation import fit_families
 from screener.stats.families import FAMILIES
-from screener.stats.null.packing import shipped_table
+from screener.stats.null.packing import shipped_nulls
 from screener.stats.ordering import sort_in_place
 from screener.stats.scoring import score
 
@@ -47,7 +47,7 @@ def correlate(readings: Readings) -> object:
 
 def score_all(readings: Readings) -> object:
     """Sort, correlate, critical values, p and plot points."""
-    return score(readings, FAMILIES, shipped_table(), 0.05)
+    return score(readings, FAMILIES, shipped_nulls(), 0.05)
 
 
 def sort_only(readings: Readings) -> None:

@@ -8,14 +8,14 @@ from handbook import r_of, series, table
 from scipy.stats import norm
 
 from screener.stats.families import family_named
-from screener.stats.null.packing import shipped_table
+from screener.stats.null.packing import shipped_nulls
 from screener.stats.null.simulate import simulated_log_gap
 
 NIST_N, NIST_ALPHA, NIST_R = table("nist_normal_filliben")
 
 
 def critical(n: int, alpha: float, family: str = "normal") -> float:
-    return shipped_table().critical(family, n, alpha)
+    return shipped_nulls().plain.critical(family, n, alpha)
 
 
 @pytest.mark.parametrize("row", range(NIST_N.size), ids=[f"n={n}" for n in NIST_N])

@@ -43,6 +43,9 @@ def block(first: int, stop: int) -> BlockScores:
         location=tables[:, 4] * 1e9,
         scale=tables[:, 5] * 1e-9,
         notes=tuple(("", "", "flat") for _ in channels),
+        shapes=np.full((stop - first, len(FAMILIES), 2), np.nan),
+        held=np.full(stop - first, FAMILIES.index("normal")),
+        closest=np.where(tables[:, 3].max(axis=1) > 0.5, tables[:, 3].argmax(axis=1), -1),
         points=tuple(np.sort(rng.normal(size=40)) for rng in channels),
     )
 
@@ -78,10 +81,10 @@ def new_run(path: Path, channels: int = 8, plan: Plan = PLAN) -> RunFile:
 
 
 def stored_run(path: Path, *blocks: BlockScores, channels: int = 8, plan: Plan = PLAN) -> RunFile:
-    """A run file that holds these blocks, still open."""
+    """A run file that holds these blocks, held against the family of the plan, still open."""
     run = new_run(path, channels, plan)
     for scores in blocks:
-        run.store(scores)
+        run.store(replace(scores, held=np.full(scores.n.size, FAMILIES.index(plan.family))))
     return run
 
 

@@ -9,7 +9,7 @@ import pytest
 from scipy.stats import false_discovery_control
 
 from screener.records import RESULT_COLUMNS, Control, Plan
-from tests.runs.synthetic import FAMILIES, block, new_run, stored_run, unfitted
+from tests.runs.synthetic import block, new_run, stored_run, unfitted
 
 
 def test_the_columns_and_their_kinds_are_those_of_the_contract(tmp_path: Path) -> None:
@@ -129,7 +129,20 @@ def test_a_channel_without_critical_value_is_never_clear(tmp_path: Path) -> None
     assert row["r"] == scores.r[0, 0]
 
 
-def test_a_family_that_was_not_fitted_leaves_every_channel_not_scored(tmp_path: Path) -> None:
-    assert "logistic" not in FAMILIES
-    with stored_run(tmp_path / "a.run", block(0, 2), plan=Plan(family="logistic")) as run:
-        assert run.results()["reason"].to_list() == ["no fit of logistic"] * 2
+def test_each_channel_is_judged_on_the_family_it_is_held_against(tmp_path: Path) -> None:
+    scores = block(0, 3)
+    with stored_run(tmp_path / "a.run") as run:
+        run.store(replace(scores, held=np.array([2, 0, 1])))
+        results = run.results()
+    assert results["family"].to_list() == ["Cauchy", "normal", "Weibull"]
+    assert results["r"].to_list() == [scores.r[0, 2], scores.r[1, 0], scores.r[2, 1]]
+
+
+def test_the_closest_family_comes_with_its_r_and_p(tmp_path: Path) -> None:
+    scores = block(0, 3)
+    with stored_run(tmp_path / "a.run") as run:
+        run.store(replace(scores, closest=np.array([1, -1, 2])))
+        results = run.results()
+    assert results["closest"].to_list() == ["Weibull", None, "Cauchy"]
+    assert results["closest_r"].to_list() == [scores.r[0, 1], None, scores.r[2, 2]]
+    assert results["closest_p"].to_list() == [scores.p[0, 1], None, scores.p[2, 2]]

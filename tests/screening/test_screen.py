@@ -15,10 +15,10 @@ from numpy.typing import NDArray
 from screener.errors import TableError
 from screener.records import BlockFailed, BlockScored, BlockScores, Event, Plan, RunFinished, Span
 from screener.runs import RunFile
-from screener.screening.null_source import null_table
 from screener.screening.screen import screen
+from screener.stats.null.packing import shipped_nulls
 
-NULL = null_table("filliben")
+NULL = shipped_nulls()
 
 
 @pytest.fixture

@@ -4,7 +4,7 @@ import numpy as np
 import pytest
 
 from screener.stats.families import FAMILIES, family_named
-from screener.stats.null.packing import shipped_table
+from screener.stats.null.packing import shipped_nulls
 from screener.stats.points import kept_ranks
 from screener.stats.scoring import score
 
@@ -18,7 +18,7 @@ def test_channels_that_cannot_be_scored_say_why() -> None:
     readings[3] = 7.25
     readings[4] = [1.0, 2.0, -np.inf, 4.0, 9.0]
     readings[5] = [1.0, 2.0, 3.0, 4.0, 9.0]
-    scoring = score(readings, FAMILIES, shipped_table(), 0.05)
+    scoring = score(readings, FAMILIES, shipped_nulls(), 0.05)
     assert scoring.reasons == (
         "no finite reading",
         "no finite reading",
@@ -46,6 +46,6 @@ def test_all_readings_are_kept_for_the_plot_when_few_and_both_tails_when_many() 
 def test_truly_normal_channels_are_flagged_at_the_stated_rate(n: int, channels: int) -> None:
     readings = 20.0 + 3.0 * np.random.default_rng(n).standard_normal((channels, n))
     for alpha in (0.05, 0.01):
-        scoring = score(readings.copy(), NORMAL, shipped_table(), alpha)
+        scoring = score(readings.copy(), NORMAL, shipped_nulls(), alpha)
         flagged = np.mean(scoring.fits.r[:, 0] < scoring.critical_r[:, 0])
         assert flagged == pytest.approx(alpha, abs=3.5 * np.sqrt(alpha * (1 - alpha) / channels))

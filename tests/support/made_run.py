@@ -51,6 +51,9 @@ def made_scores(first: int, stop: int) -> BlockScores:
         location=np.where(np.isnan(r), np.nan, 10.0),
         scale=np.where(np.isnan(r), np.nan, 2.0),
         notes=tuple(("",) * len(FAMILY_NAMES) for _ in numbers),
+        shapes=np.full((*shape, 2), np.nan),
+        held=np.full(stop - first, FAMILY_NAMES.index("normal")),
+        closest=np.full(stop - first, -1),
         points=tuple(
             sample[kept_ranks(READINGS)] if good else np.empty(0) for sample, good in zip(readings, scored, strict=True)
         ),

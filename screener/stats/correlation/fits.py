@@ -27,6 +27,8 @@ class Fits:
     """[C, F]"""
     shapes: FloatArray
     """[C, F, 2] shape parameters at which r is largest; NaN where the family has fewer."""
+    steps: FloatArray
+    """[C, F, 2] the same shapes in steps of the family's grid."""
     outside: NDArray[np.bool_]
     """[C, F] the channel has readings outside the family's support."""
 
@@ -38,7 +40,8 @@ def fit_families(ordered: FloatArray, n: IntArray, families: Sequence[Family], r
     """
     shape = (ordered.shape[0], len(families))
     r, location, scale = (np.full(shape, np.nan) for _ in range(3))
-    fits = Fits(r, location, scale, np.full((*shape, 2), np.nan), np.zeros(shape, dtype=np.bool_))
+    shapes, steps = (np.full((*shape, 2), np.nan) for _ in range(2))
+    fits = Fits(r, location, scale, shapes, steps, np.zeros(shape, dtype=np.bool_))
     enough = np.flatnonzero(n >= 3)
     varying = enough[ordered[enough, 0] < ordered[enough, n[enough] - 1]]
     if varying.size:
@@ -86,8 +89,8 @@ def _fill(
     exponent: IntArray,
 ) -> None:
     """Fill in the families `columns` at the channels `rows`, whose mean is centre x 2^exponent on their axis."""
-    plain = np.array([i for i in columns if not families[i].shapes], dtype=np.int64)
-    shaped = [int(i) for i in columns if families[i].shapes]
+    plain = np.array([i for i in columns if not families[i].shape_count], dtype=np.int64)
+    shaped = [int(i) for i in columns if families[i].shape_count]
     names = tuple(families[i].name for i in plain)
     for x in carried(projection):
         at = rows[x.members]
@@ -101,6 +104,7 @@ def _fill(
             place = np.ix_(at, np.array([column]))
             _place(fits, place, back, best.r[:, None], best.mean[:, None], best.length[:, None])
             fits.shapes[at, column] = _shapes(families[column], best.coordinates)
+            fits.steps[at, column, : best.coordinates.shape[1]] = best.coordinates
 
 
 @dataclass(frozen=True, slots=True)
@@ -122,10 +126,8 @@ def _place(
     fits.location[place] = np.ldexp(back.centre - slope * mean, back.exponent)
 
 
-def _shapes(family: Family, coordinates: FloatArray) -> FloatArray:
+def _shapes(family: Family, steps: FloatArray) -> FloatArray:
     """Shape parameters, float64[C, 2], at places on the family's grid, float64[C, shapes] in steps."""
-    shapes = np.full((coordinates.shape[0], 2), np.nan)
-    for place, shape in enumerate(family.shapes):
-        first, last, count = shape.grid
-        shapes[:, place] = shape.value(first + coordinates[:, place] * ((last - first) / (count - 1)))
+    shapes = np.full((steps.shape[0], 2), np.nan)
+    shapes[:, : family.shape_count] = np.stack(family.shapes.at(steps), axis=1)
     return shapes

@@ -20,10 +20,10 @@ from screener.stats.families.family import FloatArray
 POINTS = 6
 """Grid points, in each coordinate, that a quantile function is interpolated from."""
 
-FINE = 8
-"""Parts of a grid step in which the interpolated r is looked through for its maximum."""
+FINE = 4
+"""Parts of half a grid step in which the interpolated r is looked through for its maximum."""
 
-MOVES = 3
+MOVES = 12
 """Times that the search may go on from a neighbouring grid point."""
 
 CHUNK = 64
@@ -42,11 +42,11 @@ def lagrange_weights(at: FloatArray, points: int) -> FloatArray:
     return weights
 
 
-OFFSETS = np.arange(-FINE, FINE + 1) / FINE
-"""Fine places from one grid step before the best grid point to one after."""
+OFFSETS = np.arange(-FINE, FINE + 1) / (2 * FINE)
+"""Fine places from half a grid step before a place to half a step after it."""
 
-FINE_WEIGHTS = lagrange_weights(np.arange(POINTS)[:, None] + OFFSETS, POINTS)
-"""[POINTS, fine, POINTS] weights of a window of grid points at the fine places around each of its points."""
+FINE_WEIGHTS = lagrange_weights(np.arange(2 * POINTS - 1)[:, None] / 2.0 + OFFSETS, POINTS)
+"""[2 POINTS - 1, fine, POINTS] weights of a window of grid points at the fine places around each of its half steps."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -81,12 +81,11 @@ class BestShape:
 def shape_table(name: str, start: int) -> ShapeTable:
     """The table of the named family, on the grid from its point start."""
     family = family_named(name)
-    axes = [shape.value(shape.coordinates()) for shape in family.shapes]
-    shapes = [axis.reshape(-1, 1) for axis in np.meshgrid(*axes, indexing="ij")]
+    shapes = [parameter[:, None] for parameter in family.shapes.at(family.shapes.points())]
     low, median, high = family.quantile(SPREAD, *shapes).T
     halves = [family.quantile(u[start:], *shapes) for u in (LOWER, UPPER)]
     columns = (np.concatenate(halves, axis=1) - median[:, None]) / (high - low)[:, None]
-    return ShapeTable(family, columns, median, np.log(high - low), tuple(axis.size for axis in axes))
+    return ShapeTable(family, columns, median, np.log(high - low), family.shapes.counts)
 
 
 def best_shape(x: OnGrid, table: ShapeTable) -> BestShape:
@@ -94,7 +93,7 @@ def best_shape(x: OnGrid, table: ShapeTable) -> BestShape:
     at_grid = products(x, table.columns.T)
     each, start = np.arange(x.members.size), np.argmax(at_grid.r, axis=1)
     steps = np.stack(np.unravel_index(start, table.counts), axis=1)
-    refined = _climbed(at_grid.r.reshape(-1, *table.counts), steps)
+    refined = _climbed(at_grid.r.reshape(-1, *table.counts))
     members, weights = neighbours(table.counts, refined)
     parts = [_interpolated(x, table, members, weights, first) for first in range(0, each.size, CHUNK)]
     r, mean, length = (np.concatenate(part) for part in zip(*parts, strict=True))
@@ -111,36 +110,64 @@ def best_shape(x: OnGrid, table: ShapeTable) -> BestShape:
     )
 
 
-def _climbed(r: FloatArray, at: IntArray) -> FloatArray:
-    """The maximum that is reached from the best grid point, in a few moves where a ridge runs between grid points."""
+def _between(r: FloatArray) -> FloatArray:
+    """r at the grid points and half way between them, [C, 2 grid - 1...], from r at the grid points, [C, grid...]."""
+    return _along(r, [_dense_weights(np.arange(2 * count - 1) / 2.0, count) for count in r.shape[1:]])
+
+
+def _along(values: FloatArray, weights: list[FloatArray]) -> FloatArray:
+    """Interpolate values, [C, points...], along each axis with its weights, [C or 1, places, points]."""
+    if len(weights) == 1:
+        return np.asarray(np.matmul(weights[0], values[:, :, None])[:, :, 0], dtype=np.float64)
+    both = np.matmul(np.matmul(weights[0], values), np.swapaxes(weights[1], -1, -2))
+    return np.asarray(both, dtype=np.float64)
+
+
+def _dense_weights(places: FloatArray, count: int) -> FloatArray:
+    """Weights of all grid points of one axis at places, float64[1, places, count]."""
+    first = np.clip(np.floor(places).astype(np.int64) - POINTS // 2 + 1, 0, count - POINTS)
+    weights = np.zeros((places.size, count))
+    np.put_along_axis(weights, first[:, None] + np.arange(POINTS), lagrange_weights(places - first, POINTS), axis=1)
+    return weights[None]
+
+
+def _climbed(r: FloatArray) -> FloatArray:
+    """Where r, [C, grid...], is largest, float64[C, d] in steps: from the best half step up along its ridge."""
+    half = _between(r)
+    start = np.argmax(half.reshape(half.shape[0], -1), axis=1)
+    at = np.stack(np.unravel_index(start, half.shape[1:]), axis=1)
     found = _maximum(r, at)
     for _ in range(MOVES):
-        moved = np.flatnonzero(np.any(np.abs(found - at) > 0.99, axis=1))
-        at = np.round(found).astype(np.int64)
-        if moved.size:
-            found[moved] = _maximum(r[moved], at[moved])
+        moved = np.flatnonzero(np.any(np.abs(2.0 * found - at) > 0.99, axis=1))
+        if moved.size == 0:
+            break
+        at = np.round(2.0 * found).astype(np.int64)
+        found[moved] = _maximum(r[moved], at[moved])
     return found
 
 
-def _maximum(r: FloatArray, at: IntArray) -> FloatArray:
-    """Where r, [C, grid...] interpolated between grid points, is largest near the best of them: float64[C, d]."""
-    counts = np.array(r.shape[1:])
-    first = np.clip(at - POINTS // 2 + 1, 0, counts - POINTS)
+def _windows(r: FloatArray, first: IntArray) -> FloatArray:
+    """The POINTS by POINTS values of r that begin at first, int64[C, d], along each axis."""
+    each = np.arange(first.shape[0])
     index = first[:, :, None] + np.arange(POINTS)
-    each = np.arange(at.shape[0])
-    places = at[:, :, None] + OFFSETS
-    weights = FINE_WEIGHTS[at - first]
-    if at.shape[1] == 1:
-        fine = np.matmul(weights[:, 0], r[each[:, None], index[:, 0]][:, :, None])[:, :, 0]
-    else:
-        window = r[each[:, None, None], index[:, 0, :, None], index[:, 1, None, :]]
-        fine = np.matmul(np.matmul(weights[:, 0], window), weights[:, 1].transpose(0, 2, 1))
+    if first.shape[1] == 1:
+        return np.asarray(r[each[:, None], index[:, 0]], dtype=np.float64)
+    return np.asarray(r[each[:, None, None], index[:, 0, :, None], index[:, 1, None, :]], dtype=np.float64)
+
+
+def _maximum(r: FloatArray, at: IntArray) -> FloatArray:
+    """Where r is largest within half a grid step of a place, int64[C, d] in half steps: float64[C, d] in grid steps."""
+    counts = np.array(r.shape[1:])
+    first = np.clip(at // 2 - POINTS // 2 + 1, 0, counts - POINTS)
+    places = 0.5 * at[:, :, None] + OFFSETS
+    weights = FINE_WEIGHTS[at - 2 * first]
+    fine = _along(_windows(r, first), [weights[:, axis] for axis in range(counts.size)])
     for axis, count in enumerate(counts):
         off_grid = (places[:, axis] < 0.0) | (places[:, axis] > count - 1.0)
         fine[off_grid if fine.ndim == 2 else _lines(off_grid, axis, fine)] = -1.0
-    best = np.stack(np.unravel_index(np.argmax(fine.reshape(each.size, -1), axis=1), fine.shape[1:]), axis=1)
-    step = _towards_vertex(fine, best) / FINE
-    return np.clip(np.take_along_axis(places, best[:, :, None], axis=2)[:, :, 0] + step, 0.0, counts - 1.0)
+    best = np.stack(np.unravel_index(np.argmax(fine.reshape(at.shape[0], -1), axis=1), fine.shape[1:]), axis=1)
+    step = _towards_vertex(fine, best) * (OFFSETS[1] - OFFSETS[0])
+    return np.asarray(np.clip(np.take_along_axis(places, best[:, :, None], axis=2)[:, :, 0] + step, 0.0, counts - 1.0), dtype=np.float64)
 
 
 def _lines(off_grid: NDArray[np.bool_], axis: int, fine: FloatArray) -> NDArray[np.bool_]:
@@ -168,18 +195,21 @@ def _vertex(before: FloatArray, centre: FloatArray, after: FloatArray) -> FloatA
 
 
 def _vertex_2d(value: Callable[[int, int], FloatArray]) -> FloatArray:
-    """The same for a quadratic in two coordinates."""
+    """The same for a quadratic in two coordinates, along its two principal directions; a ridge only across it."""
     centre = value(0, 0)
     left, right, down, up = value(-1, 0), value(1, 0), value(0, -1), value(0, 1)
     slope = 0.5 * np.stack([right - left, up - down], axis=1)
-    bend = np.stack([left - 2.0 * centre + right, down - 2.0 * centre + up], axis=1)
+    bend_1, bend_2 = left - 2.0 * centre + right, down - 2.0 * centre + up
     twist = 0.25 * (value(1, 1) - value(1, -1) - value(-1, 1) + value(-1, -1))
-    determinant = bend[:, 0] * bend[:, 1] - twist**2
-    peaked = (determinant > 0.0) & (bend[:, 0] < 0.0)
-    newton = np.stack(
-        [twist * slope[:, 1] - bend[:, 1] * slope[:, 0], twist * slope[:, 0] - bend[:, 0] * slope[:, 1]], axis=1
-    )
-    return np.where(peaked[:, None], newton / np.where(peaked, determinant, 1.0)[:, None], 0.0)
+    turn = 0.5 * np.arctan2(2.0 * twist, bend_1 - bend_2)
+    step = np.zeros_like(slope)
+    for angle in (turn, turn + 0.5 * np.pi):
+        along = np.stack([np.cos(angle), np.sin(angle)], axis=1)
+        bend = bend_1 * along[:, 0] ** 2 + 2.0 * twist * along[:, 0] * along[:, 1] + bend_2 * along[:, 1] ** 2
+        rise = (slope * along).sum(axis=1)
+        length = np.where(bend < 0.0, -rise / np.where(bend < 0.0, bend, -1.0), 0.0)
+        step += np.clip(length, -1.0, 1.0)[:, None] * along
+    return step
 
 
 def neighbours(counts: tuple[int, ...], at: FloatArray) -> tuple[IntArray, FloatArray]:

@@ -23,9 +23,9 @@ from screener.stats.families import (
     uniform,
     weibull,
 )
-from screener.stats.families.family import Axis, Family, Shape, Support
+from screener.stats.families.family import Axis, Family, ShapeGrid, Support
 
-__all__ = ["FAMILIES", "Axis", "Family", "Shape", "Support", "family_named"]
+__all__ = ["FAMILIES", "Axis", "Family", "ShapeGrid", "Support", "family_named"]
 
 FAMILIES: tuple[Family, ...] = (
     normal.FAMILY,

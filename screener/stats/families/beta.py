@@ -2,17 +2,15 @@
 
     G(u; alpha, beta) = I^-1(alpha, beta, u), I the regularised incomplete beta function
 
-Support: an interval. Shapes: alpha and beta, each from 0.5 to 625; coordinates 1/sqrt(alpha), 1/sqrt(beta).
+Support: an interval. Shapes: alpha and beta; coordinates are the polar ones of 1/sqrt(alpha) and 1/sqrt(beta), in
+which the skewness, 2 (1/alpha - 1/beta) / sqrt(1/alpha + 1/beta) near the normal, is smooth.
 Source: Johnson, Kotz & Balakrishnan, Continuous Univariate Distributions 2 (2nd ed., 1995), ch. 25.
 """
 
 import numpy as np
 from scipy.special import betainccinv, betaincinv
 
-from screener.stats.families.family import Family, FloatArray, Shape, Support
-from screener.stats.families.gamma import inverse_square
-
-COORDINATES = (0.04, 1.42, 15)
+from screener.stats.families.family import Family, FloatArray, ShapeGrid, Support
 
 
 def quantile(u: FloatArray, alpha: FloatArray | float, beta: FloatArray | float) -> FloatArray:
@@ -20,12 +18,22 @@ def quantile(u: FloatArray, alpha: FloatArray | float, beta: FloatArray | float)
     return np.where(u < 0.5, betaincinv(alpha, beta, u), betainccinv(alpha, beta, 1.0 - u))
 
 
+def parameters(radius: FloatArray, angle: FloatArray) -> tuple[FloatArray, ...]:
+    """alpha and beta at polar coordinates."""
+    return (radius * np.cos(angle)) ** -2.0, (radius * np.sin(angle)) ** -2.0
+
+
+def coordinates(alpha: float, beta: float) -> tuple[float, ...]:
+    """Polar coordinates of alpha and beta."""
+    return float(np.hypot(alpha**-0.5, beta**-0.5)), float(np.arctan2(beta**-0.5, alpha**-0.5))
+
+
 FAMILY = Family(
     name="beta",
     support=Support.INTERVAL,
     quantile=quantile,
     arises_from="fractions, bounded by both ends",
-    shapes=(Shape("alpha", COORDINATES, inverse_square), Shape("beta", COORDINATES, inverse_square)),
+    shapes=ShapeGrid(("alpha", "beta"), ((0.05, 2.0, 13), (0.03, np.pi / 2 - 0.03, 13)), parameters, coordinates),
     typical=((0.7, 0.7), (2.0, 5.0), (8.0, 3.0), (30.0, 40.0)),
     costly=True,
 )

@@ -2,15 +2,15 @@
 
     G(u; d1, d2) = F^-1(u), by the beta distribution: B/(1 - B) d2/d1 with B ~ Beta(d1/2, d2/2)
 
-Support: x > location. Shapes: d1 from 1 to 1250 and d2 from 2 to 1000, degrees of freedom; coordinates sqrt(2/d1)
-and, since the upper tail falls as a power -d2/2, 2/d2.
+Support: x > location. Shapes: d1 from 1 and d2 from 2, degrees of freedom; coordinates are the polar ones of sqrt(2/d1)
+and 1.42 sqrt(2/d2), in which the skewness is smooth near the normal.
 Source: Johnson, Kotz & Balakrishnan, Continuous Univariate Distributions 2 (2nd ed., 1995), ch. 27.
 """
 
 import numpy as np
 from scipy.special import betaincinv
 
-from screener.stats.families.family import Family, FloatArray, Shape, Support
+from screener.stats.families.family import Family, FloatArray, ShapeGrid, Support
 
 
 def quantile(u: FloatArray, d1: FloatArray | float, d2: FloatArray | float) -> FloatArray:
@@ -18,18 +18,25 @@ def quantile(u: FloatArray, d1: FloatArray | float, d2: FloatArray | float) -> F
     half1, half2 = np.multiply(0.5, d1), np.multiply(0.5, d2)
     below = np.asarray(betaincinv(half1, half2, np.minimum(u, 0.5)), dtype=np.float64)
     above = np.asarray(betaincinv(half2, half1, np.minimum(1.0 - u, 0.5)), dtype=np.float64)
-    odds = np.where(u < 0.5, below / (1.0 - below), (1.0 - above) / above)
+    # Far out in the tail the quantile is beyond every number.
+    with np.errstate(divide="ignore"):
+        odds = np.where(u < 0.5, below / (1.0 - below), (1.0 - above) / above)
     return np.asarray(odds * half2 / half1, dtype=np.float64)
 
 
-def numerator_degrees(coordinate: FloatArray) -> FloatArray:
-    """d1 = 2 / coordinate^2."""
-    return np.asarray(2.0 * coordinate**-2.0, dtype=np.float64)
+WIDER = 1.42
+"""By how much sqrt(2/d2) is stretched, so that the grid ends at d1 = 1 and at d2 = 2, the heaviest tail fitted."""
 
 
-def denominator_degrees(coordinate: FloatArray) -> FloatArray:
-    """d2 = 2 / coordinate."""
-    return np.asarray(2.0 / coordinate, dtype=np.float64)
+def parameters(radius: FloatArray, angle: FloatArray) -> tuple[FloatArray, ...]:
+    """d1 and d2 at polar coordinates."""
+    return 2.0 * (radius * np.cos(angle)) ** -2.0, 2.0 * (radius * np.sin(angle) / WIDER) ** -2.0
+
+
+def coordinates(d1: float, d2: float) -> tuple[float, ...]:
+    """Polar coordinates of d1 and d2."""
+    across, up = (2.0 / d1) ** 0.5, WIDER * (2.0 / d2) ** 0.5
+    return float(np.hypot(across, up)), float(np.arctan2(up, across))
 
 
 FAMILY = Family(
@@ -37,7 +44,7 @@ FAMILY = Family(
     support=Support.HALF_LINE,
     quantile=quantile,
     arises_from="ratios of variances",
-    shapes=(Shape("d1", (0.04, 1.42, 15), numerator_degrees), Shape("d2", (0.002, 1.0, 21), denominator_degrees)),
+    shapes=ShapeGrid(("d1", "d2"), ((0.05, 1.42, 13), (0.03, np.pi / 2 - 0.03, 13)), parameters, coordinates),
     typical=((4.0, 8.0), (10.0, 30.0), (30.0, 200.0)),
     costly=True,
 )

@@ -27,19 +27,40 @@ class Axis(StrEnum):
 
 
 @dataclass(frozen=True, slots=True)
-class Shape:
-    """A shape parameter, and the even grid of a coordinate in which quantiles change smoothly with it."""
+class ShapeGrid:
+    """The shapes of a family, as a grid that is even in coordinates in which quantiles change smoothly."""
 
-    name: str
-    grid: tuple[float, float, int]
-    """First and last coordinate, and how many there are."""
-    value: Callable[[FloatArray], FloatArray]
-    """The parameter at a coordinate, same shape."""
+    names: tuple[str, ...]
+    """The shape parameters."""
+    axes: tuple[tuple[float, float, int], ...]
+    """First and last coordinate of each axis, and how many points it has; as many axes as shapes."""
+    parameters: Callable[..., tuple[FloatArray, ...]]
+    """The shape parameters at coordinates, one array for each axis."""
+    coordinates: Callable[..., tuple[float, ...]]
+    """The coordinates of shape parameters: the inverse, for single numbers."""
 
-    def coordinates(self) -> FloatArray:
-        """The grid, float64[count], evenly spaced."""
-        first, last, count = self.grid
-        return np.linspace(first, last, count)
+    @property
+    def counts(self) -> tuple[int, ...]:
+        """Points along each axis."""
+        return tuple(count for _, _, count in self.axes)
+
+    def at(self, steps: FloatArray) -> tuple[FloatArray, ...]:
+        """The shape parameters at places float64[..., axes], in steps from the first point of each axis."""
+        pairs = zip(self.axes, np.moveaxis(steps, -1, 0), strict=True)
+        return self.parameters(*(first + step * (last - first) / (count - 1) for (first, last, count), step in pairs))
+
+    def steps(self, *shapes: float) -> FloatArray:
+        """The place of shape parameters on the grid, float64[axes]; the nearest one when they lie off it."""
+        pairs = zip(self.axes, self.coordinates(*shapes), strict=True)
+        steps = [(at - first) / (last - first) * (count - 1) for (first, last, count), at in pairs]
+        return np.clip(steps, 0.0, np.array(self.counts) - 1.0)
+
+    def points(self) -> FloatArray:
+        """All grid points, float64[points, axes] in steps, the last axis running fastest."""
+        return np.stack([axis.ravel() for axis in np.indices(self.counts)], axis=1).astype(np.float64)
+
+
+NO_SHAPES = ShapeGrid((), (), lambda: (), lambda: ())
 
 
 @dataclass(frozen=True, slots=True)
@@ -52,7 +73,7 @@ class Family:
     """Standard quantiles at probabilities u and, broadcast against them, the shape parameters."""
     arises_from: str
     axis: Axis = Axis.LINEAR
-    shapes: tuple[Shape, ...] = ()
+    shapes: ShapeGrid = NO_SHAPES
     typical: tuple[tuple[float, ...], ...] = ((),)
     """Shape parameters at which the laws of all families are tested."""
     diagnostic: bool = False
@@ -63,6 +84,11 @@ class Family:
     """Where the quantile function has a kink at the median: the formulas below and above, each smooth beyond it."""
     costly: bool = False
     """The quantile function is slow; simulations read it from a fine grid."""
+
+    @property
+    def shape_count(self) -> int:
+        """How many shape parameters it has."""
+        return len(self.shapes.names)
 
     @property
     def null_name(self) -> str:

@@ -9,7 +9,7 @@ Source: Johnson, Kotz & Balakrishnan, Continuous Univariate Distributions 1 (2nd
 import numpy as np
 from scipy.special import gammainccinv, gammaincinv
 
-from screener.stats.families.family import Family, FloatArray, Shape, Support
+from screener.stats.families.family import Family, FloatArray, ShapeGrid, Support
 
 
 def quantile(u: FloatArray, k: FloatArray | float) -> FloatArray:
@@ -17,9 +17,9 @@ def quantile(u: FloatArray, k: FloatArray | float) -> FloatArray:
     return np.where(u < 0.5, gammaincinv(k, u), gammainccinv(k, 1.0 - u))
 
 
-def inverse_square(coordinate: FloatArray) -> FloatArray:
-    """The parameter 1 / coordinate^2."""
-    return np.asarray(coordinate**-2.0, dtype=np.float64)
+def parameters(coordinate: FloatArray) -> tuple[FloatArray, ...]:
+    """k = 1 / coordinate^2."""
+    return (coordinate**-2.0,)
 
 
 FAMILY = Family(
@@ -27,7 +27,7 @@ FAMILY = Family(
     support=Support.HALF_LINE,
     quantile=quantile,
     arises_from="sums of waiting times",
-    shapes=(Shape("k", (0.02, 2.0, 21), inverse_square),),
+    shapes=ShapeGrid(("k",), ((0.02, 2.0, 21),), parameters, lambda k: (k**-0.5,)),
     typical=((0.5,), (2.0,), (9.0,), (100.0,)),
     costly=True,
 )

@@ -9,7 +9,7 @@ Source: Hosking, Wallis & Wood 1985, Technometrics (where the shape is k = -xi).
 
 import numpy as np
 
-from screener.stats.families.family import Family, FloatArray, Shape, Support
+from screener.stats.families.family import Family, FloatArray, ShapeGrid, Support
 
 
 def quantile(u: FloatArray, xi: FloatArray | float) -> FloatArray:
@@ -24,6 +24,6 @@ FAMILY = Family(
     support=Support.WHOLE_LINE,
     quantile=quantile,
     arises_from="block maxima",
-    shapes=(Shape("xi", (-1.0, 1.0, 41), np.asarray),),
+    shapes=ShapeGrid(("xi",), ((-1.0, 1.0, 41),), lambda at: (at,), lambda xi: (xi,)),
     typical=((-0.5,), (-0.1,), (0.0,), (0.2,), (0.6,)),
 )

@@ -9,7 +9,7 @@ Source: Johnson, Kotz & Balakrishnan, Continuous Univariate Distributions 2 (2nd
 import numpy as np
 from scipy.special import ndtri, stdtrit
 
-from screener.stats.families.family import Family, FloatArray, Shape, Support
+from screener.stats.families.family import Family, FloatArray, ShapeGrid, Support
 
 
 def quantile(u: FloatArray, nu: FloatArray | float) -> FloatArray:
@@ -20,9 +20,9 @@ def quantile(u: FloatArray, nu: FloatArray | float) -> FloatArray:
     return np.where(u < 0.5, tail, -tail)
 
 
-def degrees_of_freedom(coordinate: FloatArray) -> FloatArray:
+def parameters(coordinate: FloatArray) -> tuple[FloatArray, ...]:
     """nu = 1 / coordinate; infinity at 0."""
-    return np.where(coordinate > 0.0, 1.0 / np.maximum(coordinate, 1e-300), np.inf)
+    return (np.where(coordinate > 0.0, 1.0 / np.maximum(coordinate, 1e-300), np.inf),)
 
 
 FAMILY = Family(
@@ -30,6 +30,6 @@ FAMILY = Family(
     support=Support.WHOLE_LINE,
     quantile=quantile,
     arises_from="mixtures of normal spreads",
-    shapes=(Shape("nu", (0.0, 1.0, 21), degrees_of_freedom),),
+    shapes=ShapeGrid(("nu",), ((0.0, 1.0, 21),), parameters, lambda nu: (1.0 / nu,)),
     typical=((1.5,), (3.0,), (10.0,), (60.0,)),
 )

@@ -9,7 +9,7 @@ Source: NIST/SEMATECH e-Handbook of Statistical Methods, 1.3.3.23 and 1.3.6.6.15
 
 import numpy as np
 
-from screener.stats.families.family import Family, FloatArray, Shape, Support
+from screener.stats.families.family import Family, FloatArray, ShapeGrid, Support
 
 
 def quantile(u: FloatArray, lambda_: FloatArray | float) -> FloatArray:
@@ -24,7 +24,7 @@ FAMILY = Family(
     support=Support.WHOLE_LINE,
     quantile=quantile,
     arises_from="how heavy a symmetric tail is",
-    shapes=(Shape("lambda", (-1.0, 2.0, 61), np.asarray),),
+    shapes=ShapeGrid(("lambda",), ((-1.0, 2.0, 61),), lambda at: (at,), lambda value: (value,)),
     typical=((-0.5,), (0.0,), (0.14,), (0.5,), (1.0,)),
     diagnostic=True,
 )

@@ -4,7 +4,6 @@ from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
-from scipy.special import ndtri
 
 from screener.stats.families.family import FloatArray
 from screener.stats.null.tail import fitted_tail, tail_excess
@@ -18,9 +17,6 @@ PROBABILITIES: FloatArray = np.concatenate(
     ]
 )
 """p of r, increasing; r is small at small p."""
-
-DEVIATES: FloatArray = np.asarray(ndtri(PROBABILITIES), dtype=np.float64)
-"""The same probabilities as standard normal deviates, in which the quantiles of ln(1 - r) are nearly straight."""
 
 SIZES: tuple[int, ...] = (
     *range(3, 21),

@@ -13,7 +13,7 @@ CHUNK_READINGS = 200_000
 
 LARGEST_BELOW_ONE = 1.0 - 2.0**-53
 
-LOGIT_GRID = np.linspace(-40.0, 40.0, 16_001)
+LOGIT_GRID = np.linspace(-36.0, 36.0, 14_401)
 
 
 def sorted_uniforms(rng: np.random.Generator, samples: int, n: int) -> FloatArray:

@@ -7,7 +7,7 @@ from numpy.typing import NDArray
 from scipy.special import ndtr, ndtri
 
 from screener.stats.families.family import FloatArray
-from screener.stats.null.grid import DEVIATES, PROBABILITIES
+from screener.stats.null.grid import PROBABILITIES
 from screener.stats.null.tail import tail_excess, tail_share
 
 IntArray = NDArray[np.int64]
@@ -17,6 +17,8 @@ IntArray = NDArray[np.int64]
 class NullRows:
     """The null distributions of r of one family at U sample sizes."""
 
+    probabilities: FloatArray
+    """[probabilities] increasing."""
     log_gap: FloatArray
     """[U, probabilities] ln(1 - r) at each tabled p, decreasing."""
     tail_shape: FloatArray
@@ -28,28 +30,30 @@ class NullRows:
 
     def critical(self, alpha: float) -> FloatArray:
         """The r that falls below with probability alpha under the null, float64[U]."""
-        if alpha < PROBABILITIES[0]:
-            excess = tail_excess(np.array(alpha / PROBABILITIES[0]), self.tail_shape, self.tail_scale)
+        smallest, deviates = self.probabilities[0], ndtri(self.probabilities)
+        if alpha < smallest:
+            excess = tail_excess(np.array(alpha / smallest), self.tail_shape, self.tail_scale)
             return np.asarray(-np.expm1(self.log_gap[:, 0] + excess), dtype=np.float64)
         deviate = float(ndtri(alpha))
-        cell = int(np.clip(np.searchsorted(DEVIATES, deviate) - 1, 0, DEVIATES.size - 2))
-        part = (deviate - DEVIATES[cell]) / (DEVIATES[cell + 1] - DEVIATES[cell])
+        cell = int(np.clip(np.searchsorted(deviates, deviate) - 1, 0, deviates.size - 2))
+        part = (deviate - deviates[cell]) / (deviates[cell + 1] - deviates[cell])
         gap = self.log_gap[:, cell] + part * (self.log_gap[:, cell + 1] - self.log_gap[:, cell])
         return np.asarray(-np.expm1(gap), dtype=np.float64)
 
     def p(self, r: FloatArray, row: IntArray) -> FloatArray:
         """P(r_null <= r) of r, float64[C], each at its row, int64[C]: above 0, below 1; NaN where r is."""
+        deviates = ndtri(self.probabilities)
         gap = np.log(np.maximum(1.0 - r, 1e-16))
         table = self.log_gap[row]
         above = np.count_nonzero(table > gap[:, None], axis=1)
-        cell = np.clip(above - 1, 0, DEVIATES.size - 2)
+        cell = np.clip(above - 1, 0, deviates.size - 2)
         each = np.arange(r.size)
         drop = table[each, cell] - table[each, cell + 1]
         part = (table[each, cell] - gap) / np.where(drop > 0.0, drop, 1.0)
-        deviate = DEVIATES[cell] + part * (DEVIATES[cell + 1] - DEVIATES[cell])
+        deviate = deviates[cell] + part * (deviates[cell + 1] - deviates[cell])
         body = np.asarray(ndtr(np.minimum(deviate, 8.0)), dtype=np.float64)
         excess = np.maximum(gap - table[:, 0], 0.0)
-        tail = PROBABILITIES[0] * tail_share(excess, self.tail_shape[row], self.tail_scale[row])
+        tail = self.probabilities[0] * tail_share(excess, self.tail_shape[row], self.tail_scale[row])
         p = np.where(excess > 0.0, np.maximum(tail, 1e-300), body)
         return np.where(np.isnan(r), np.nan, p)
 
@@ -87,7 +91,8 @@ class NullTable:
         weights = interpolation(self.sizes, sizes)
         nearest = np.argmax(weights, axis=1)
         return NullRows(
-            log_gap=np.minimum.accumulate(weights @ self.log_gap[place], axis=1),
+            probabilities=PROBABILITIES,
+            log_gap=np.minimum.accumulate(np.einsum("un,np->up", weights, self.log_gap[place]), axis=1),
             tail_shape=self.tail_shape[place, nearest],
             tail_scale=self.tail_scale[place, nearest],
             floor=self.floor[nearest],

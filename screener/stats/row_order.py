@@ -1,0 +1,66 @@
+"""What is kept of a channel's readings in row order, so that run order and lag can be drawn without the table."""
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+FloatArray = NDArray[np.float64]
+
+IN_FULL = 512
+"""Rows up to which every reading is kept."""
+STRETCHES = 256
+"""Stretches of rows of which the lowest and the highest reading are kept otherwise."""
+PAIRS = 128
+"""Readings kept together with the one in the row after them, at even steps."""
+
+
+@dataclass(frozen=True, slots=True)
+class RowOrder:
+    """A channel's readings in row order as far as they are kept; NaN where missing."""
+
+    row: FloatArray
+    """[m] row of each, from 1; the middle of the stretch where only its lowest and highest reading are kept."""
+    reading: FloatArray
+    """[m]"""
+    before: FloatArray
+    """[k] readings whose follower is known too."""
+    after: FloatArray
+    """[k] the readings in the row after them."""
+    stretch: int
+    """Rows of which the lowest and the highest reading stand for all; 1 where every reading is kept."""
+
+
+def kept_in_order(readings: FloatArray) -> FloatArray:
+    """What is kept of readings float64[C, rows] in row order, NaN or infinite where missing; float64[C, k]."""
+    rows = readings.shape[1]
+    if rows <= IN_FULL:
+        return np.where(np.isfinite(readings), readings, np.nan)
+    starts = _starts(rows)
+    low, high = np.fmin.reduceat(readings, starts, axis=1), np.fmax.reduceat(readings, starts, axis=1)
+    first = _first_of_pairs(rows)
+    kept = np.concatenate([low, high, readings[:, first], readings[:, first + 1]], axis=1)
+    return np.where(np.isfinite(kept), kept, np.nan)
+
+
+def row_order(kept: FloatArray, rows: int) -> RowOrder:
+    """What `kept_in_order` kept of one channel of a table of that many rows; raises ValueError for anything else."""
+    if rows <= IN_FULL:
+        if kept.size != rows:
+            raise ValueError(f"{kept.size} readings in row order instead of {rows}")
+        return RowOrder(np.arange(1.0, rows + 1), kept, kept[:-1], kept[1:], 1)
+    if kept.size != 2 * (STRETCHES + PAIRS):
+        raise ValueError(f"{kept.size} readings in row order instead of {2 * (STRETCHES + PAIRS)}")
+    ends = np.append(_starts(rows), rows)
+    middle = (ends[:-1] + ends[1:] + 1) / 2
+    low_high = kept[: 2 * STRETCHES].reshape(2, STRETCHES).T
+    before, after = kept[2 * STRETCHES :].reshape(2, PAIRS)
+    return RowOrder(np.repeat(middle, 2), low_high.ravel(), before, after, -(-rows // STRETCHES))
+
+
+def _starts(rows: int) -> NDArray[np.int64]:
+    return np.arange(STRETCHES) * rows // STRETCHES
+
+
+def _first_of_pairs(rows: int) -> NDArray[np.int64]:
+    return np.linspace(0, rows - 2, PAIRS).round().astype(np.int64)
