@@ -15,9 +15,8 @@ from numpy.typing import NDArray
 from screener.records import Proposal
 
 _GLANCED_ROWS = 64
-_MIDDLE = (0.1, 0.9)
-_FAR_FOR_A_GLANCE = 4.0
-"""Widths of the middle of a few rows; a rough sieve in front of the rule."""
+_FAR_FOR_A_GLANCE = 6.0
+"""Widths of the narrowest half of a few rows; a rough sieve in front of the rule."""
 _FAR = 3.0
 _FEWEST_CELLS = 2
 _FEWEST_OTHERS = 3
@@ -50,15 +49,25 @@ def _far_reaching(frame: pl.DataFrame) -> list[pl.Series]:
     """The columns whose lowest or highest reading lies far from the middle of some of their rows."""
     glance = frame[list(range(0, len(frame), max(1, len(frame) // _GLANCED_ROWS)))]
     ordered = np.sort(glance.to_numpy(order="fortran").T.astype(np.float64), axis=1)
-    known = np.count_nonzero(~np.isnan(ordered), axis=1)
-    at = np.arange(len(ordered))
-    bottom, top = (ordered[at, np.maximum(0, (share * (known - 1)).astype(np.int64))] for share in _MIDDLE)
+    bottom, top = _shortest_halves(ordered)
     series = frame.get_columns()
     lowest, highest = (np.array([_float(one) for one in ends]) for ends in zip(*map(_ends, series), strict=True))
     with np.errstate(invalid="ignore", over="ignore"):
         far = _FAR_FOR_A_GLANCE * (top - bottom)
         reaching = (lowest < bottom - far) | (highest > top + far)
     return [column for column, one in zip(series, reaching, strict=True) if one]
+
+
+def _shortest_halves(ordered: NDArray[np.float64]) -> tuple[NDArray[np.float64], NDArray[np.float64]]:
+    """The ends of the narrowest stretch that holds half of the readings of each row, which are sorted, NaN last."""
+    known = np.count_nonzero(~np.isnan(ordered), axis=1)[:, None]
+    first = np.arange(ordered.shape[1])[None, :]
+    last = first + known // 2
+    ends = np.take_along_axis(ordered, np.minimum(last, ordered.shape[1] - 1), axis=1)
+    with np.errstate(invalid="ignore", over="ignore"):
+        widths = np.where(last < known, ends - ordered, np.inf)
+    at = np.nan_to_num(widths, nan=np.inf).argmin(axis=1)[:, None]
+    return np.take_along_axis(ordered, at, axis=1)[:, 0], np.take_along_axis(ends, at, axis=1)[:, 0]
 
 
 def _ends(column: pl.Series) -> tuple[object, object]:

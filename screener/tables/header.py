@@ -13,8 +13,8 @@ COMMENTS = ("#", "%", "//", "!")
 _JUDGED_CELLS = 200
 _LONGEST_UNIT = 16
 _SHORT_UNIT = 3
-_FEW_COLUMNS = 3
-"""Lines that tell about a table often have two or three cells, as many as a narrow table has."""
+_FEW_COLUMNS = 2
+"""Lines that tell about a table often have two cells, as many as the narrowest table has."""
 _BARE_NUMBER = re.compile(r"[<>≤≥]?=?\s*[+-]?(?:\d[\d.,' ]*|[.,]\d+)(?:[eEdD][+-]?\d+)?\s*(?:%|[°µΩ]?[A-Za-z]{1,3})?")
 
 
@@ -45,6 +45,8 @@ def header_of(rows: Sequence[HeadRow], *, header_line: int, units_line: int, com
     start = _first_reading(table, width)
     names_at = _names_above(table, start, width)
     if header_line == 0 or (header_line < 0 and names_at is None):
+        if header_line == 0:
+            start = next(at for at, row in enumerate(table) if len(row.cells) == width)
         commented = None if header_line == 0 else _commented_names(rows, table[start], prefix)
         return _built(rows, table, start, commented, None, prefix, width)
     named = _row_of_line(rows, header_line) if header_line > 0 else table[names_at or 0]
@@ -149,7 +151,7 @@ def _names_above(table: Sequence[HeadRow], start: int, width: int) -> int | None
 
     None when there is no such row.
     """
-    block = _block_above(table, start, width) or _block_above(table, start, width - 1)
+    block = _block_above(table, start, {width}) or _block_above(table, start, {width - 1, width + 1})
     if block:
         bare = [at for at in block if not _is_reading(table[at])] or block[:1]
         if width <= _FEW_COLUMNS and len(bare) > 1:
@@ -160,10 +162,10 @@ def _names_above(table: Sequence[HeadRow], start: int, width: int) -> int | None
     return start if not _only_readings(table, start) else None
 
 
-def _block_above(table: Sequence[HeadRow], start: int, width: int) -> list[int]:
-    """The rows of at least so many cells, one a word, that stand line by line above the readings."""
+def _block_above(table: Sequence[HeadRow], start: int, widths: set[int]) -> list[int]:
+    """The rows of so many cells, one a word, that stand line by line above the readings."""
     at = start
-    while at > 0 and len(table[at - 1].cells) >= max(1, width) and _may_head(table[at - 1]):
+    while at > 0 and len(table[at - 1].cells) in widths and _may_head(table[at - 1]):
         if at < start and table[at - 1].last + 1 < table[at].first:
             break
         at -= 1
