@@ -4,7 +4,7 @@ Nothing but SQLite may open a run file: closing any other handle of it drops the
 """
 
 import sqlite3
-from collections.abc import Iterator
+from collections.abc import Callable, Iterator
 from contextlib import contextmanager, suppress
 from importlib.resources import files
 from pathlib import Path
@@ -13,13 +13,16 @@ from screener.errors import RunFileError
 from screener.runs.failures import refusal
 
 APPLICATION_ID = 0x5343524E
-SCHEMA = 1
+SCHEMA = 2
 PATIENCE = 5.0
 """Seconds to wait for another program's lock."""
 
+Migrate = Callable[[sqlite3.Connection, int], None]
+"""Brings a run file of that schema to the present one."""
+
 _TABLES = {
     *("version", "run", "remark", "set_aside", "channel"),
-    *("span", "score", "family", "fit", "kept_readings"),
+    *("span", "score", "family", "fit", "kept_readings", "readings_in_order", "strip", "act", "decided", "view"),
 }
 
 
@@ -37,15 +40,22 @@ def connect(path: Path, mode: str, patience: float = PATIENCE) -> sqlite3.Connec
     return connection
 
 
-def open_checked(path: Path, *, read_only: bool, patience: float = PATIENCE) -> sqlite3.Connection:
-    """A connection to an existing run file of this schema, after looking at nothing but its header and its tables."""
+def open_checked(path: Path, migrate: Migrate, *, read_only: bool, patience: float = PATIENCE) -> sqlite3.Connection:
+    """A connection to an existing run file, after looking at nothing but its header and its tables.
+
+    One of an earlier schema is brought to this one by `migrate`, also when it is only to be read.
+    """
     if path.is_dir():
         raise refusal("open", path, "it is a folder", "Give the name of a run file.")
     if not path.is_file():
         raise refusal("open", path, "there is no such file", "Check the name, or make one with `screener score`.")
     connection = _connect_readable(path, "ro" if read_only else "rw", patience)
     try:
-        _check(connection, path)
+        version = _checked_schema(connection, path)
+        _check_kinds(connection, path)
+        if version < SCHEMA:
+            _migrate(path, version, migrate)
+        _check_tables(connection, path)
     except BaseException:
         connection.close()
         raise
@@ -138,18 +148,48 @@ def _header(connection: sqlite3.Connection) -> tuple[int, int]:
     return application_id, version
 
 
-def _check(connection: sqlite3.Connection, path: Path) -> None:
+def _checked_schema(connection: sqlite3.Connection, path: Path) -> int:
+    """The schema of the file, this one or an earlier one."""
     application_id, version = _header(connection)
     if application_id != APPLICATION_ID:
         raise _not_a_run_file(path)
-    if version != SCHEMA:
+    if version > SCHEMA or version < 1:
         newer = "Use the newer version of screener that wrote it, or run"
         way_out = f"{newer if version > SCHEMA else 'Run'} `screener score` again."
         raise refusal("open", path, f"it has schema {version}, this version needs {SCHEMA}", way_out)
-    held = connection.execute("SELECT type, name, sql LIKE 'CREATE TABLE%' FROM sqlite_master").fetchall()
-    foreign = [kind for kind, _, plain in held if kind not in {"table", "index"} or (kind == "table" and not plain)]
-    if foreign or not {name for _, name, _ in held} >= _TABLES:
-        raise refusal("open", path, "its tables are not those of a run file", "Run `screener score` again.")
+    return version
+
+
+def _migrate(path: Path, version: int, migrate: Migrate) -> None:
+    """Bring the file to this schema through a connection of its own, since the given one may be for reading only."""
+    try:
+        connection = connect(path, "rw")
+        try:
+            migrate(connection, version)
+        finally:
+            connection.close()
+    except sqlite3.OperationalError as error:
+        if error.sqlite_errorcode & 0xFF not in {sqlite3.SQLITE_READONLY, sqlite3.SQLITE_CANTOPEN}:
+            raise
+        why = f"it has schema {version}, this version needs {SCHEMA}, and it may not be written to"
+        raise refusal("open", path, why, "Copy it to a folder of your own and open the copy.") from error
+
+
+def _check_kinds(connection: sqlite3.Connection, path: Path) -> None:
+    """Raise when the file holds more than tables: views and triggers would run by themselves."""
+    held = connection.execute("SELECT type, sql LIKE 'CREATE TABLE%' FROM sqlite_master").fetchall()
+    if any(kind not in {"table", "index"} or (kind == "table" and not plain) for kind, plain in held):
+        raise _other_tables(path)
+
+
+def _check_tables(connection: sqlite3.Connection, path: Path) -> None:
+    held = {name for (name,) in connection.execute("SELECT name FROM sqlite_master WHERE type = 'table'")}
+    if not held >= _TABLES:
+        raise _other_tables(path)
+
+
+def _other_tables(path: Path) -> RunFileError:
+    return refusal("open", path, "its tables are not those of a run file", "Run `screener score` again.")
 
 
 def _not_a_run_file(path: Path) -> RunFileError:

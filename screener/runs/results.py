@@ -10,6 +10,7 @@ import numpy as np
 import polars as pl
 
 from screener.records import FIT_COLUMNS, RESULT_COLUMNS, Control, Plan, Verdict
+from screener.runs.decisions import read_decisions
 from screener.runs.scores import unpacked
 from screener.runs.text import visible
 from screener.stats.many import adjusted_p
@@ -24,17 +25,22 @@ DTYPES: dict[type, pl.DataType] = {int: pl.Int64(), float: pl.Float64(), str: pl
 
 _RESULTS = """
 SELECT score.position, channel.name, channel.unit, score.n, score.missing, score.reason,
-    fit.r, fit.critical_r, fit.plain_critical_r, fit.p, fit.note
+    family.name, fit.r, fit.critical_r, fit.plain_critical_r, fit.p, fit.note,
+    near.name, near_fit.r, near_fit.p
 FROM score JOIN channel USING (position)
-LEFT JOIN fit ON fit.family = (SELECT id FROM family WHERE name = ?) AND fit.position = score.position
+LEFT JOIN family ON family.id = score.held
+LEFT JOIN fit ON fit.family = score.held AND fit.position = score.position
+LEFT JOIN family AS near ON near.id = score.closest
+LEFT JOIN fit AS near_fit ON near_fit.family = score.closest AND near_fit.position = score.position
 ORDER BY score.position
 """
 _RESULT_FIELDS = {
     **{"position": int, "channel": str, "unit": str, "n": int, "missing": int, "reason": str},
-    **{"r": float, "critical_r": float, "plain_critical_r": float, "p": float, "fit_note": str},
+    **{"family": str, "r": float, "critical_r": float, "plain_critical_r": float, "p": float, "fit_note": str},
+    **{"closest": str, "closest_r": float, "closest_p": float},
 }
 _FITS = """
-SELECT family.name, r, critical_r, plain_critical_r, p, extrapolated, location, scale, note
+SELECT family.name, r, critical_r, plain_critical_r, p, extrapolated, location, scale, shape_1, shape_2, note
 FROM family JOIN fit ON fit.family = family.id AND fit.position = ?
 ORDER BY family.id
 """
@@ -42,8 +48,10 @@ ORDER BY family.id
 
 def read_results(connection: sqlite3.Connection, plan: Plan) -> pl.DataFrame:
     """One row per channel tried, in table order: `position` and the RESULT_COLUMNS; absent values are null."""
-    stored = _frame(connection.execute(_RESULTS, (plan.family,)).fetchall(), _RESULT_FIELDS)
-    judged = _judged(stored.with_columns(reason=_reason(plan.family)), plan)
+    stored = _frame(connection.execute(_RESULTS).fetchall(), _RESULT_FIELDS)
+    named = stored.with_columns(pl.col("family").fill_null(plan.family))
+    judged = _judged(named.with_columns(reason=_reason()), plan)
+    judged = _decided(judged, read_decisions(connection))
     absent = [pl.lit(None, DTYPES[kind]).alias(name) for name, kind in RESULT_COLUMNS.items() if name not in judged]
     return judged.with_columns(absent).select("position", *RESULT_COLUMNS)
 
@@ -60,15 +68,29 @@ def read_points(connection: sqlite3.Connection, position: int) -> FloatArray:
     return unpacked(row[0]) if row else np.empty(0)
 
 
-def _reason(family: str) -> pl.Expr:
-    """Why a channel is not scored against the family of the plan; null where it is."""
+def read_in_order(connection: sqlite3.Connection, position: int) -> FloatArray:
+    """The readings kept of one channel in row order; empty when there are none."""
+    row = connection.execute("SELECT readings FROM readings_in_order WHERE position = ?", (position,)).fetchone()
+    return unpacked(row[0]) if row else np.empty(0)
+
+
+def read_strips(connection: sqlite3.Connection) -> pl.DataFrame:
+    """One row per channel scored: `position` and `strip`."""
+    rows = connection.execute("SELECT position, levels FROM strip ORDER BY position").fetchall()
+    return _frame(rows, {"position": int, "strip": str})
+
+
+def _reason() -> pl.Expr:
+    """Why a channel is not scored against its family; null where it is."""
     unfitted = pl.col("r").is_null()
     unjudged = pl.col("critical_r").is_null() | pl.col("p").is_null()
     return pl.coalesce(
         "reason",
-        pl.when(unfitted & (pl.col("fit_note") == OUTSIDE_SUPPORT)).then(pl.lit(f"outside the support of {family}")),
-        pl.when(unfitted).then(pl.coalesce("fit_note", pl.lit(f"no fit of {family}"))),
-        pl.when(unjudged).then(pl.lit(f"no critical value for {family}")),
+        pl.when(unfitted & (pl.col("fit_note") == OUTSIDE_SUPPORT)).then(
+            pl.format("outside the support of {}", "family")
+        ),
+        pl.when(unfitted).then(pl.coalesce("fit_note", pl.format("no fit of {}", "family"))),
+        pl.when(unjudged).then(pl.format("no critical value for {}", "family")),
     )
 
 
@@ -81,9 +103,15 @@ def _judged(stored: pl.DataFrame, plan: Plan) -> pl.DataFrame:
     unexplained = ((1 - pl.col("r")) * (1 + pl.col("r"))).clip(0.0)
     return stored.with_columns(
         q=pl.Series(adjusted_p(tested), dtype=pl.Float64).fill_nan(None),
-        family=pl.lit(plan.family),
         departure_size=unexplained.sqrt(),
     ).with_columns(verdict=pl.when(scored).then(judged).otherwise(pl.lit(str(Verdict.NOT_SCORED))))
+
+
+def _decided(judged: pl.DataFrame, held: Mapping[int, tuple[str | None, str | None]]) -> pl.DataFrame:
+    """With what people decided and noted."""
+    rows = [(position, *words) for position, words in held.items()]
+    decided = _frame(rows, {"position": int, "decision": str, "note": str})
+    return judged.join(decided, on="position", how="left", maintain_order="left")
 
 
 def _frame(rows: Sequence[tuple[object, ...]], fields: Mapping[str, type]) -> pl.DataFrame:

@@ -5,7 +5,7 @@ from __future__ import annotations
 import os
 import secrets
 import sqlite3
-from collections.abc import Iterator
+from collections.abc import Iterator, Mapping, Sequence
 from contextlib import contextmanager
 from pathlib import Path
 from types import TracebackType
@@ -14,12 +14,15 @@ from typing import TYPE_CHECKING, Self
 import polars as pl
 
 from screener.errors import RunFileError
-from screener.records import BlockScores, Plan, Span, TableFacts
+from screener.records import BlockScores, Decision, Plan, Span, TableFacts
 from screener.runs import connection as sqlite
+from screener.runs import decisions
 from screener.runs.facts import read_origin, store_origin
 from screener.runs.failures import explained, explained_content, refusal
-from screener.runs.results import read_fits, read_points, read_results
+from screener.runs.migrations import migrated
+from screener.runs.results import read_fits, read_in_order, read_points, read_results, read_strips
 from screener.runs.scores import store_failure, store_scores
+from screener.runs.view import read_view, store_view
 
 if TYPE_CHECKING:
     from screener.records import FloatArray
@@ -65,7 +68,7 @@ class RunFile:
         Raises: RunFileError when it is missing, no run file, of another schema, damaged, or locked.
         """
         with explained_content(path, "open"):
-            connection = sqlite.open_checked(path, read_only=read_only, patience=patience)
+            connection = sqlite.open_checked(path, migrated, read_only=read_only, patience=patience)
         try:
             return cls(path, connection)
         except BaseException:
@@ -81,7 +84,7 @@ class RunFile:
     def store(self, scores: BlockScores) -> None:
         """Keep a block; once this returns, it outlives the program."""
         with self._writing() as connection:
-            store_scores(connection, scores)
+            store_scores(connection, scores, self.plan.positions)
 
     def store_failure(self, span: Span, message: str) -> None:
         """Keep why a block could not be scored; its channels are not scored, for this reason, until it is stored."""
@@ -116,6 +119,46 @@ class RunFile:
         """The sorted readings kept of the channel, at `stats.points.kept_ranks(n)`; empty when not scored."""
         with explained_content(self.path):
             return read_points(self._connection, position)
+
+    def in_order(self, position: int) -> FloatArray:
+        """The readings kept of the channel in row order, for `stats.row_order.row_order`; empty when none are."""
+        with explained_content(self.path):
+            return read_in_order(self._connection, position)
+
+    def strips(self) -> pl.DataFrame:
+        """One row per channel scored: `position` and `strip`, digits from the low to the high tail."""
+        with explained_content(self.path):
+            return read_strips(self._connection)
+
+    def decide(self, positions: Sequence[int], decision: Decision | None) -> None:
+        """Keep what was decided about these channels, None to take back any decision; in one act."""
+        with self._writing() as connection:
+            decisions.store_act(connection, positions, {"decision": decision})
+
+    def annotate(self, positions: Sequence[int], note: str) -> None:
+        """Keep a note on these channels, empty for none; in one act."""
+        with self._writing() as connection:
+            decisions.store_act(connection, positions, {"note": note})
+
+    def undo(self) -> int:
+        """Take back the last act; how many channels it was about, 0 when there is none."""
+        with self._writing() as connection:
+            return decisions.undo(connection)
+
+    def redo(self) -> int:
+        """Do again what was undone last; how many channels it is about, 0 when there is nothing."""
+        with self._writing() as connection:
+            return decisions.redo(connection)
+
+    def view(self) -> dict[str, str]:
+        """Where the user was, as last kept; anything may be missing."""
+        with explained_content(self.path):
+            return read_view(self._connection)
+
+    def store_view(self, state: Mapping[str, str]) -> None:
+        """Keep where the user is."""
+        with self._writing() as connection:
+            store_view(connection, state)
 
     def close(self) -> None:
         """Close it; whoever closes last leaves one file, also when the run is not finished."""

@@ -1,9 +1,9 @@
--- The run file, schema 1. Later schemas are reached by migrations, which add tables and columns and change none.
+-- The run file, schema 2. Later schemas are reached by migrations, which add tables and columns and change none.
 -- A missing number is NULL, never NaN. Names and sentences are stored safe to show.
 
 -- "SCRN" in ASCII: what tells a run file from any other SQLite file.
 PRAGMA application_id = 0x5343524E;
-PRAGMA user_version = 1;
+PRAGMA user_version = 2;
 
 BEGIN;
 
@@ -77,7 +77,9 @@ CREATE TABLE score (
     position INTEGER PRIMARY KEY,
     n INTEGER, -- NULL when its span failed
     missing INTEGER,
-    reason TEXT -- why it is not scored
+    reason TEXT, -- why it is not scored
+    held INTEGER, -- the family it is held against
+    closest INTEGER -- the closest family that its own test does not reject
 );
 
 -- One row per family, in the order of the registry.
@@ -97,6 +99,8 @@ CREATE TABLE fit (
     extrapolated INTEGER NOT NULL,
     location REAL,
     scale REAL,
+    shape_1 REAL,
+    shape_2 REAL,
     note TEXT,
     PRIMARY KEY (family, position)
 ) WITHOUT ROWID;
@@ -105,6 +109,41 @@ CREATE TABLE fit (
 CREATE TABLE kept_readings (
     position INTEGER PRIMARY KEY,
     readings BLOB NOT NULL
+);
+
+-- One row per channel scored: readings in row order for the plots that need it, float64, little-endian, NaN for missing.
+CREATE TABLE readings_in_order (
+    position INTEGER PRIMARY KEY,
+    readings BLOB NOT NULL
+);
+
+-- One row per channel scored: its departure from the line in a few digits, from the low to the high tail.
+CREATE TABLE strip (
+    position INTEGER PRIMARY KEY,
+    levels TEXT NOT NULL
+);
+
+-- One row per act of a user: what was decided or noted at once, for one channel or many.
+CREATE TABLE act (
+    id INTEGER PRIMARY KEY,
+    made TEXT NOT NULL, -- UTC, ISO 8601
+    made_by TEXT NOT NULL,
+    undone INTEGER NOT NULL DEFAULT 0 -- 1: can be done again; 2: undone for good, since something else was done
+);
+
+-- One row per channel of an act: decision and note from then on. The last act that is not undone holds.
+CREATE TABLE decided (
+    position INTEGER NOT NULL,
+    act INTEGER NOT NULL,
+    decision TEXT,
+    note TEXT,
+    PRIMARY KEY (position, act)
+) WITHOUT ROWID;
+
+-- At most one row: where the user was when the screen was left.
+CREATE TABLE view (
+    id INTEGER PRIMARY KEY CHECK (id = 1),
+    state TEXT NOT NULL -- JSON object
 );
 
 COMMIT;

@@ -9,6 +9,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from screener.records import BlockScores, Span
+from screener.runs.strips import strips_of
 from screener.runs.text import visible
 
 if TYPE_CHECKING:
@@ -18,22 +19,35 @@ Row = tuple[int | float | str | None, ...]
 
 _FIT = """
 INSERT OR REPLACE INTO fit
-    (family, position, r, critical_r, plain_critical_r, p, extrapolated, location, scale, note)
-VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?)
+    (family, position, r, critical_r, plain_critical_r, p, extrapolated, location, scale, shape_1, shape_2, note)
+VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?, ?)
 """
 
 
-def store_scores(connection: sqlite3.Connection, scores: BlockScores) -> None:
-    """Write a block, in place of what an earlier attempt left; the caller holds the transaction."""
+def store_scores(connection: sqlite3.Connection, scores: BlockScores, rule: str) -> None:
+    """Write a block, in place of what an earlier attempt left; the caller holds the transaction.
+
+    `rule` names the plotting positions.
+    """
     span = scores.span
     families = _family_ids(connection, scores.families)
     connection.execute("INSERT OR REPLACE INTO span (first, stop) VALUES (?, ?)", (span.first, span.stop))
     connection.executemany(
-        "INSERT OR REPLACE INTO score (position, n, missing, reason) VALUES (?, ?, ?, ?)", _score_rows(scores)
+        "INSERT OR REPLACE INTO score (position, n, missing, reason, held, closest) VALUES (?, ?, ?, ?, ?, ?)",
+        _score_rows(scores, families),
     )
     connection.executemany(
         "INSERT OR REPLACE INTO kept_readings (position, readings) VALUES (?, ?)",
         zip(range(span.first, span.stop), map(packed, scores.points), strict=True),
+    )
+    if scores.in_order:
+        connection.executemany(
+            "INSERT OR REPLACE INTO readings_in_order (position, readings) VALUES (?, ?)",
+            zip(range(span.first, span.stop), map(packed, scores.in_order), strict=True),
+        )
+    connection.executemany(
+        "INSERT OR REPLACE INTO strip (position, levels) VALUES (?, ?)",
+        zip(range(span.first, span.stop), strips_of(scores, rule), strict=True),
     )
     connection.executemany(_FIT, _fit_rows(scores, families))
 
@@ -72,10 +86,12 @@ def _family_ids(connection: sqlite3.Connection, names: tuple[str, ...]) -> list[
 # `.tolist()` throughout: SQLite would store numpy's own scalars as blobs. It stores NaN as NULL.
 
 
-def _score_rows(scores: BlockScores) -> Iterator[Row]:
+def _score_rows(scores: BlockScores, families: list[int]) -> Iterator[Row]:
     reasons = (visible(reason) or None for reason in scores.reasons)
     positions = range(scores.span.first, scores.span.stop)
-    return zip(positions, scores.n.tolist(), scores.missing.tolist(), reasons, strict=True)
+    held = (families[place] for place in scores.held.tolist())
+    closest = (families[place] if place >= 0 else None for place in scores.closest.tolist())
+    return zip(positions, scores.n.tolist(), scores.missing.tolist(), reasons, held, closest, strict=True)
 
 
 def _fit_rows(scores: BlockScores, families: list[int]) -> Iterator[Row]:
@@ -83,7 +99,8 @@ def _fit_rows(scores: BlockScores, families: list[int]) -> Iterator[Row]:
     first, stop = scores.span.first, scores.span.stop
     extrapolated = scores.extrapolated.astype(np.int64)
     tables = (scores.r, scores.critical_r, scores.plain_critical_r, scores.p, extrapolated)
+    shapes = (scores.shapes[:, :, 0], scores.shapes[:, :, 1])
     for k, family in enumerate(families):
-        columns = [table[:, k].tolist() for table in (*tables, scores.location, scores.scale)]
+        columns = [table[:, k].tolist() for table in (*tables, scores.location, scores.scale, *shapes)]
         notes = [visible(of_channel[k]) or None for of_channel in scores.notes]
         yield from zip([family] * (stop - first), range(first, stop), *columns, notes, strict=True)

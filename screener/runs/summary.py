@@ -25,13 +25,13 @@ class Summary:
     def sentence(self) -> str:
         """Such as "240 channels: 61 flagged, about 12 expected by chance; 9 not scored"."""
         tried = self.scored + self.not_scored
-        counted = f"{self.channels} channel{'' if self.channels == 1 else 's'}"
-        progress = f"{tried} of {counted}" if tried < self.channels else counted
+        counted = f"{self.channels:,} channel{'' if self.channels == 1 else 's'}"
+        progress = f"{tried:,} of {counted}" if tried < self.channels else counted
         chance = f"about {about(self.expected_by_chance)} expected by chance"
         if self.control is Control.FDR:
             chance = f"about {about(self.expected_by_chance)} of them expected to be false at most"
-        unscored = f"; {self.not_scored} not scored" if self.not_scored else ""
-        return f"{progress}: {self.flagged} flagged, {chance}{unscored}"
+        unscored = f"; {self.not_scored:,} not scored" if self.not_scored else ""
+        return f"{progress}: {self.flagged:,} flagged, {chance}{unscored}"
 
 
 def summarise(results: pl.DataFrame, facts: TableFacts, plan: Plan) -> Summary:
@@ -51,4 +51,4 @@ def summarise(results: pl.DataFrame, facts: TableFacts, plan: Plan) -> Summary:
 
 def about(expected: float) -> str:
     """A number of flags to two digits, whole from ten on."""
-    return f"{expected:.0f}" if expected >= 9.95 else f"{expected:.2g}"
+    return f"{expected:,.0f}" if expected >= 9.95 else f"{expected:.2g}"

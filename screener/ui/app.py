@@ -81,6 +81,10 @@ class ScreenerApp(App[int]):
     def _progressed(self, event: messages.Progressed) -> None:
         self.main.progressed(event)
 
+    @on(messages.Preparing)
+    def _preparing(self, event: messages.Preparing) -> None:
+        self.main.preparing(event)
+
     @on(messages.ResultsRead)
     def _results_read(self, event: messages.ResultsRead) -> None:
         self.main.results_read(event)

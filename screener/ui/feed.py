@@ -16,7 +16,7 @@ from typing import TYPE_CHECKING
 from textual.message import Message
 
 from screener.errors import ScreenerError
-from screener.records import BlockFailed, BlockScored, Event, RunFinished, TableOpened
+from screener.records import BlockFailed, BlockScored, Event, NullsPrepared, RunFinished, TableOpened
 from screener.ui import messages
 from screener.ui.drawing import Wanted, drawing
 from screener.ui.source import Source
@@ -102,6 +102,7 @@ class Feed:
         for event in self._source.start(self._stop.is_set):
             if isinstance(event, TableOpened):
                 tried = before = event.channels_done
+            if isinstance(event, TableOpened | NullsPrepared):
                 began = time.monotonic()
             tried += _channels(event)
             self._tell(event, tried, tried - before, time.monotonic() - began)
@@ -110,6 +111,8 @@ class Feed:
         """Post what the event means for the screen."""
         if isinstance(event, TableOpened):
             self._reader.open(event.run_path, finished=False)
+        elif isinstance(event, NullsPrepared):
+            self._post(messages.Preparing(event.positions, event.work_done))
         elif isinstance(event, RunFinished):
             self._reader.results_changed(last=True)
             self._post(messages.ScoringEnded(event.cancelled, event.seconds))

@@ -43,6 +43,19 @@ class Progressed(Message):
 
 
 @dataclass
+class Preparing(Message):
+    """Null distributions that the run needs are being simulated."""
+
+    positions: str
+    share: float
+    """Of the work that is done, 0 to 1."""
+
+    def can_replace(self, message: Message) -> bool:
+        """Only the newest counts."""
+        return isinstance(message, Preparing)
+
+
+@dataclass
 class BlockLost(Message):
     """A block of channels could not be scored."""
 

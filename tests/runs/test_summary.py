@@ -53,7 +53,7 @@ def test_nothing_tried_yet_is_said_too(tmp_path: Path) -> None:
 
 
 @pytest.mark.parametrize(
-    ("expected", "shown"), [(9.94, "9.9"), (9.96, "10"), (11.55, "12"), (1000.0, "1000"), (3.0, "3")]
+    ("expected", "shown"), [(9.94, "9.9"), (9.96, "10"), (11.55, "12"), (1000.0, "1,000"), (3.0, "3")]
 )
 def test_an_expected_number_is_shown_to_two_digits(expected: float, shown: str) -> None:
     assert f"about {shown} expected" in Summary(1, 1, 0, 0, expected, 0).sentence()

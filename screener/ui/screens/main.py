@@ -27,7 +27,7 @@ from screener.ui.widgets.channel_table import ChannelTable
 from screener.ui.widgets.key_line import KeyLine
 from screener.ui.widgets.lines import Line, Lines, plain
 from screener.ui.widgets.plot_panel import PlotPanel
-from screener.ui.widgets.progress import progress_line
+from screener.ui.widgets.progress import preparing_line, progress_line
 from screener.ui.widgets.prompt import Prompt
 
 if TYPE_CHECKING:
@@ -121,6 +121,12 @@ class MainScreen(Screen[None]):
         total = len(self._opened.facts.channels)
         width = self.size.width
         bar.show([progress_line(event.tried, total, event.tried_now, event.seconds, width, unicode=self._unicode)])
+
+    def preparing(self, event: messages.Preparing) -> None:
+        """Show what is simulated before scoring can begin."""
+        bar = self.query_one("#progress", Lines)
+        bar.display = True
+        bar.show([preparing_line(event.positions, event.share, self.size.width, unicode=self._unicode)])
 
     def scoring_ended(self, event: messages.ScoringEnded) -> None:
         """No more progress to show."""
