@@ -15,6 +15,7 @@ import polars as pl
 from screener.errors import PlanError
 from screener.tables.formats import Packing, source_of, utf16_without_mark
 from screener.tables.head import cell_rows
+from screener.tables.packed import gzip_size, refuse_bomb, zstd_size
 
 HEAD_LINES = 200
 _HEAD_BYTES = 1 << 18
@@ -67,6 +68,19 @@ def utf8_text(path: Path, packing: Packing, *, given: str = "", keep: Sink = in_
         source = keep(_converted(_pieces(sample, file), encoding))
     remarks = () if encoding == "utf-8" else (f"The text was read as {_NAMES.get(encoding, encoding)}.",)
     return Text(source, _head_of(source), tuple(words), remarks)
+
+
+def text_size(path: Path, packing: Packing) -> int:
+    """The bytes of the text, at most; told from the compressed blocks where there are any.
+
+    Raises TableError when so small a file holds so much that it can only be meant to fill memory.
+    """
+    size = path.stat().st_size
+    if packing is Packing.NONE:
+        return size
+    unpacked = gzip_size(path) if packing is Packing.GZIP else zstd_size(path)
+    refuse_bomb(path, size, unpacked)
+    return unpacked
 
 
 def blanks_as_tabs(text: Text, keep: Sink = in_memory) -> Path | bytes:

@@ -6,6 +6,7 @@ is noticed by the time of change.
 """
 
 import hashlib
+from collections.abc import Sequence
 from pathlib import Path
 
 WHOLE_BYTES = 256 << 20
@@ -13,19 +14,25 @@ _PIECES = 64
 _PIECE_BYTES = 1 << 20
 
 
-def fingerprint(path: Path, *, whole_bytes: int = WHOLE_BYTES) -> str:
-    """The fingerprint, led by the way it was made: `whole:` or `sampled:`."""
-    size = path.stat().st_size
+def fingerprint(path: Path, *, size: int | None = None, whole_bytes: int = WHOLE_BYTES) -> str:
+    """The fingerprint of the first `size` bytes, led by the way it was made: `whole:` or `sampled:`."""
+    size = path.stat().st_size if size is None else size
     if size > whole_bytes:
         return f"sampled:{_sampled(path, size)}"
-    return f"whole:{_whole(path)}"
+    return f"whole:{_whole(path, size)}"
 
 
-def _whole(path: Path) -> str:
+def joined(prints: Sequence[str]) -> str:
+    """One fingerprint of several contents in their order."""
+    return prints[0] if len(prints) == 1 else f"several:{hashlib.sha256(' '.join(prints).encode()).hexdigest()}"
+
+
+def _whole(path: Path, size: int) -> str:
     digest = hashlib.sha256()
     with path.open("rb") as file:
-        while piece := file.read(_PIECE_BYTES):
+        while size > 0 and (piece := file.read(min(size, _PIECE_BYTES))):
             digest.update(piece)
+            size -= len(piece)
     return digest.hexdigest()
 
 

@@ -94,7 +94,8 @@ def _agreement(lines: Sequence[str], separator: str) -> tuple[float, int]:
     regular = [row for row in rows if len(row) == width]
     if 2 * len(regular) < len(rows) and (separator == " " or len(regular) < _FEWEST_REGULAR):
         return 0.0, 0
-    judged = [cell.strip() for row in regular[-_JUDGED_ROWS:] for cell in row[:_JUDGED_CELLS]]
+    later = regular[len(regular) // 2 :][-_JUDGED_ROWS:]
+    judged = [cell.strip() for row in later for cell in row[:_JUDGED_CELLS]]
     values = sum(is_missing(cell) or is_number(cell) or _VALUE.fullmatch(cell) is not None for cell in judged)
     share = values / len(judged)
     agreement = len(regular) / len(rows) * (share * share + 0.05)

@@ -4,6 +4,8 @@ from dataclasses import dataclass
 
 import polars as pl
 
+from screener.tables.spool import Spool
+
 
 @dataclass(frozen=True, slots=True)
 class RawTable:
@@ -24,3 +26,5 @@ class RawTable:
     """The unit of each column where the format keeps it apart from the name; empty where it has none."""
     dialect: str = ""
     """How the table is written, on one line."""
+    spool: Spool | None = None
+    """What keeps the file that the frame reads, when it is a temporary one."""

@@ -21,7 +21,11 @@ def read_stored(path: Path, recognised: Recognised, *, held_bytes: int) -> RawTa
         with path.open("rb") as file:
             return _held(pl.read_ipc_stream(file), recognised)
     scan = pl.scan_parquet if recognised.kind is Kind.PARQUET else pl.scan_ipc
-    frame = scan(source_of(path), glob=False)
+    return read_frame(scan(source_of(path), glob=False), recognised, held_bytes=held_bytes)
+
+
+def read_frame(frame: pl.LazyFrame, recognised: Recognised, *, held_bytes: int) -> RawTable:
+    """The table behind a scan, in memory when its readings take at most `held_bytes`."""
     names = frame.collect_schema().names()
     if any(name.startswith("^") for name in names):
         frame = frame.rename(_plain(names))

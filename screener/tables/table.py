@@ -1,11 +1,7 @@
 """Opening a measurement table and reading its channels block by block."""
 
-import csv
-import zlib
-from collections.abc import Iterator, Mapping, Sequence
-from concurrent.futures import ThreadPoolExecutor
-from contextlib import contextmanager
-from dataclasses import dataclass
+from collections.abc import Mapping, Sequence
+from dataclasses import dataclass, replace
 from pathlib import Path
 
 import numpy as np
@@ -16,13 +12,15 @@ from screener.errors import PlanError, TableError
 from screener.records import Block, Channel, Plan, SetAside, Span, TableFacts
 from screener.tables.chosen import NOT_ASKED, Choice, choose
 from screener.tables.columns import reading
-from screener.tables.fingerprint import fingerprint
-from screener.tables.formats import Kind, Recognised, recognise
-from screener.tables.names import Label, labels, shortlist, visible
+from screener.tables.failures import readable
+from screener.tables.fingerprint import joined
+from screener.tables.joining import join
+from screener.tables.loading import FileState, load_address, load_file
+from screener.tables.names import Label, labels, shortlist
 from screener.tables.raw import RawTable
 from screener.tables.sifting import Sifted, sift
-from screener.tables.stored import read_stored
-from screener.tables.text import read_text
+from screener.tables.sources import source_named
+from screener.tables.spool import Spool
 
 HELD_BYTES = 2 << 30
 """A table whose readings take more than this is left in its columnar file."""
@@ -36,6 +34,10 @@ class Table:
     _columns: tuple[str, ...]
     _held: pl.DataFrame | None
     _scan: pl.LazyFrame
+    _states: tuple[FileState, ...] = ()
+    """The files that are read block by block, as they were when the table was opened."""
+    _kept: tuple[Spool | None, ...] = ()
+    """Temporary files that go with the table."""
 
     def read(self, span: Span) -> Block:
         """The readings of a span of channels.
@@ -46,6 +48,8 @@ class Table:
         if not 0 <= span.first < span.stop <= len(self._columns):
             raise ValueError(f"{span} lies outside the {len(self._columns)} channels")
         with readable(self.facts.path, self.facts.format):
+            for state in self._states:
+                state.check()
             return Block(span, _as_readings(self._part(span)))
 
     def _part(self, span: Span) -> pl.DataFrame:
@@ -57,50 +61,29 @@ class Table:
 def open_table(path: Path, plan: Plan, *, held_bytes: int = HELD_BYTES) -> Table:
     """The table at `path`: which of its columns are channels, which are set aside and why.
 
+    The path may also be a pattern for several files of one layout, `-` for standard input, or an address.
     Raises:
-        TableError: the file is no table that can be read, or no column is a channel.
-        PlanError: the plan's name patterns leave no column.
+        TableError: there is no table that can be read, or no column is a channel.
+        PlanError: the plan's name patterns leave no column, or it says what cannot be.
     """
-    recognised = recognise(path)
-    with readable(path, str(recognised.kind)), ThreadPoolExecutor(1) as aside:
-        print_of_content = aside.submit(fingerprint, path)
-        raw = _load(path, recognised, plan, held_bytes)
-        if not raw.rows:
-            raise TableError(f"Couldn't read {str(path)!r}: it has columns but no readings.")
-        return _table(path, plan, raw, print_of_content.result())
+    source = source_named(path)
+    if source.address:
+        loaded = [load_address(source.address, plan, held_bytes)]
+    else:
+        loaded = [load_file(file, plan, held_bytes // len(source.files)) for file in source.files]
+    names = [file.name for file in source.files]
+    raw, files = join([one.raw for one in loaded], names)
+    if not raw.rows:
+        raise TableError(f"Couldn't read {str(path)!r}: it has columns but no readings.")
+    with readable(path, raw.format):
+        facts, sifted = _sifted(source.path, plan, raw)
+        facts = replace(facts, fingerprint=joined([one.content for one in loaded]), files=files)
+        held = sifted.frame.collect() if raw.held else None
+    states = () if raw.held else tuple(one.state for one in loaded if one.state)
+    return Table(facts, sifted.columns, held, sifted.frame, states, (source.spool, *(one.raw.spool for one in loaded)))
 
 
-@contextmanager
-def readable(path: Path, what: str) -> Iterator[None]:
-    """Turns what the reading libraries raise about a file into one sentence.
-
-    Raises:
-        TableError: something inside could not read the file.
-    """
-    try:
-        yield
-    except (EOFError, zlib.error) as error:
-        raise TableError(f"Couldn't read {str(path)!r}: the file is damaged or cut off.") from error
-    except (OSError, csv.Error, pl.exceptions.PolarsError, pl.exceptions.PanicException) as error:
-        raise TableError(f"Couldn't read {str(path)!r} as {what}: {_said(error, what)}") from error
-
-
-def _said(error: BaseException, what: str) -> str:
-    if what.startswith(Kind.NDJSON) and not isinstance(error, OSError):
-        return "every line must be one JSON object, and its values numbers, texts or null."
-    first_line = visible((str(error).strip() or type(error).__name__).splitlines()[0])[:200].rstrip(".")
-    if '`"' in first_line:
-        return "a quotation mark is not closed. Mend the line or remove the mark."
-    return f"{first_line}. The file may be damaged or cut off; write it again."
-
-
-def _load(path: Path, recognised: Recognised, plan: Plan, held_bytes: int) -> RawTable:
-    if recognised.kind is Kind.TEXT:
-        return read_text(path, recognised, plan)
-    return read_stored(path, recognised, held_bytes=held_bytes)
-
-
-def _table(path: Path, plan: Plan, raw: RawTable, content: str) -> Table:
+def _sifted(path: Path, plan: Plan, raw: RawTable) -> tuple[TableFacts, Sifted]:
     shown, name_remarks = labels(raw.names, raw.units)
     choice = choose([label.name for label in shown], plan)
     stored = raw.frame.collect_schema().names()
@@ -111,8 +94,8 @@ def _table(path: Path, plan: Plan, raw: RawTable, content: str) -> Table:
         raise _nothing_to_screen(path, choice, set_aside)
     remarks = (*raw.remarks, *name_remarks, *choice.remarks, *sifted.remarks)
     channels = _channels(sifted, by_column)
-    facts = TableFacts(path, raw.format, raw.rows, channels, set_aside, content, remarks, raw.dialect, sifted.proposals)
-    return Table(facts, sifted.columns, sifted.frame.collect() if raw.held else None, sifted.frame)
+    facts = TableFacts(path, raw.format, raw.rows, channels, set_aside, "", remarks, raw.dialect, sifted.proposals)
+    return facts, sifted
 
 
 def _channels(sifted: Sifted, shown: Mapping[str, Label]) -> tuple[Channel, ...]:

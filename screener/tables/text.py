@@ -1,24 +1,31 @@
 """Text tables: parsed as numbers at once where they are clean, cell by cell where they are not."""
 
 import re
-from collections.abc import Collection, Iterator, Sequence
+from collections.abc import Callable, Collection, Iterator, Sequence
 from dataclasses import dataclass, replace
 from os import SEEK_END
 from pathlib import Path
+from typing import TypeVar
 
 import numpy as np
 import polars as pl
 
 from screener.errors import TableError
 from screener.records import Plan
-from screener.tables.cells import is_blank
-from screener.tables.encoding import Text, blanks_as_tabs, text_lines, utf8_text
+from screener.tables.cells import is_blank, is_number
+from screener.tables.encoding import Text, blanks_as_tabs, in_memory, text_lines, text_size, utf8_text
 from screener.tables.formats import Recognised
-from screener.tables.head import SEPARATORS
+from screener.tables.head import SEPARATORS, head_rows
 from screener.tables.layout import Layout, layout_of
+from screener.tables.names import visible
 from screener.tables.ragged import last_rows_sum_up, row_widths
 from screener.tables.raw import RawTable
+from screener.tables.shapes import names_a_channel
+from screener.tables.spool import Spool, roomy
 
+Frame = TypeVar("Frame", pl.DataFrame, pl.LazyFrame)
+_FEWEST_BATCH_ROWS = 256
+_BATCH_CELLS = 4_000_000
 _PARSE_ERRORS = (pl.exceptions.ComputeError, pl.exceptions.SchemaError)
 _TAB_SUFFIXES = frozenset({".tsv", ".tab"})
 _REFUSED_COLUMN = re.compile(r"at column 'c(\d+)'")
@@ -27,73 +34,125 @@ _TRIES = 3
 
 
 @dataclass(frozen=True, slots=True)
-class _Parsed:
-    frame: pl.DataFrame
+class _Remarked:
     words: tuple[str, ...] = ()
     remarks: tuple[str, ...] = ()
 
 
-def read_text(path: Path, recognised: Recognised, plan: Plan | None = None) -> RawTable:
-    """The table in memory: Float64 columns, and String columns where a cell is no plain number.
+@dataclass(frozen=True, slots=True)
+class _Parsed:
+    frame: pl.LazyFrame
+    rows: int
+    words: tuple[str, ...] = ()
+    remarks: tuple[str, ...] = ()
+
+
+def read_text(path: Path, recognised: Recognised, plan: Plan | None = None, *, held_bytes: int = 1 << 31) -> RawTable:
+    """The table, Float64 columns and String columns where a cell is no plain number.
+
+    It stands in memory unless its text takes more than `held_bytes`: then in a temporary columnar file.
 
     Raises:
         TableError: there is no row of readings, or the header does not name every column.
     """
     plan = plan or Plan()
-    text = utf8_text(path, recognised.packing, given=plan.encoding)
+    spool = Spool() if text_size(path, recognised.packing) > held_bytes else None
+    text = utf8_text(path, recognised.packing, given=plan.encoding, keep=spool.keep if spool else in_memory)
     if not any(not is_blank(line) for line in text.head):
         raise TableError(f"Couldn't read {str(path)!r}: it begins with nothing but blank lines.")
     prefer_tab = bool(_TAB_SUFFIXES & {suffix.lower() for suffix in path.suffixes})
-    layout = layout_of(text.head, plan, prefer_tab=prefer_tab)
+    layout = layout_of(text.head, _as_shaped(text, plan, prefer_tab=prefer_tab), prefer_tab=prefer_tab)
     if layout.extra_cells:
         raise TableError(
             f"Couldn't read {str(path)!r}: its header names {len(layout.names):,} columns, "
             "but the rows have more cells. Give every column a name."
         )
-    parsed = _parse(*_parseable(text, layout))
-    if parsed.frame.is_empty():
+    source, parsed_layout = _parseable(text, layout, spool)
+    parsed = _parse(source, parsed_layout, spool)
+    if not parsed.rows:
         raise TableError(f"Couldn't read {str(path)!r}: it has a header but no readings.")
     return RawTable(
-        frame=parsed.frame.lazy(),
+        frame=parsed.frame,
         names=layout.names,
         format=_label(recognised, layout),
-        rows=len(parsed.frame),
-        held=True,
-        loaded=True,
+        rows=parsed.rows,
+        held=spool is None,
+        loaded=spool is None,
         remarks=(*text.remarks, *_layout_remarks(layout), *parsed.remarks),
         decimal_comma=layout.decimal_comma,
         units=layout.header.units,
         dialect=", ".join((*layout.words_of(), *text.words, *parsed.words)),
+        spool=spool,
     )
 
 
-def _parseable(text: Text, layout: Layout) -> tuple[Path | bytes, Layout]:
+def _as_shaped(text: Text, plan: Plan, *, prefer_tab: bool) -> Plan:
+    """The plan, which says there are no names where channels are rows and the first line is one of them."""
+    if plan.shape != "rows" or plan.header_line >= 0:
+        return plan
+    first = next(head_rows(text.head, layout_of(text.head, plan, prefer_tab=prefer_tab).separator)).cells
+    numbers = [is_number(cell.strip()) for cell in first[1:] if cell.strip()]
+    return replace(plan, header_line=0) if numbers and all(numbers) and not names_a_channel(first[0]) else plan
+
+
+def _parseable(text: Text, layout: Layout, spool: Spool | None) -> tuple[Path | bytes, Layout]:
     """The text and its layout as polars takes them: one sign between two cells."""
     if layout.separator != " ":
         return text.source, layout
-    return blanks_as_tabs(text), replace(layout, separator="\t")
+    return blanks_as_tabs(text, spool.keep if spool else in_memory), replace(layout, separator="\t")
 
 
-def _parse(source: Path | bytes, layout: Layout) -> _Parsed:
+def _parse(source: Path | bytes, layout: Layout, spool: Spool | None) -> _Parsed:
     columns = [f"c{at}" for at in range(len(layout.names))]
-    frame, long_rows = _frame(source, layout, columns)
+    if spool:
+        return _spooled(source, layout, columns, spool)
+    frame, long_rows = _frame(source, layout, columns, pl.LazyFrame.collect)
     irregular = long_rows or layout.drop_comments or frame.to_series(-1).null_count() > 0
-    parsed = _without_other_rows(frame, source, layout) if irregular else _Parsed(frame)
-    return _without_sums(parsed)
+    if irregular:
+        return _without_sums(*_without_other_rows(frame, source, layout))
+    return _without_sums(frame, _Remarked())
 
 
-def _frame(source: Path | bytes, layout: Layout, columns: Sequence[str]) -> tuple[pl.DataFrame, bool]:
-    """The cells, and whether a row has more of them than the header."""
+def _spooled(source: Path | bytes, layout: Layout, columns: Sequence[str], spool: Spool) -> _Parsed:
+    """The cells in a temporary columnar file, written in pieces of bounded size."""
+    kept = spool.folder / "cells.arrow"
+
+    def write(frame: pl.LazyFrame) -> pl.LazyFrame:
+        batch = max(_FEWEST_BATCH_ROWS, _BATCH_CELLS // len(columns))
+        with roomy(spool.folder):
+            frame.sink_ipc(kept, record_batch_size=batch, compression="uncompressed")
+        return pl.scan_ipc(kept, glob=False)
+
+    frame, long_rows = _frame(source, layout, columns, write)
+    blank = pl.all_horizontal(pl.all().is_null())
+    last = pl.col(columns[-1]).is_null()
+    rows, blanks, short = (
+        frame.select(pl.len(), blank.sum().alias("b"), (last & ~blank).sum().alias("s")).collect().row(0)
+    )
+    remarks = (
+        [f"{blanks:,} blank line{'s were' if blanks > 1 else ' was'} left out."] if blanks and len(columns) > 1 else []
+    )
+    remarks += [f"{short:,} rows have no last cell: absent cells are missing readings."] if short else []
+    remarks += ["Some rows have more cells than the header: the extra cells were ignored."] if long_rows else []
+    if blanks and len(columns) > 1:
+        frame, rows = frame.filter(~blank), rows - blanks
+    return _Parsed(frame, rows, (), tuple(remarks))
+
+
+def _frame(
+    source: Path | bytes, layout: Layout, columns: Sequence[str], gather: Callable[[pl.LazyFrame], Frame]
+) -> tuple[Frame, bool]:
+    """The cells as `gather` gathers them, and whether a row has more of them than the header."""
     words = set(range(len(columns)) if _ends_in_quote(source) else layout.words)
     for _ in range(_TRIES):
         try:
-            return _scan(source, layout, columns, words).collect(), False
+            return gather(_scan(source, layout, columns, words)), False
         except _PARSE_ERRORS as error:
             refused = _REFUSED_COLUMN.search(str(error))
             if not refused or int(refused[1]) in words:
                 break
             words.add(int(refused[1]))
-    return _all_as_text(source, layout, columns)
+    return _all_as_text(source, layout, columns, gather)
 
 
 def _ends_in_quote(source: Path | bytes) -> bool:
@@ -105,13 +164,15 @@ def _ends_in_quote(source: Path | bytes) -> bool:
         return file.read().rstrip(b"\r").endswith(b'"')
 
 
-def _all_as_text(source: Path | bytes, layout: Layout, columns: Sequence[str]) -> tuple[pl.DataFrame, bool]:
+def _all_as_text(
+    source: Path | bytes, layout: Layout, columns: Sequence[str], gather: Callable[[pl.LazyFrame], Frame]
+) -> tuple[Frame, bool]:
     """Every cell as text, and whether a row has more cells than the header."""
     every = range(len(columns))
     try:
-        return _scan(source, layout, columns, every).collect(), False
+        return gather(_scan(source, layout, columns, every)), False
     except _PARSE_ERRORS:
-        return _scan(source, layout, columns, every, ragged=True).collect(), True
+        return gather(_scan(source, layout, columns, every, ragged=True)), True
 
 
 def _scan(
@@ -137,7 +198,7 @@ def _scan(
     )
 
 
-def _without_other_rows(frame: pl.DataFrame, source: Path | bytes, layout: Layout) -> _Parsed:
+def _without_other_rows(frame: pl.DataFrame, source: Path | bytes, layout: Layout) -> tuple[pl.DataFrame, _Remarked]:
     """The frame without blank lines, comments and footers."""
     widths = row_widths(text_lines(source), layout, len(frame))
     left_out = widths.left_out()
@@ -145,21 +206,18 @@ def _without_other_rows(frame: pl.DataFrame, source: Path | bytes, layout: Layou
         frame = frame.filter(pl.Series(~left_out))
     count = int(widths.footers.sum())
     words = [f"{count} footer line{'s' if count > 1 else ''}"] if count else []
-    return _Parsed(frame, tuple(words), tuple(widths.remarks()))
+    return frame, _Remarked(tuple(words), tuple(widths.remarks()))
 
 
-def _without_sums(parsed: _Parsed) -> _Parsed:
+def _without_sums(frame: pl.DataFrame, said: _Remarked) -> _Parsed:
     """The frame without last rows that sum up the ones above, which are no readings."""
-    first = parsed.frame.to_series(0)
-    if first.dtype != pl.String or parsed.frame.width == 1:
-        return parsed
-    sums = last_rows_sum_up(first)
-    if not sums.any():
-        return parsed
-    named = ", ".join(repr(cell.strip()) for cell in first.filter(pl.Series(sums)).head(3))
-    count = int(np.count_nonzero(sums))
-    remark = f"{count} last row{'s' if count > 1 else ''} ({named}) sum up the others: left out."
-    return replace(parsed, frame=parsed.frame.filter(pl.Series(~sums)), remarks=(*parsed.remarks, remark))
+    first = frame.to_series(0)
+    if first.dtype == pl.String and frame.width > 1 and (sums := last_rows_sum_up(first)).any():
+        named = ", ".join(repr(visible(cell)) for cell in first.filter(pl.Series(sums)).head(3))
+        count = int(np.count_nonzero(sums))
+        remark = f"{count} last row{'s' if count > 1 else ''} ({named}) sum up the others: left out."
+        frame, said = frame.filter(pl.Series(~sums)), replace(said, remarks=(*said.remarks, remark))
+    return _Parsed(frame.lazy(), len(frame), said.words, said.remarks)
 
 
 def _layout_remarks(layout: Layout) -> Iterator[str]:

@@ -1,0 +1,37 @@
+"""What the reading libraries raise about a file, as one sentence."""
+
+import csv
+import zlib
+from collections.abc import Iterator
+from contextlib import contextmanager
+from pathlib import Path
+
+import polars as pl
+
+from screener.errors import TableError
+from screener.tables.formats import Kind
+from screener.tables.names import visible
+
+
+@contextmanager
+def readable(path: Path, what: str) -> Iterator[None]:
+    """Turns what the reading libraries raise about a file into one sentence.
+
+    Raises:
+        TableError: something inside could not read the file.
+    """
+    try:
+        yield
+    except (EOFError, zlib.error) as error:
+        raise TableError(f"Couldn't read {str(path)!r}: the file is damaged or cut off.") from error
+    except (OSError, csv.Error, pl.exceptions.PolarsError, pl.exceptions.PanicException) as error:
+        raise TableError(f"Couldn't read {str(path)!r} as {what}: {_said(error, what)}") from error
+
+
+def _said(error: BaseException, what: str) -> str:
+    if what.startswith(Kind.NDJSON) and not isinstance(error, OSError):
+        return "every line must be one JSON object, and its values numbers, texts or null."
+    first_line = visible((str(error).strip() or type(error).__name__).splitlines()[0])[:200].rstrip(".")
+    if '`"' in first_line:
+        return "a quotation mark is not closed. Mend the line or remove the mark."
+    return f"{first_line}. The file may be damaged or cut off; write it again."
