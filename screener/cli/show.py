@@ -11,17 +11,23 @@ from typing import TYPE_CHECKING, Any
 import click
 
 from screener.cli.options import TABLE_OR_RUN, plan_options
+from screener.ui.views import View
 
 if TYPE_CHECKING:
     from screener.runs import RunFile
+    from screener.ui.drawing import Drawing
 
 Row = dict[str, Any]
+VIEWS = [view.value.replace(" ", "-") for view in View]
 
 
 @click.command()
 @TABLE_OR_RUN
 @click.argument("channel")
 @click.option("--against", metavar="FAMILY", help="Family of the plot.  [default: the one held against]")
+@click.option(
+    "--view", type=click.Choice(VIEWS), multiple=True, help="Plot to print; may be repeated.  [default: quantile]"
+)
 @click.option("--width", type=click.IntRange(20, 1000), help="Cells across.  [default: the terminal's, at most 100]")
 @click.option("--height", type=click.IntRange(6, 500), default=22, show_default=True, help="Lines of the plot.")
 @click.option("--ascii", "plain", is_flag=True, help="Draw with ASCII characters only.")
@@ -43,8 +49,11 @@ def command(ctx: click.Context, /, path: Path, channel: str, **given: Any) -> No
         row = next(results.filter(results["position"] == position).iter_rows(named=True), None)
         parts = [_numbers(run, position, row)]
         if row is not None and row["n"]:
-            fits = [fit for fit in run.fits(position).iter_rows(named=True) if fit["r"] is not None or fit["note"]]
-            parts += [_families(fits), _plot(run, position, row["n"], against or run.plan.family, given)]
+            drawings = [
+                _drawn(run, position, row["n"], against or row["family"], View(view.replace("-", " ")), given)
+                for view in given["view"] or VIEWS[:1]
+            ]
+            parts += [_families(drawings[0]), *(part for one in drawings for part in ([_heading(one)], one.lines))]
         put(line.rstrip() for line in _apart(parts))
         ctx.exit(exit_code(run, results))
 
@@ -89,15 +98,24 @@ def _numbers(run: "RunFile", position: int, row: Row | None) -> list[str]:
     ]
 
 
-def _families(fits: Sequence[Row]) -> list[str]:
-    """A line for every family."""
+def _heading(drawn: "Drawing") -> str:
+    """What the plot below shows."""
+    return f"{drawn.wanted.view}: {drawn.wanted.view.meaning}"
+
+
+def _families(drawn: "Drawing") -> list[str]:
+    """A line for every family, and which come closest."""
     from screener.cli.report import aligned
 
+    fits = [fit for fit in drawn.fits if fit["r"] is not None or fit["note"]]
     if not fits:
         return []
-    lines = aligned(("family", "r", "critical r", "p", "location", "scale"), [_family_cells(fit) for fit in fits])
+    head = ("family", "r", "critical r", "p", "location", "scale", "shapes")
+    lines = aligned(head, [_family_cells(fit) for fit in fits])
     notes = [fit["note"] or "" for fit in fits]
     lines = [lines[0], *(f"{line}  {note}" for line, note in zip(lines[1:], notes, strict=True))]
+    if drawn.closest:
+        lines.append(drawn.closest)
     lines.append("location and scale of a family on the log axis are those of ln x")
     if any(fit["extrapolated"] for fit in fits):
         lines.append("* beyond what was simulated: from the fitted tail")
@@ -105,10 +123,11 @@ def _families(fits: Sequence[Row]) -> list[str]:
 
 
 def _family_cells(fit: Row) -> tuple[str, ...]:
+    from screener.ui.drawing import shapes
     from screener.ui.numbers import p_text, r_text, reading_text
 
     if fit["r"] is None:
-        return (fit["family"], *"-----")
+        return (fit["family"], *"-----", "")
     return (
         fit["family"],
         r_text(fit["r"]),
@@ -116,16 +135,17 @@ def _family_cells(fit: Row) -> tuple[str, ...]:
         p_text(fit["p"]) + ("*" if fit["extrapolated"] else " "),
         reading_text(fit["location"]),
         reading_text(fit["scale"]),
+        ", ".join(f"{value:.4g}" for value in shapes(fit)),
     )
 
 
-def _plot(run: "RunFile", position: int, n: int, family: str, given: dict[str, Any]) -> list[str]:
+def _drawn(run: "RunFile", position: int, n: int, family: str, view: View, given: dict[str, Any]) -> "Drawing":
     from screener.plots import Charset
     from screener.ui.drawing import Wanted, drawing
 
-    wanted = Wanted(position, n, family, given["width"] or _width(), given["height"])
+    wanted = Wanted(position, n, family, given["width"] or _width(), given["height"], view)
     charset = Charset.ASCII if given["plain"] or not _draws_unicode() else Charset.UNICODE
-    return list(drawing(run, run.facts, run.plan, wanted, charset=charset).lines)
+    return drawing(run, run.facts, run.plan, wanted, charset=charset)
 
 
 def _apart(parts: Sequence[Sequence[str]]) -> list[str]:

@@ -5,10 +5,19 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
+from screener.ui.views import View
+
 if TYPE_CHECKING:
-    from screener.plots import Charset
+    from collections.abc import Sequence
+
+    from screener.plots import Charset, QuantileView
     from screener.records import Plan, TableFacts
     from screener.runs import RunFile
+
+
+OF_ROWS = {View.RUN_ORDER, View.LAG, View.HISTOGRAM}
+"""Views that are not held against a family."""
+TAILS = {View.LOW_TAIL, View.HIGH_TAIL}
 
 
 @dataclass(frozen=True, slots=True)
@@ -20,6 +29,7 @@ class Wanted:
     family: str
     width: int
     height: int
+    view: View = View.QUANTILE
 
 
 @dataclass(frozen=True, slots=True)
@@ -34,6 +44,10 @@ class Drawing:
     fit: dict[str, Any]
     """The row of FIT_COLUMNS of the wanted family; empty when the channel has none."""
     lines: tuple[str, ...]
+    fits: tuple[dict[str, Any], ...] = ()
+    """All rows of FIT_COLUMNS of the channel."""
+    closest: str = ""
+    """What the families' p say of those that come closest, in a sentence."""
 
     @property
     def place(self) -> int:
@@ -43,17 +57,62 @@ class Drawing:
 
 def drawing(run: RunFile, facts: TableFacts, plan: Plan, wanted: Wanted, *, charset: Charset) -> Drawing:
     """The channel's plot against the wanted family, from what the run file keeps."""
-    from screener.plots import quantile_plot, quantile_view
-
     channel = facts.channels[wanted.position]
     fits = run.fits(wanted.position).to_dicts()
     fit = next((fit for fit in fits if fit["family"] == wanted.family), {})
+    if wanted.view in OF_ROWS:
+        lines = _row_plot(run, facts, wanted, charset)
+    else:
+        lines = _quantile_plot(run, plan, wanted, fit, charset)
+    families = tuple(str(fit["family"]) for fit in fits)
+    said = closest_words(fits, plan.alpha, wanted.n)
+    return Drawing(wanted, channel.name, channel.unit, families, fit, tuple(lines), tuple(fits), said)
+
+
+def view_of(run: RunFile, plan: Plan, wanted: Wanted, fit: dict[str, Any]) -> QuantileView:
+    """What the quantile plot of the channel shows, in the wanted view."""
+    from screener.plots import difference_of, quantile_view, tail_of
+
     location, scale = (float("nan") if fit.get(name) is None else fit[name] for name in ("location", "scale"))
     points = run.points(wanted.position)
     view = quantile_view(points, wanted.n, wanted.family, plan.positions, location, scale, shapes(fit))
-    lines = quantile_plot(view, width=wanted.width, height=wanted.height, charset=charset)
-    families = tuple(str(fit["family"]) for fit in fits)
-    return Drawing(wanted, channel.name, channel.unit, families, fit, tuple(lines))
+    if wanted.view is View.DIFFERENCE:
+        return difference_of(view)
+    return tail_of(view, upper=wanted.view is View.HIGH_TAIL) if wanted.view in TAILS else view
+
+
+def closest_words(fits: Sequence[dict[str, Any]], alpha: float, n: int) -> str:
+    """Which families come closest, in a sentence; empty where nothing was fitted."""
+    import numpy as np
+
+    from screener.stats.closest import comparison
+    from screener.stats.families import family_named
+
+    if all(fit["p"] is None for fit in fits):
+        return ""
+    p = np.array([np.nan if fit["p"] is None else fit["p"] for fit in fits])
+    return comparison(p, [family_named(fit["family"]) for fit in fits], alpha, n)
+
+
+def _quantile_plot(run: RunFile, plan: Plan, wanted: Wanted, fit: dict[str, Any], charset: Charset) -> list[str]:
+    from screener.plots import quantile_plot
+
+    view = view_of(run, plan, wanted, fit)
+    return quantile_plot(view, width=wanted.width, height=wanted.height, charset=charset)
+
+
+def _row_plot(run: RunFile, facts: TableFacts, wanted: Wanted, charset: Charset) -> list[str]:
+    from screener.plots import histogram_plot, lag_plot, run_order_plot
+    from screener.stats.row_order import row_order
+
+    size: dict[str, Any] = {"width": wanted.width, "height": wanted.height, "charset": charset}
+    unit = facts.channels[wanted.position].unit
+    unit = f" [{unit}]" if unit.isascii() and unit else ""
+    if wanted.view is View.HISTOGRAM:
+        return histogram_plot(run.points(wanted.position), wanted.n, unit, **size)
+    kept = run.in_order(wanted.position)
+    order = row_order(kept, facts.rows) if kept.size else None
+    return (run_order_plot if wanted.view is View.RUN_ORDER else lag_plot)(order, unit, **size)
 
 
 def shapes(fit: dict[str, Any]) -> tuple[float, ...]:

@@ -141,6 +141,29 @@ def test_show_draws_against_another_family_in_ascii_and_at_the_size_asked_for(ru
     assert max(map(len, plot)) <= 60
 
 
+@pytest.mark.parametrize(
+    ("view", "label"),
+    [
+        ("difference", "actual minus expected"),
+        ("low-tail", "expected if normal"),
+        ("high-tail", "expected if normal"),
+        ("run-order", "row"),
+        ("lag", "reading in the row before"),
+        ("histogram", "readings"),
+    ],
+)
+def test_show_prints_every_view_of_a_channel(run_file: Path, view: str, label: str) -> None:
+    outcome = screener("show", run_file, "wait", "--view", view)
+    assert outcome.code == 0
+    assert label in outcome.out.rsplit("\n\n", 1)[1]
+    assert f"{view.replace('-', ' ')}: " in outcome.out
+
+
+def test_show_says_which_families_come_closest(run_file: Path) -> None:
+    assert "closest" in screener("show", run_file, "wait").out
+    assert "cannot be told apart at n = 200" in screener("show", run_file, "level_1").out
+
+
 def test_show_says_why_a_channel_is_not_scored() -> None:
     Path("t.csv").write_text("a,b\n1,inf\n2,1\n3.3,inf\n")
     outcome = screener("show", "t.csv", "b")

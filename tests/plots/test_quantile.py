@@ -8,7 +8,7 @@ import pytest
 from numpy.typing import NDArray
 from scipy import stats
 
-from screener.plots import Charset, QuantileView, quantile_plot, quantile_view
+from screener.plots import Charset, QuantileView, difference_of, quantile_plot, quantile_view, tail_of
 from screener.stats.points import kept_ranks
 
 FloatArray = NDArray[np.float64]
@@ -152,3 +152,42 @@ def test_plots_drawn_at_the_same_time_are_those_drawn_one_after_another() -> Non
 def test_a_view_made_by_hand_is_drawn() -> None:
     view = QuantileView(np.array([1.0, 2.0]), np.array([1.1, 1.9]), "actual", "expected")
     assert any("•" in line for line in quantile_plot(view, width=30, height=10, charset=Charset.UNICODE))
+
+
+def view_of_normal(n: int = 300) -> QuantileView:
+    readings = np.sort(np.random.default_rng(n).normal(5.0, 2.0, n))
+    return quantile_view(readings, n, "normal", "filliben", 5.0, 2.0)
+
+
+def test_the_difference_is_actual_minus_expected_and_its_line_is_level() -> None:
+    view = view_of_normal()
+    difference = difference_of(view)
+    np.testing.assert_allclose(difference.actual, view.actual - view.expected)
+    assert difference.low is not None
+    assert view.low is not None
+    np.testing.assert_allclose(difference.low + view.expected, view.low)
+    lines = quantile_plot(difference, width=60, height=20, charset=Charset.ASCII)
+    assert lines[0].startswith("actual minus expected")
+    assert max(line.count(".") for line in lines) > 25
+
+
+@pytest.mark.parametrize("upper", [True, False])
+def test_a_tail_is_shown_to_its_last_reading(*, upper: bool) -> None:
+    view = view_of_normal()
+    tail = tail_of(view, upper=upper)
+    assert 8 <= tail.actual.size < 100
+    assert tail.actual[-1 if upper else 0] == view.actual[-1 if upper else 0]
+    assert tail.low is not None
+    assert tail.low.size == tail.actual.size
+
+
+def test_families_without_a_band_are_drawn_without() -> None:
+    readings = np.sort(np.random.default_rng(1).exponential(size=50))
+    assert quantile_view(readings, 50, "exponential", "filliben", 0.0, 1.0).low is None
+
+
+def test_the_band_is_drawn_on_both_sides_of_the_line() -> None:
+    lines = quantile_plot(difference_of(view_of_normal()), width=60, height=20, charset=Charset.ASCII)
+    level = next(k for k, line in enumerate(lines) if line.count(".") > 25)
+    assert sum(line.count(":") for line in lines[:level]) > 10
+    assert sum(line.count(":") for line in lines[level + 1 :]) > 10
