@@ -69,7 +69,7 @@ def _path(task: Task, folder: Path) -> Path:
 def _stored(task: Task, folder: Path) -> Arrays | None:
     """A finished part; a damaged one counts as missing."""
     try:
-        with np.load(_path(task, folder)) as arrays:
+        with _path(task, folder).open("rb") as stream, np.load(stream) as arrays:
             return dict(arrays)
     except (OSError, ValueError, EOFError, zipfile.BadZipFile):
         return None

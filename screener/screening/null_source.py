@@ -30,7 +30,12 @@ def built_path(rule: str) -> Path:
 
 
 def nulls_for(
-    rule: str, largest: int, jobs: int, cancelled: Callable[[], bool] = lambda: False
+    rule: str,
+    largest: int,
+    jobs: int,
+    cancelled: Callable[[], bool] = lambda: False,
+    *,
+    share: float = SHARE_ON_DEMAND,
 ) -> Generator[NullsPrepared, None, Nulls | None]:
     """Prepare the nulls of a rule for channels of up to `largest` readings; nothing when cancelled.
 
@@ -40,7 +45,7 @@ def nulls_for(
     if held is not None:
         return held
     key = rule_key(rule)
-    wanted = tasks(key, SEED, SHARE_ON_DEMAND, largest)
+    wanted = tasks(key, SEED, share, largest)
     for part in build(wanted, null_folder() / "parts", jobs):
         yield NullsPrepared(key, part.work_done)
         if cancelled():
@@ -54,7 +59,7 @@ def held_nulls(rule: str) -> Nulls | None:
     if key == DEFAULT_RULE:
         return shipped_nulls()
     try:
-        with np.load(built_path(key)) as arrays:
+        with built_path(key).open("rb") as stream, np.load(stream) as arrays:
             nulls = unpacked(dict(arrays))
     except (OSError, ValueError, KeyError, EOFError, zipfile.BadZipFile):
         return None

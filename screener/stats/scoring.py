@@ -45,23 +45,40 @@ def score(readings: FloatArray, families: Sequence[Family], nulls: Nulls, alpha:
     """Score readings, float64[C, rows], which are sorted in place."""
     in_order = kept_in_order(readings)
     n = sort_in_place(readings)
-    reasons = tuple(_reason(channel, int(count)) for channel, count in zip(readings, n, strict=True))
-    scored = np.array([not reason for reason in reasons], dtype=np.bool_)
+    scored = _scorable(readings, n)
+    reasons = [""] * n.size
+    for channel in np.flatnonzero(~scored):
+        reasons[channel] = _reason(readings[channel], int(n[channel]))
     fits = fit_families(readings, np.where(scored, n, 0), families, nulls.rule)
     critical, p, extrapolated = _against_null(fits, n, families, nulls, alpha)
-    points = tuple(channel[kept_ranks(int(count))].copy() for channel, count in zip(readings, n, strict=True))
-    return Scoring(n, readings.shape[1] - n, reasons, fits, critical, p, extrapolated, points, in_order)
+    return Scoring(
+        n, readings.shape[1] - n, tuple(reasons), fits, critical, p, extrapolated, _kept(readings, n), in_order
+    )
+
+
+def _scorable(ordered: FloatArray, n: NDArray[np.int64]) -> NDArray[np.bool_]:
+    """Which channels of sorted readings have enough of them, and spread."""
+    each = np.arange(n.size)
+    return np.asarray((n >= FEWEST) & (ordered[each, 0] < ordered[each, np.maximum(n - 1, 0)]), dtype=np.bool_)
+
+
+def _kept(ordered: FloatArray, n: NDArray[np.int64]) -> tuple[FloatArray, ...]:
+    """The sorted readings of each channel that its plots need."""
+    kept: list[FloatArray] = [np.empty(0)] * n.size
+    for size in np.unique(n):
+        rows = np.flatnonzero(n == size)
+        for row, readings in zip(rows, ordered[np.ix_(rows, kept_ranks(int(size)))], strict=True):
+            kept[row] = readings
+    return tuple(kept)
 
 
 def _reason(ordered: FloatArray, n: int) -> str:
-    """Why sorted readings cannot be scored; empty when they can."""
+    """Why sorted readings cannot be scored."""
     if n == 0:
         return "no finite reading"
     if n < FEWEST:
         return f"too few readings: {n}, at least {FEWEST} are needed"
-    if ordered[0] == ordered[n - 1]:
-        return f"constant: all {n} readings are {ordered[0]:g}"
-    return ""
+    return f"constant: all {n} readings are {ordered[0]:g}"
 
 
 def _against_null(

@@ -167,7 +167,10 @@ def _maximum(r: FloatArray, at: IntArray) -> FloatArray:
         fine[off_grid if fine.ndim == 2 else _lines(off_grid, axis, fine)] = -1.0
     best = np.stack(np.unravel_index(np.argmax(fine.reshape(at.shape[0], -1), axis=1), fine.shape[1:]), axis=1)
     step = _towards_vertex(fine, best) * (OFFSETS[1] - OFFSETS[0])
-    return np.asarray(np.clip(np.take_along_axis(places, best[:, :, None], axis=2)[:, :, 0] + step, 0.0, counts - 1.0), dtype=np.float64)
+    return np.asarray(
+        np.clip(np.take_along_axis(places, best[:, :, None], axis=2)[:, :, 0] + step, 0.0, counts - 1.0),
+        dtype=np.float64,
+    )
 
 
 def _lines(off_grid: NDArray[np.bool_], axis: int, fine: FloatArray) -> NDArray[np.bool_]:
