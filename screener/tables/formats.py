@@ -2,6 +2,7 @@
 
 import gzip
 import json
+import zipfile
 import zlib
 from collections.abc import Mapping
 from dataclasses import dataclass
@@ -18,7 +19,10 @@ T = TypeVar("T")
 _HEAD_BYTES = 65_536
 _CONTROL_SHARE = 0.05
 _ZERO_SHARE = 0.4
-_KNOWN = "Known formats: CSV and TSV (also .gz and .zst), Parquet, Arrow IPC, newline-delimited JSON"
+_KNOWN = (
+    "Known formats: CSV and TSV (also .gz and .zst), Parquet, Arrow IPC, newline-delimited JSON, and with extras "
+    "spreadsheets, HDF5, MATLAB, TDMS and MDF"
+)
 
 
 class Kind(StrEnum):
@@ -29,6 +33,11 @@ class Kind(StrEnum):
     IPC = "Arrow IPC"
     IPC_STREAM = "Arrow IPC stream"
     NDJSON = "newline-delimited JSON"
+    SPREADSHEET = "spreadsheet"
+    HDF5 = "HDF5"
+    MATLAB = "MATLAB"
+    TDMS = "TDMS"
+    MDF = "MDF"
 
 
 class Packing(StrEnum):
@@ -54,13 +63,18 @@ class Recognised:
 
 _PACKINGS = {b"\x1f\x8b": Packing.GZIP, b"\x28\xb5\x2f\xfd": Packing.ZSTD}
 _COLUMNAR = {b"PAR1": Kind.PARQUET, b"ARROW1": Kind.IPC, b"\xff\xff\xff\xff": Kind.IPC_STREAM}
+_INSTRUMENTS = {
+    b"\xd0\xcf\x11\xe0\xa1\xb1\x1a\xe1": Kind.SPREADSHEET,
+    b"\x89HDF\r\n\x1a\n": Kind.HDF5,
+    b"MATLAB 7.3": Kind.HDF5,
+    b"MATLAB": Kind.MATLAB,
+    b"TDSm": Kind.TDMS,
+    b"MDF ": Kind.MDF,
+}
+"""What only an extra reads."""
 _FOREIGN = {
-    b"PK\x03\x04": "a spreadsheet or zip archive",
-    b"\xd0\xcf\x11\xe0": "an old spreadsheet",
-    b"\x89HDF": "an HDF5 file",
-    b"MATLAB": "a MATLAB file",
-    b"TDSm": "a TDMS file",
-    b"MDF ": "an MDF file",
+    b"PK\x03\x04": "a zip archive but no spreadsheet",
+    b"\x89HDF": "a damaged HDF5 file",
     b"SQLite format 3": "a run file or another SQLite database",
     b"%PDF": "a PDF document",
     b"FEA1": "a Feather file of version 1",
@@ -80,7 +94,9 @@ def recognise(path: Path) -> Recognised:
         raise TableError(f"Couldn't read {str(path)!r}: the file is empty.")
     packing = _starting(head, _PACKINGS) or Packing.NONE
     inner = _unpacked_head(path, packing) if packing else head
-    columnar = _starting(inner, _COLUMNAR)
+    columnar = _starting(inner, _COLUMNAR) or _starting(inner, _INSTRUMENTS)
+    if not columnar and not packing and _is_spreadsheet(path, head):
+        columnar = Kind.SPREADSHEET
     if columnar and packing:
         raise TableError(f"Couldn't read {str(path)!r}: it is a {columnar} file inside {packing}. Unpack it first.")
     if columnar:
@@ -170,6 +186,15 @@ def _is_object(line: bytes) -> bool:
         return isinstance(json.loads(line), dict)
     except ValueError:
         return False
+
+
+def _is_spreadsheet(path: Path, head: bytes) -> bool:
+    """Whether a zip archive holds what spreadsheets hold."""
+    if not head.startswith(b"PK\x03\x04") or not zipfile.is_zipfile(path):
+        return False
+    with zipfile.ZipFile(path) as archive:
+        held = set(archive.namelist())
+    return bool(held & {"xl/workbook.xml", "xl/workbook.bin", "content.xml"})
 
 
 def _starting(head: bytes, magics: Mapping[bytes, T]) -> T | None:

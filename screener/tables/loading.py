@@ -13,13 +13,15 @@ from screener.records import Plan
 from screener.tables.failures import readable
 from screener.tables.fingerprint import fingerprint
 from screener.tables.formats import Kind, Recognised, recognise
+from screener.tables.instruments import read_hdf5, read_matlab, read_mdf, read_tdms
 from screener.tables.raw import RawTable
 from screener.tables.shapes import as_columns
 from screener.tables.spool import Spool
 from screener.tables.stored import read_frame, read_stored
-from screener.tables.text import read_text
+from screener.tables.text import read_sheet, read_text
 
 _CHUNK_BYTES = 1 << 20
+_INSTRUMENT_READERS = {Kind.HDF5: read_hdf5, Kind.MATLAB: read_matlab, Kind.TDMS: read_tdms, Kind.MDF: read_mdf}
 
 
 @dataclass(frozen=True, slots=True)
@@ -97,6 +99,10 @@ def _whole_lines(path: Path, size: int) -> Iterator[bytes]:
 def _read(path: Path, recognised: Recognised, plan: Plan, held_bytes: int) -> RawTable:
     if recognised.kind is Kind.TEXT:
         return read_text(path, recognised, plan, held_bytes=held_bytes)
+    if recognised.kind is Kind.SPREADSHEET:
+        return read_sheet(path, recognised, plan)
+    if reader := _INSTRUMENT_READERS.get(recognised.kind):
+        return reader(path, plan.part, held_bytes)
     return read_stored(path, recognised, held_bytes=held_bytes)
 
 

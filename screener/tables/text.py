@@ -13,7 +13,7 @@ import polars as pl
 from screener.errors import TableError
 from screener.records import Plan
 from screener.tables.cells import is_blank, is_number
-from screener.tables.encoding import Text, blanks_as_tabs, in_memory, text_lines, text_size, utf8_text
+from screener.tables.encoding import HEAD_LINES, Text, blanks_as_tabs, in_memory, text_lines, text_size, utf8_text
 from screener.tables.formats import Recognised
 from screener.tables.head import SEPARATORS, head_rows
 from screener.tables.layout import Layout, layout_of
@@ -22,6 +22,7 @@ from screener.tables.ragged import last_rows_sum_up, row_widths
 from screener.tables.raw import RawTable
 from screener.tables.shapes import names_a_channel
 from screener.tables.spool import Spool, roomy
+from screener.tables.spreadsheet import sheet_as_text
 
 Frame = TypeVar("Frame", pl.DataFrame, pl.LazyFrame)
 _FEWEST_BATCH_ROWS = 256
@@ -58,6 +59,19 @@ def read_text(path: Path, recognised: Recognised, plan: Plan | None = None, *, h
     plan = plan or Plan()
     spool = Spool() if text_size(path, recognised.packing) > held_bytes else None
     text = utf8_text(path, recognised.packing, given=plan.encoding, keep=spool.keep if spool else in_memory)
+    return _read(path, recognised, plan, text, spool)
+
+
+def read_sheet(path: Path, recognised: Recognised, plan: Plan) -> RawTable:
+    """A sheet of a spreadsheet, read as the text table that it would be when saved as one."""
+    content, name, remarks = sheet_as_text(path, plan.part)
+    lines = content.decode().split("\n", HEAD_LINES)[:HEAD_LINES]
+    text = Text(content, lines, (f"sheet {visible(name)}",), remarks)
+    raw = _read(path, recognised, replace(plan, separator="\t", decimal=plan.decimal or "."), text, None)
+    return replace(raw, format=recognised.label, dialect=raw.dialect.removeprefix("tab, "))
+
+
+def _read(path: Path, recognised: Recognised, plan: Plan, text: Text, spool: Spool | None) -> RawTable:
     if not any(not is_blank(line) for line in text.head):
         raise TableError(f"Couldn't read {str(path)!r}: it begins with nothing but blank lines.")
     prefer_tab = bool(_TAB_SUFFIXES & {suffix.lower() for suffix in path.suffixes})
