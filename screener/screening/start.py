@@ -2,6 +2,7 @@
 
 import os
 from collections.abc import Callable, Iterator
+from concurrent.futures import Executor
 from pathlib import Path
 
 from platformdirs import user_state_path
@@ -13,9 +14,10 @@ from screener.runs import RunFile, default_run_path, is_run_file
 from screener.screening.null_source import nulls_for
 from screener.screening.screen import held_against, screen
 from screener.screening.workers import thread_workers
+from screener.stats.correlation import table_ahead
 from screener.stats.null.packing import NULL_VERSION
 from screener.stats.positions import rule_key
-from screener.tables import open_table, spans
+from screener.tables import Table, open_table, spans
 
 
 def start(
@@ -31,8 +33,16 @@ def start(
     An event is yielded when the run file already holds it.
     """
     check_plan(plan)
-    table = open_table(table_path, plan)
-    with run_for(table.facts, plan, run_path) as run, thread_workers(jobs) as executor:
+    with thread_workers(jobs) as executor:
+        executor.submit(table_ahead)
+        table = open_table(table_path, plan)
+        yield from _scored(table, plan, run_path, executor, jobs, cancelled)
+
+
+def _scored(
+    table: Table, plan: Plan, run_path: Path | None, executor: Executor, jobs: int, cancelled: Callable[[], bool]
+) -> Iterator[Event]:
+    with run_for(table.facts, plan, run_path) as run:
         done = run.done()
         yield TableOpened(table.facts, plan, run.path, sum(span.stop - span.first for span in done))
         nulls = yield from nulls_for(plan.positions, table.facts.rows, jobs, cancelled)
