@@ -18,7 +18,7 @@ if TYPE_CHECKING:
     from screener.ui.drawing import Drawing
 
 Row = dict[str, Any]
-VIEWS = [view.value.replace(" ", "-") for view in View]
+VIEWS = [view.value.replace(" ", "-") for view in View if view is not View.FAMILIES]
 
 
 @click.command()
@@ -47,7 +47,7 @@ def command(ctx: click.Context, /, path: Path, channel: str, **given: Any) -> No
         position = _position(run, channel)
         results = run.results()
         row = next(results.filter(results["position"] == position).iter_rows(named=True), None)
-        parts = [_numbers(run, position, row)]
+        parts: list[Sequence[str]] = [_numbers(run, position, row)]
         if row is not None and row["n"]:
             drawings = [
                 _drawn(run, position, row["n"], against or row["family"], View(view.replace("-", " ")), given)
@@ -123,7 +123,7 @@ def _families(drawn: "Drawing") -> list[str]:
 
 
 def _family_cells(fit: Row) -> tuple[str, ...]:
-    from screener.ui.drawing import shapes
+    from screener.ui.families import shapes
     from screener.ui.numbers import p_text, r_text, reading_text
 
     if fit["r"] is None:

@@ -51,7 +51,7 @@ def read_results(connection: sqlite3.Connection, plan: Plan) -> pl.DataFrame:
     stored = _frame(connection.execute(_RESULTS).fetchall(), _RESULT_FIELDS)
     named = stored.with_columns(pl.col("family").fill_null(plan.family))
     judged = _judged(named.with_columns(reason=_reason()), plan)
-    judged = _decided(judged, read_decisions(connection))
+    judged = judged.join(read_decided(connection), on="position", how="left", maintain_order="left")
     absent = [pl.lit(None, DTYPES[kind]).alias(name) for name, kind in RESULT_COLUMNS.items() if name not in judged]
     return judged.with_columns(absent).select("position", *RESULT_COLUMNS)
 
@@ -72,6 +72,12 @@ def read_in_order(connection: sqlite3.Connection, position: int) -> FloatArray:
     """The readings kept of one channel in row order; empty when there are none."""
     row = connection.execute("SELECT readings FROM readings_in_order WHERE position = ?", (position,)).fetchone()
     return unpacked(row[0]) if row else np.empty(0)
+
+
+def read_decided(connection: sqlite3.Connection) -> pl.DataFrame:
+    """One row per channel that has a decision or a note: `position`, `decision`, `note`."""
+    rows = [(position, *words) for position, words in read_decisions(connection).items()]
+    return _frame(rows, {"position": int, "decision": str, "note": str})
 
 
 def read_strips(connection: sqlite3.Connection) -> pl.DataFrame:
@@ -105,13 +111,6 @@ def _judged(stored: pl.DataFrame, plan: Plan) -> pl.DataFrame:
         q=pl.Series(adjusted_p(tested), dtype=pl.Float64).fill_nan(None),
         departure_size=unexplained.sqrt(),
     ).with_columns(verdict=pl.when(scored).then(judged).otherwise(pl.lit(str(Verdict.NOT_SCORED))))
-
-
-def _decided(judged: pl.DataFrame, held: Mapping[int, tuple[str | None, str | None]]) -> pl.DataFrame:
-    """With what people decided and noted."""
-    rows = [(position, *words) for position, words in held.items()]
-    decided = _frame(rows, {"position": int, "decision": str, "note": str})
-    return judged.join(decided, on="position", how="left", maintain_order="left")
 
 
 def _frame(rows: Sequence[tuple[object, ...]], fields: Mapping[str, type]) -> pl.DataFrame:

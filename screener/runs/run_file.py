@@ -20,7 +20,7 @@ from screener.runs import decisions
 from screener.runs.facts import read_origin, store_origin
 from screener.runs.failures import explained, explained_content, refusal
 from screener.runs.migrations import migrated
-from screener.runs.results import read_fits, read_in_order, read_points, read_results, read_strips
+from screener.runs.results import read_decided, read_fits, read_in_order, read_points, read_results, read_strips
 from screener.runs.scores import store_failure, store_scores
 from screener.runs.view import read_view, store_view
 
@@ -129,6 +129,11 @@ class RunFile:
         """One row per channel scored: `position` and `strip`, digits from the low to the high tail."""
         with explained_content(self.path):
             return read_strips(self._connection)
+
+    def decisions(self) -> pl.DataFrame:
+        """One row per channel that has a decision or a note: `position`, `decision`, `note`."""
+        with explained_content(self.path):
+            return read_decided(self._connection)
 
     def decide(self, positions: Sequence[int], decision: Decision | None) -> None:
         """Keep what was decided about these channels, None to take back any decision; in one act."""

@@ -9,7 +9,7 @@ PLACES = 8
 """Steps from the low to the high tail."""
 LEVELS = 9
 """Sizes of departure told apart; the middle one is none."""
-NONE, LARGE = 0.04, 1.0
+NONE, LARGE = 0.1, 1.0
 """Departures in standard deviations: below the first nothing is drawn, from the second on nothing larger."""
 
 

@@ -101,6 +101,10 @@ class ScreenerApp(App[int]):
     def _block_lost(self, event: messages.BlockLost) -> None:
         self.main.block_lost(event)
 
+    @on(messages.Decided)
+    def _decided(self, event: messages.Decided) -> None:
+        self.main.decided(event)
+
     @on(messages.Exported)
     def _exported(self, event: messages.Exported) -> None:
         self.main.exported(event)

@@ -2,6 +2,9 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
+from typing import Any
+
 from screener.records import Control, Plan, TableFacts
 from screener.ui.columns import column_named
 from screener.ui.shown import shown
@@ -23,7 +26,24 @@ def order_words(sort: str | None, *, falling: bool) -> str:
     return f"sorted by {COLUMN_WORDS.get(sort, column_named(sort).title)}, {'falling' if falling else 'rising'}"
 
 
-def place_words(row: int, rows: int, *, flagged_only: bool) -> str:
-    """Where the cursor is."""
+def place_words(row: int, rows: int, *, flagged_only: bool, condition: str = "") -> str:
+    """Where the cursor is, among which rows."""
     kind = "flagged" if flagged_only else "channels"
-    return f"{row + 1:,} of {rows:,} {kind}" if rows else f"no {kind} yet"
+    where = f" where {shown(condition)}" if condition else ""
+    return f"{row + 1:,} of {rows:,} {kind}{where}" if rows else f"no {kind}{where or ' yet'}"
+
+
+def channel_words(channel: Mapping[str, Any] | None) -> str:
+    """What else is to be said of a channel: why it is not scored, what was decided, what was noted."""
+    if channel is None:
+        return ""
+    reason = f"   not scored: {shown(channel['reason'])}" if channel["reason"] else ""
+    decision = f"   {shown(channel['decision'])}" if channel["decision"] else ""
+    note = f'   "{shown(channel["note"])}"' if channel["note"] else ""
+    return reason + decision + note
+
+
+def decided_words(decision: str, count: int) -> str:
+    """What was just decided about how many channels."""
+    about = "1 channel" if count == 1 else f"{count:,} channels"
+    return f"{decision or 'decision taken back'}: {about} (z undoes)"

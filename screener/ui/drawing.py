@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import TYPE_CHECKING, Any
 
+from screener.ui.families import family_lines, shapes
 from screener.ui.views import View
 
 if TYPE_CHECKING:
@@ -60,12 +61,14 @@ def drawing(run: RunFile, facts: TableFacts, plan: Plan, wanted: Wanted, *, char
     channel = facts.channels[wanted.position]
     fits = run.fits(wanted.position).to_dicts()
     fit = next((fit for fit in fits if fit["family"] == wanted.family), {})
-    if wanted.view in OF_ROWS:
+    said = closest_words(fits, plan.alpha, wanted.n)
+    if wanted.view is View.FAMILIES:
+        lines = family_lines(fits, said, wanted.family, width=wanted.width, height=wanted.height)
+    elif wanted.view in OF_ROWS:
         lines = _row_plot(run, facts, wanted, charset)
     else:
         lines = _quantile_plot(run, plan, wanted, fit, charset)
     families = tuple(str(fit["family"]) for fit in fits)
-    said = closest_words(fits, plan.alpha, wanted.n)
     return Drawing(wanted, channel.name, channel.unit, families, fit, tuple(lines), tuple(fits), said)
 
 
@@ -113,8 +116,3 @@ def _row_plot(run: RunFile, facts: TableFacts, wanted: Wanted, charset: Charset)
     kept = run.in_order(wanted.position)
     order = row_order(kept, facts.rows) if kept.size else None
     return (run_order_plot if wanted.view is View.RUN_ORDER else lag_plot)(order, unit, **size)
-
-
-def shapes(fit: dict[str, Any]) -> tuple[float, ...]:
-    """The shape parameters of a fit, in the family's order; none for most families."""
-    return tuple(fit[name] for name in ("shape_1", "shape_2") if fit.get(name) is not None)

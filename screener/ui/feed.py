@@ -9,6 +9,7 @@ from __future__ import annotations
 import threading
 import time
 from collections.abc import Callable
+from contextlib import suppress
 from contextvars import copy_context
 from pathlib import Path
 from typing import TYPE_CHECKING
@@ -31,7 +32,12 @@ LEAST_PAUSE = 0.2
 SHARE_READING = 0.1
 """Largest share of the time spent on reading results while scoring."""
 
+KEEPING_PAUSE = 0.5
+"""Seconds between two times that the view is kept."""
+
 Post = Callable[[Message], object]
+Deed = Callable[["RunFile"], str]
+"""Changes the run file and says what it has done, or nothing."""
 
 
 class Feed:
@@ -79,6 +85,14 @@ class Feed:
     def export(self, rows: pl.DataFrame, path: Path) -> None:
         """Have the rows written to a file."""
         self._reader.export(rows, path)
+
+    def act(self, deed: Deed) -> None:
+        """Have something done to the run file."""
+        self._reader.act(deed)
+
+    def keep(self, view: dict[str, str]) -> None:
+        """Have the run file keep where the user is."""
+        self._reader.keep(view)
 
     def _thread(self, work: Callable[[], None]) -> threading.Thread:
         def guarded() -> None:
@@ -143,6 +157,9 @@ class Reader:
         self._exports: list[tuple[pl.DataFrame, Path]] = []
         self._changed = False
         self._results_due = 0.0
+        self._deeds: list[Deed] = []
+        self._view: dict[str, str] | None = None
+        self._view_due = 0.0
         self._stopped = False
 
     def open(self, path: Path, *, finished: bool) -> None:
@@ -161,6 +178,18 @@ class Reader:
         """Write these rows."""
         with self._wake:
             self._exports.append((rows, path))
+            self._wake.notify()
+
+    def act(self, deed: Deed) -> None:
+        """Do this, in turn."""
+        with self._wake:
+            self._deeds.append(deed)
+            self._wake.notify()
+
+    def keep(self, view: dict[str, str]) -> None:
+        """Keep this view when there is time; only the newest counts."""
+        with self._wake:
+            self._view = view
             self._wake.notify()
 
     def results_changed(self, *, last: bool) -> None:
@@ -185,10 +214,13 @@ class Reader:
             return
         from screener.runs import RunFile
 
-        with RunFile.open(path, read_only=True) as run:
-            self._post(messages.RunOpened(run.facts, run.plan, path, _done(run)))
+        with RunFile.open(path) as run:
+            self._post(messages.RunOpened(run.facts, run.plan, path, _done(run), run.view()))
             while not self._stopped:
                 self._serve(run)
+            while self._deeds:
+                self._do(run, self._deeds.pop(0))
+            self._keep(run)
 
     def _serve(self, run: RunFile) -> None:
         """Do the next task; without one, wait until something changes or results are due."""
@@ -196,24 +228,54 @@ class Reader:
             if not self._has_task():
                 self._wake.wait(self._pause())
             wanted, self._wanted = self._wanted, None
-            export = self._exports.pop(0) if wanted is None and self._exports else None
-            read = wanted is None and export is None and self._results_are_due()
+            deed = self._deeds.pop(0) if self._deeds else None
+            idle = wanted is None and deed is None
+            export = self._exports.pop(0) if idle and self._exports else None
+            read = idle and export is None and self._results_are_due()
             self._changed = self._changed and not read
+            keep = idle and export is None and not read and self._view_is_due()
+        if deed is not None:
+            self._do(run, deed)
         if wanted is not None:
             self._draw(run, wanted)
+        elif keep:
+            self._keep(run)
         elif export is not None:
             self._export(run, *export)
         elif read:
             self._read(run)
 
     def _has_task(self) -> bool:
-        return self._stopped or self._wanted is not None or bool(self._exports) or self._results_are_due()
+        asked = self._wanted is not None or bool(self._exports) or bool(self._deeds)
+        return self._stopped or asked or self._results_are_due() or self._view_is_due()
 
     def _results_are_due(self) -> bool:
         return self._changed and (self._finished or time.monotonic() >= self._results_due)
 
+    def _view_is_due(self) -> bool:
+        return self._view is not None and time.monotonic() >= self._view_due
+
     def _pause(self) -> float | None:
-        return max(0.0, self._results_due - time.monotonic()) if self._changed else None
+        """Seconds until something is due; None when nothing will be by itself."""
+        due = [self._results_due] if self._changed else []
+        due += [self._view_due] if self._view is not None else []
+        return max(0.0, min(due) - time.monotonic()) if due else None
+
+    def _do(self, run: RunFile, deed: Deed) -> None:
+        """Change the run file, and tell what is decided in it now."""
+        try:
+            said = deed(run)
+        except ScreenerError as error:
+            said = str(error)
+        self._post(messages.Decided(run.decisions(), said))
+
+    def _keep(self, run: RunFile) -> None:
+        """Keep the view; a run file that may not be written to is shown all the same."""
+        view, self._view = self._view, None
+        self._view_due = time.monotonic() + KEEPING_PAUSE
+        if view is not None:
+            with suppress(ScreenerError):
+                run.store_view(view)
 
     def _draw(self, run: RunFile, wanted: Wanted) -> None:
         from screener.plots import Charset
@@ -235,7 +297,7 @@ class Reader:
         from screener.runs import summarise
 
         began = time.monotonic()
-        results = run.results()
+        results = run.results().join(run.strips(), on="position", how="left", maintain_order="left")
         sentence = summarise(results, run.facts, run.plan).sentence()
         self._post(messages.ResultsRead(results, sentence))
         cost = time.monotonic() - began

@@ -25,6 +25,8 @@ class RunOpened(Message):
     plan: Plan
     run_path: Path
     channels_done: int
+    view: dict[str, str]
+    """Where the user was last time."""
 
 
 @dataclass
@@ -91,6 +93,15 @@ class ChannelDrawn(Message):
     def can_replace(self, message: Message) -> bool:
         """Only the newest counts."""
         return isinstance(message, ChannelDrawn)
+
+
+@dataclass
+class Decided(Message):
+    """Decisions or notes were kept, taken back, or could not be."""
+
+    decisions: pl.DataFrame
+    """All that hold now: position, decision, note."""
+    sentence: str
 
 
 @dataclass

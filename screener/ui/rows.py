@@ -2,12 +2,15 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 import polars as pl
 
-from screener.records import Verdict
+from screener.records import RESULT_COLUMNS, Verdict
+from screener.ui.conditions import matching
 
+WORDS = {name for name, kind in RESULT_COLUMNS.items() if kind is str}
 VERDICT_RANK = {Verdict.FLAGGED.value: 0, Verdict.NOT_SCORED.value: 1, Verdict.CLEAR.value: 2}
 
 
@@ -19,10 +22,17 @@ class Arrangement:
     """A column key; None for the order of the table."""
     falling: bool = False
     flagged_only: bool = False
+    condition: str = ""
+    """As `conditions.matching` takes it; empty for all rows."""
 
 
 def arranged(results: pl.DataFrame, arrangement: Arrangement) -> pl.DataFrame:
-    """The rows asked for; equal ones stay in table order, absent values come last either way."""
+    """The rows asked for; equal ones stay in table order, absent values come last either way.
+
+    Raises: ConditionError when the condition cannot be used.
+    """
+    if arrangement.condition:
+        results = results.filter(matching(results, arrangement.condition))
     rows = results.filter(pl.col("verdict") == Verdict.FLAGGED.value) if arrangement.flagged_only else results
     if arrangement.sort is None:
         return rows.reverse() if arrangement.falling else rows
@@ -32,6 +42,11 @@ def arranged(results: pl.DataFrame, arrangement: Arrangement) -> pl.DataFrame:
 def row_of(rows: pl.DataFrame, position: int) -> int | None:
     """The row in which that channel stands, if it is there."""
     return rows["position"].index_of(position)
+
+
+def row_named(rows: pl.DataFrame, name: str) -> int | None:
+    """The row of the channel of exactly that name, if it is there."""
+    return rows["channel"].index_of(name)
 
 
 def row_found(rows: pl.DataFrame, text: str, start: int) -> int | None:
@@ -54,6 +69,17 @@ def has_remarks(rows: pl.DataFrame) -> bool:
     return bool((rows["reason"].is_not_null() & (rows["reason"] != "")).any() or rows["closest"].is_not_null().any())
 
 
+def known_columns(rows: pl.DataFrame, names: Sequence[str]) -> set[str]:
+    """Those of the named columns that say anything in any row."""
+    return {name for name in names if (rows[name].is_not_null() & (rows[name] != "")).any()}
+
+
+def with_decisions(results: pl.DataFrame, decisions: pl.DataFrame) -> pl.DataFrame:
+    """The results with other decisions and notes."""
+    bare = results.drop("decision", "note")
+    return bare.join(decisions, on="position", how="left", maintain_order="left").select(results.columns)
+
+
 def _meaning(key: str) -> pl.Expr:
     """What a column is sorted by."""
     if key == "verdict":
@@ -63,7 +89,13 @@ def _meaning(key: str) -> pl.Expr:
         return remark.str.to_lowercase()
     if key == "channel":
         return _natural("channel")
-    return pl.col(key).fill_nan(None) if key != "n" else pl.col(key)
+    if key == "strip":
+        key = "departure_size"
+    return pl.when(pl.col(key) != "").then(pl.col(key).str.to_lowercase()) if key in WORDS else _number(key)
+
+
+def _number(key: str) -> pl.Expr:
+    return pl.col(key).fill_nan(None) if RESULT_COLUMNS[key] is float else pl.col(key)
 
 
 def _natural(key: str) -> pl.Expr:

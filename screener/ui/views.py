@@ -13,6 +13,7 @@ class View(StrEnum):
     RUN_ORDER = "run order"
     LAG = "lag"
     HISTOGRAM = "histogram"
+    FAMILIES = "families"
 
     @property
     def meaning(self) -> str:
@@ -28,6 +29,7 @@ MEANINGS = {
     View.RUN_ORDER: "readings in the order of rows",
     View.LAG: "each reading against the one in the row before",
     View.HISTOGRAM: "counts of readings in bars",
+    View.FAMILIES: "all families that the channel was held against",
 }
 
 

@@ -31,7 +31,7 @@ def told(fit: dict[str, Any], *, unit: str = "bar", channel: str = "outlet_1") -
 def test_name_family_r_beside_its_critical_value_p_and_parameters_are_told() -> None:
     assert told(FIT) == [
         "outlet_1 [bar]   n 4,000",
-        "gamma 2/2",
+        "gamma 2/2   quantile",
         "r 0.9775 ! below critical 0.999584",
         "p 2.7e-18 (extrapolated)",
         "location 210.025   scale 0.4873   shape 3.25",

@@ -3,10 +3,14 @@
 import polars as pl
 import pytest
 
+from screener.records import RESULT_COLUMNS
 from screener.ui.columns import COLUMNS
 from screener.ui.rows import Arrangement, arranged, has_remarks, longest_name, row_found, row_of
 
 NAN = float("nan")
+PRESENT = {"channel", "n", "r", "critical_r", "p", "departure_size", "verdict", "reason", "closest"}
+KINDS: dict[type, pl.DataType] = {int: pl.Int64(), float: pl.Float64(), str: pl.String()}
+ABSENT = {name: KINDS[kind] for name, kind in RESULT_COLUMNS.items() if name not in PRESENT}
 
 
 @pytest.fixture
@@ -24,8 +28,9 @@ def results() -> pl.DataFrame:
             "verdict": ["flagged", "clear", "not scored", "clear", "flagged"],
             "reason": ["", "", "fewer than 3 readings", "", ""],
             "closest": [None, "logistic", None, "Cauchy", None],
+            "strip": ["44444444"] * 5,
         }
-    )
+    ).with_columns(pl.lit(None, dtype).alias(name) for name, dtype in ABSENT.items())
 
 
 def order(results: pl.DataFrame, sort: str | None, *, falling: bool = False, flagged_only: bool = False) -> list[int]:

@@ -79,7 +79,7 @@ def test_rows_sort_plot_export_and_quit(folder: Path) -> None:
     with program(folder, REVIEW) as run:
         run.wait_for("1 of 240 channels")
         assert run.lines[0].startswith("bench_run.csv   120 rows x 240 channels")
-        assert run.lines[3].startswith(">! flow_0")
+        assert run.lines[3].startswith(">!  flow_0")
         run.send("6")
         run.wait_for("sorted by p, rising")
         run.send("\x1b[H")
@@ -108,7 +108,7 @@ def test_keys_that_arrive_together_are_acted_upon_in_order(folder: Path) -> None
         run.wait_for("1 of 240 channels")
         run.send("f/w_15x\x7f3")
         run.wait_for("Find: w_153")
-        run.wait_for("\n>! flow_153 ")
+        run.wait_for("\n>!  flow_153 ")
         run.send("\x1b")
         run.wait_for("q quit")
         run.send("\x1b[B\x1b[B6f\r]")

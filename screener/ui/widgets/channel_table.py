@@ -17,7 +17,7 @@ from textual.strip import Strip
 from textual.widget import Widget
 
 from screener.records import Verdict
-from screener.ui.columns import COLUMNS, GAP, SOURCES, widths
+from screener.ui.columns import GAP, SOURCES, Column, columns_shown, widths
 from screener.ui.palette import CURSOR, FLAGGED, HEADER, PLAIN, QUIET
 from screener.ui.shown import fitted
 
@@ -26,7 +26,7 @@ if TYPE_CHECKING:
 
 HEADER_LINES = 1
 POINTER = 1
-"""Cells left of the first column that show which row the cursor is on."""
+"""Cells left of the first column that show which row the cursor is on, and which are marked."""
 WHEEL_ROWS = 3
 
 ROW_STYLES = {Verdict.FLAGGED.value: FLAGGED, Verdict.NOT_SCORED.value: QUIET}
@@ -60,6 +60,15 @@ class ChannelTable(Widget):
         self._longest_name = len("channel")
         self._with_remarks = False
         self._texts: dict[int, tuple[list[str], Style]] = {}
+        self._chosen: tuple[str, ...] = ()
+        self._known: set[str] = set()
+        self._columns: tuple[Column, ...] = ()
+        self._marked: frozenset[int] = frozenset()
+
+    @property
+    def columns(self) -> tuple[Column, ...]:
+        """The columns that are shown."""
+        return self._columns
 
     @property
     def cursor(self) -> int:
@@ -81,14 +90,26 @@ class ChannelTable(Widget):
         """The row under the cursor, by column; None when there are no rows."""
         return self._rows.row(self._cursor, named=True) if self._rows is not None and self._rows.height else None
 
+    def mark(self, positions: frozenset[int]) -> None:
+        """Show these channels, and no others, as marked."""
+        self._marked = positions
+        self.refresh()
+
+    def choose(self, keys: tuple[str, ...]) -> None:
+        """Show these columns; the usual ones when there are none."""
+        self._chosen = keys
+        self.on_resize()
+
     def show(self, rows: pl.DataFrame, *, cursor: int | None, sort: tuple[str | None, bool]) -> None:
         """Replace the rows; the cursor goes to row `cursor`, at the same height on the screen if possible."""
         height_on_screen, seen_before = self._cursor - self._top, self._seen()
-        from screener.ui.rows import has_remarks, longest_name
+        from screener.ui.rows import has_remarks, known_columns, longest_name
 
         self._rows, self._sort = rows.select(SOURCES), sort
         self._longest_name = max(self._longest_name, longest_name(rows))
         self._with_remarks = self._with_remarks or has_remarks(rows)
+        self._known |= known_columns(rows, ("departure", "conditions"))
+        self._choose_columns()
         self._texts.clear()
         self._cursor = min(self._cursor if cursor is None else cursor, max(0, rows.height - 1))
         self._top = self._cursor - height_on_screen
@@ -110,6 +131,7 @@ class ChannelTable(Widget):
 
     def on_resize(self) -> None:
         """Other widths, other cuts."""
+        self._choose_columns()
         self._texts.clear()
         self._keep_in_sight()
         self.refresh()
@@ -145,9 +167,12 @@ class ChannelTable(Widget):
             return Strip.blank(width)
         texts, style = self._row_texts(row)
         thumb = self._thumb(y)
+        marked = self._rows is not None and self._rows["position"][row] in self._marked
         if row == self._cursor:
-            return Strip([Segment(fitted(">" + " ".join(texts), width - 1), CURSOR), Segment(thumb)], width)
-        segments = [Segment(" " + " ".join(texts[:2]), style), Segment(" " + " ".join(texts[2:]), _rest(style))]
+            pointer = "#" if marked else ">"
+            return Strip([Segment(fitted(pointer + " ".join(texts), width - 1), CURSOR), Segment(thumb)], width)
+        pointer = "+" if marked else " "
+        segments = [Segment(pointer + " ".join(texts[:2]), style), Segment(" " + " ".join(texts[2:]), _rest(style))]
         return Strip([*segments, Segment(thumb)]).adjust_cell_length(width).simplify()
 
     def _row_texts(self, row: int) -> tuple[list[str], Style]:
@@ -155,7 +180,7 @@ class ChannelTable(Widget):
         if row not in self._texts:
             assert self._rows is not None
             values = self._rows.row(row, named=True)
-            pairs = zip(COLUMNS, self._widths(), strict=True)
+            pairs = zip(self._columns, self._widths(), strict=True)
             texts = [column.cell(values, width, unicode=self._unicode) for column, width in pairs]
             self._texts[row] = texts, ROW_STYLES.get(values["verdict"], PLAIN)
         return self._texts[row]
@@ -163,13 +188,17 @@ class ChannelTable(Widget):
     def _header(self) -> str:
         key, falling = self._sort
         titles = []
-        for column, width in zip(COLUMNS, self._widths(), strict=True):
+        for column, width in zip(self._columns, self._widths(), strict=True):
             arrow = ("v" if falling else "^") if column.key == key else ""
             titles.append(column.title_in(width, arrow))
         return " " + " ".join(titles)
 
     def _widths(self) -> list[int]:
-        return widths(self.size.width - POINTER - 1, self._longest_name, with_remarks=self._with_remarks)
+        total = self.size.width - POINTER - 1
+        return widths(total, self._longest_name, self._columns, with_remarks=self._with_remarks)
+
+    def _choose_columns(self) -> None:
+        self._columns = columns_shown(self._chosen, self.size.width - POINTER - 1, self._known)
 
     def _thumb(self, y: int) -> str:
         """The last cell of a line: where in all rows the seen ones are."""
@@ -183,7 +212,7 @@ class ChannelTable(Widget):
     def _column_at(self, x: int) -> str | None:
         """The key of the column over that cell."""
         start = POINTER
-        for column, width in zip(COLUMNS, self._widths(), strict=True):
+        for column, width in zip(self._columns, self._widths(), strict=True):
             if start <= x < start + width + GAP:
                 return column.key
             start += width + GAP

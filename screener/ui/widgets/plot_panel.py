@@ -5,7 +5,8 @@ from __future__ import annotations
 from textual import events
 from textual.message import Message
 
-from screener.ui.drawing import Drawing, shapes
+from screener.ui.drawing import Drawing
+from screener.ui.families import shapes
 from screener.ui.numbers import p_text, r_text, reading_text
 from screener.ui.palette import FLAGGED, PLAIN, QUIET, STRONG
 from screener.ui.shown import ascii_only, shown
@@ -48,7 +49,7 @@ def head(drawing: Drawing) -> list[Line]:
     unit = f" [{shown(drawing.unit)}]" if drawing.unit and drawing.unit not in drawing.channel else ""
     name: Line = [(shown(drawing.channel), STRONG), (unit, PLAIN), (f"   n {drawing.wanted.n:,}", PLAIN)]
     place = f" {drawing.place + 1}/{len(drawing.families)}" if drawing.families else ""
-    family: Line = [(drawing.wanted.family, STRONG), (place, QUIET)]
+    family: Line = [(drawing.wanted.family, STRONG), (place, QUIET), (f"   {drawing.wanted.view}", PLAIN)]
     return [name, family, _evidence(drawing), plain(_probability(drawing)), _parameters(drawing)]
 
 
