@@ -28,9 +28,9 @@ def proposed_codes(frame: pl.LazyFrame, columns: Sequence[str], rows: int, *, he
     if rows < _FEWEST_CELLS + _FEWEST_OTHERS or not columns:
         return ()
     found: dict[str, list[int]] = {}
-    schema = frame.collect_schema()
     for batch in _batches(columns, rows, held=held):
-        part = frame.collect() if held and len(schema) == len(columns) else frame.select(batch).collect()
+        part = frame.collect() if held else frame.select(batch).collect()
+        part = part if part.width == len(batch) else part.select(batch)
         for column in _far_reaching(part):
             for value, cells in _codes(column.cast(pl.Float64).to_numpy()):
                 found.setdefault(_written(value, column.dtype), []).append(cells)
@@ -47,8 +47,10 @@ def _batches(columns: Sequence[str], rows: int, *, held: bool) -> Iterator[Seque
 
 def _far_reaching(frame: pl.DataFrame) -> list[pl.Series]:
     """The columns whose lowest or highest reading lies far from the middle of some of their rows."""
-    glance = frame[list(range(0, len(frame), max(1, len(frame) // _GLANCED_ROWS)))]
-    ordered = np.sort(glance.to_numpy(order="fortran").T.astype(np.float64), axis=1)
+    first = frame.head(_GLANCED_ROWS)
+    if any(dtype != pl.Float64 for dtype in first.dtypes):
+        first = first.cast(pl.Float64)
+    ordered = np.sort(first.to_numpy(order="fortran").T, axis=1)
     bottom, top = _shortest_halves(ordered)
     series = frame.get_columns()
     lowest, highest = (np.array([_float(one) for one in ends]) for ends in zip(*map(_ends, series), strict=True))

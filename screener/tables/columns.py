@@ -61,7 +61,7 @@ def unfit(frame: pl.LazyFrame, columns: Sequence[str], rows: int, shown: Mapping
         return {}
     fewest, most = _GLANCED_ROWS
     glanced = max(fewest, min(most, _GLANCED_READINGS // len(columns)))
-    first = readings_of(frame.select(reading(*columns)).head(glanced))
+    first = glance(frame, columns, glanced)
     suspects = [column for column, suspect in zip(columns, _suspects(first), strict=True) if suspect]
     reasons: dict[str, str] = {}
     width = max(1, _BATCH_READINGS // rows)
@@ -76,6 +76,17 @@ def readings_of(frame: pl.LazyFrame) -> NDArray[np.float64]:
     """float64[columns, rows], null as NaN."""
     readings: NDArray[np.float64] = frame.collect().to_numpy(order="fortran").T
     return readings
+
+
+def glance(frame: pl.LazyFrame, columns: Sequence[str], rows: int) -> NDArray[np.float64]:
+    """float64[columns, rows], the first rows of the columns."""
+    part = frame.head(rows).collect()
+    if part.width != len(columns):
+        part = part.select(columns)
+    if any(dtype != pl.Float64 for dtype in part.dtypes):
+        part = part.cast(pl.Float64)
+    first: NDArray[np.float64] = part.to_numpy(order="fortran").T
+    return first
 
 
 def _suspects(first: NDArray[np.float64]) -> NDArray[np.bool_]:

@@ -208,7 +208,7 @@ def _pattern(cell: str) -> str:
 
 def _is_reading(row: HeadRow) -> bool:
     """Whether a row between the names and the first numbers holds one, or what a logger writes in place of readings."""
-    cells = [cell.strip() for cell in row.cells]
+    cells = [cell.strip() for cell in row.cells[:_JUDGED_CELLS]]
     return any((is_missing(cell) and cell) or cell.upper() in LOGGER_WORDS or _reads_as_number(cell) for cell in cells)
 
 

@@ -46,15 +46,17 @@ def names_a_channel(word: str) -> bool:
 
 def _has_channels_in_rows(raw: RawTable) -> bool:
     """Whether every row begins with a name of its own, and the columns have no names but numbers."""
+    headless = not any(raw.names) or (names_a_channel(raw.names[0]) and _are_counted(raw.names[1:]))
+    if not headless or len(raw.names) <= _FEWEST_READINGS:
+        return False
     schema = raw.frame.collect_schema()
     types = schema.dtypes()
-    if len(types) <= _FEWEST_READINGS or types[0] != pl.String or not all(dtype.is_numeric() for dtype in types[1:]):
+    if types[0] != pl.String or not all(dtype.is_numeric() for dtype in types[1:]):
         return False
-    headless = not any(raw.names) or (names_a_channel(raw.names[0]) and _are_counted(raw.names[1:]))
     first = raw.frame.select(pl.col(schema.names()[0])).collect().to_series()
     words = not any(map(is_number, first.drop_nulls().head(_MOST_CHANNELS)))
     dated = first.str.contains(r"^\d{1,4}[-/.:]\d{1,2}[-/.:]\d{1,4}").any()
-    return headless and words and not dated and first.null_count() == 0 and first.n_unique() == len(first)
+    return words and not dated and first.null_count() == 0 and first.n_unique() == len(first)
 
 
 def _are_counted(names: Sequence[str]) -> bool:
@@ -89,10 +91,13 @@ def _turned(raw: RawTable, *, asked: bool) -> RawTable:
 
 def _long_columns(raw: RawTable) -> tuple[str, str] | None:
     """The columns of names and of values."""
-    by_name = {name.strip().lower(): column for column, name in zip(raw.frame.collect_schema(), raw.names, strict=True)}
-    name = next((column for word, column in by_name.items() if word in _NAMING), None)
-    value = next((column for word, column in by_name.items() if word in _VALUES), None)
-    return (name, value) if name and value and name != value else None
+    words = [name.strip().lower() for name in raw.names]
+    name = next((at for at, word in enumerate(words) if word in _NAMING), None)
+    value = next((at for at, word in enumerate(words) if word in _VALUES), None)
+    if name is None or value is None or name == value:
+        return None
+    columns = raw.frame.collect_schema().names()
+    return columns[name], columns[value]
 
 
 def _is_long(raw: RawTable) -> bool:

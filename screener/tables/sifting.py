@@ -61,9 +61,11 @@ def sift(raw: RawTable, shown: Mapping[str, str], choice: Choice, missing: Seque
         if column not in reasons and (reason := reason_for_type(dtype)):
             reasons[column] = reason
     wanted = [column for column in schema if column not in reasons]
-    raw = replace(raw, frame=_settled(_only(raw.frame, wanted), held=raw.held and not raw.loaded))
+    kept = raw.frame if len(wanted) == len(schema) else raw.frame.select(pl.col(wanted))
+    raw = replace(raw, frame=_settled(kept, held=raw.held and not raw.loaded))
     texts = [token for token in missing if not is_number(token)]
-    text = _text_as_numbers(raw, shown, texts)
+    mixed = any(not schema[column].is_numeric() for column in wanted)
+    text = _text_as_numbers(raw, shown, texts) if mixed else _Text(raw.frame, {})
     reasons |= text.reasons
     numeric = [column for column in schema if column not in reasons]
     frame, codes = _without_codes(text.frame, numeric, missing, held=raw.held)
@@ -73,6 +75,8 @@ def sift(raw: RawTable, shown: Mapping[str, str], choice: Choice, missing: Seque
     columns = tuple(column for column in schema if column not in reasons)
     proposals = proposed_codes(frame, columns, raw.rows, held=raw.held)
     remarks = (*text.remarks, *codes, *(proposal.sentence() for proposal in proposals))
+    if not mixed and len(columns) == len(wanted):
+        return Sifted(frame, columns, reasons, remarks, proposals)
     if text.forms is None:
         return Sifted(_only(frame, columns), columns, reasons, remarks, proposals)
     units = {column: form.suffix for column, form in text.forms.by_column.items()}

@@ -3,6 +3,7 @@
 import re
 from collections.abc import Callable, Collection, Iterator, Sequence
 from dataclasses import dataclass, replace
+from itertools import count
 from os import SEEK_END
 from pathlib import Path
 from typing import TypeVar
@@ -129,9 +130,13 @@ def _parse(source: Path | bytes, layout: Layout, spool: Spool | None) -> _Parsed
 
 def _spooled(source: Path | bytes, layout: Layout, columns: Sequence[str], spool: Spool) -> _Parsed:
     """The cells in a temporary columnar file, written in pieces of bounded size."""
-    kept = spool.folder / "cells.arrow"
+    tries = count(1)
 
     def write(frame: pl.LazyFrame) -> pl.LazyFrame:
+        # A file of its own for each try: polars may still be writing to that of one that failed.
+        kept = spool.folder / f"cells{next(tries)}.arrow"
+        for failed in spool.folder.glob("cells*.arrow"):
+            failed.unlink()
         batch = max(_FEWEST_BATCH_ROWS, _BATCH_CELLS // len(columns))
         with roomy(spool.folder):
             frame.sink_ipc(kept, record_batch_size=batch, compression="uncompressed")
