@@ -120,9 +120,11 @@ def test_quantiles_return_to_their_probability_in_fifty_digits(family: Family, s
             assert abs(exact - float(x)) <= 1e-7 * abs(exact) + 1e-14
         return
     for u, x in zip(TAILS, family.quantile(TAILS, *shapes), strict=True):
-        back = CUMULATIVE[family.name](mpmath.mpf(float(x)), *shapes)
-        exact = mpmath.mpf(float(u))
-        assert abs(back - exact) <= 1e-9 * min(exact, 1 - exact) + mpmath.mpf(2) ** -52 * 8 * exact
+        exact, rounding = mpmath.mpf(float(u)), abs(float(x)) * 4 * 2.0**-52
+        low, high = (CUMULATIVE[family.name](mpmath.mpf(float(x) + d), *shapes) for d in (-rounding, rounding))
+        # The quantile itself is only known to the last bits of a double, which near a bound can be much of the tail.
+        slack = 1e-9 * min(exact, 1 - exact) + mpmath.mpf(2) ** -52 * 8 * exact
+        assert low - slack <= exact <= high + slack
 
 
 @every_member
@@ -135,7 +137,7 @@ def test_quantiles_increase(family: Family, shapes: tuple[float, ...]) -> None:
 def test_r_of_the_exact_quantiles_is_one(family: Family, shapes: tuple[float, ...]) -> None:
     exact = family.quantile(plotting_positions(200), *shapes)
     readings = np.exp(exact) if family.axis is Axis.LOG else exact
-    assert fit(readings, family).r[0, 0] == pytest.approx(1.0, abs=1e-6 if shapes else 1e-10)
+    assert fit(readings, family).r[0, 0] == pytest.approx(1.0, abs=(0.0, 1e-7, 1e-5)[len(shapes)] or 1e-10)
 
 
 @every_member

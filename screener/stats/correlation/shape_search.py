@@ -57,10 +57,6 @@ class ShapeTable:
     family: Family
     columns: FloatArray
     """[K, 2 grid] quantiles less the median, over the range from 10 % to 90 %."""
-    median: FloatArray
-    """[K]"""
-    log_range: FloatArray
-    """[K] logarithm of the range from 10 % to 90 %."""
     counts: tuple[int, ...]
     """Grid points in each coordinate."""
 
@@ -106,7 +102,7 @@ def _whole_table(name: str) -> ShapeTable:
     low, median, high = family.quantile(SPREAD, *shapes).T
     values = np.concatenate([family.quantile(LOWER, *shapes), family.quantile(UPPER, *shapes)], axis=1)
     columns = (values - median[:, None]) / (high - low)[:, None]
-    return ShapeTable(family, columns, median, np.log(high - low), family.shapes.counts)
+    return ShapeTable(family, columns, family.shapes.counts)
 
 
 def best_shape(x: OnGrid, table: ShapeTable) -> BestShape:
@@ -118,16 +114,15 @@ def best_shape(x: OnGrid, table: ShapeTable) -> BestShape:
     members, weights = neighbours(table.counts, refined)
     parts = [_interpolated(x, table, members, weights, first) for first in range(0, each.size, CHUNK)]
     r, mean, length = (np.concatenate(part) for part in zip(*parts, strict=True))
-    median = (weights * table.median[members]).sum(axis=1)
-    breadth = np.exp((weights * table.log_range[members]).sum(axis=1))
     # A grid point may be as good as the place found between them, for instance at the edge of the grid.
     worse = r < at_grid.r[each, start]
-    grid_breadth = np.exp(table.log_range[start])
+    chosen = np.where(worse[:, None], steps, refined)
+    low, median, high = table.family.quantile(SPREAD, *(shape[:, None] for shape in table.family.shapes.at(chosen))).T
     return BestShape(
         r=np.where(worse, at_grid.r[each, start], r),
-        coordinates=np.where(worse[:, None], steps, refined),
-        mean=np.where(worse, table.median[start] + grid_breadth * at_grid.mean[each, start], median + breadth * mean),
-        length=np.where(worse, grid_breadth * at_grid.length[each, start], breadth * length),
+        coordinates=chosen,
+        mean=median + (high - low) * np.where(worse, at_grid.mean[each, start], mean),
+        length=(high - low) * np.where(worse, at_grid.length[each, start], length),
     )
 
 
