@@ -58,14 +58,17 @@ def utf8_text(path: Path, packing: Packing, *, given: str = "", keep: Sink = in_
     with cast("BinaryIO", gzip.open(path)) if packing else path.open("rb") as file:
         head = list(_first_lines(file))
         sample = b"".join(head)
-        encoding = _known(given) if given else _encoding(sample)
+        encoding = _known(given, sample) if given else _encoding(sample)
         returns = _LONE_RETURN.search(sample) is not None
         words = [*((_NAMES.get(encoding, encoding),) if encoding != "utf-8" else ())]
         words += ["lines end in carriage returns"] if returns else []
         if encoding == "utf-8" and not returns:
             lines = [line.decode(errors="replace").rstrip("\r\n") for line in head]
             return Text(source_of(path), _without_mark(lines))
-        source = keep(_converted(_pieces(sample, file), encoding))
+        try:
+            source = keep(_converted(_pieces(sample, file), encoding))
+        except UnicodeError as error:
+            raise PlanError(f"Couldn't read {str(path)!r} as {encoding}: it is not written so.") from error
     remarks = () if encoding == "utf-8" else (f"The text was read as {_NAMES.get(encoding, encoding)}.",)
     return Text(source, _head_of(source), tuple(words), remarks)
 
@@ -122,9 +125,13 @@ def _tabbed(lines: Iterable[bytes]) -> Iterator[bytes]:
             yield b"\t".join(line.split()) + b"\n"
 
 
-def _known(name: str) -> str:
+def _known(name: str, sample: bytes) -> str:
+    """The encoding of that name; UTF-16 without its mark is of the byte order that the text shows."""
     try:
-        return codecs.lookup(name).name
+        "".encode(name)
+        known = codecs.lookup(name).name
+        marked = sample.startswith((codecs.BOM_UTF16_LE, codecs.BOM_UTF16_BE))
+        return utf16_without_mark(sample) or "utf-16-le" if known == "utf-16" and not marked else known
     except LookupError as error:
         known = "utf-8, utf-16, latin-1, cp1252"
         raise PlanError(f"Couldn't use encoding {name!r}: there is none of that name. Known are {known}...") from error

@@ -216,7 +216,7 @@ def _units(below: Sequence[HeadRow], named: HeadRow, *, start_line: int, asked: 
     if asked == 0:
         return None
     if asked > 0:
-        return _row_of_line(below, asked)
+        return _row_of_line(below, asked) if below else None
     row = below[0] if below else None
     if row is None or row.first >= start_line or _is_reading(row):
         return None

@@ -1,5 +1,6 @@
 """Opening a measurement table and reading its channels block by block."""
 
+import os
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 from pathlib import Path
@@ -24,6 +25,7 @@ from screener.tables.spool import Spool
 
 HELD_BYTES = 2 << 30
 """A table whose readings take more than this is left in its columnar file."""
+_READING_BYTES = 8
 
 
 @dataclass(frozen=True, slots=True)
@@ -58,13 +60,15 @@ class Table:
         return self._scan.select(reading(*self._columns[span.first : span.stop])).collect()
 
 
-def open_table(path: Path, plan: Plan, *, held_bytes: int = HELD_BYTES) -> Table:
+def open_table(path: Path, plan: Plan, *, held_bytes: int = HELD_BYTES, most_bytes: int | None = None) -> Table:
     """The table at `path`: which of its columns are channels, which are set aside and why.
 
     The path may also be a pattern for several files of one layout, `-` for standard input, or an address.
     Raises:
         TableError: there is no table that can be read, or no column is a channel.
         PlanError: the plan's name patterns leave no column, or it says what cannot be.
+
+    One channel may take `most_bytes`, half of the machine's memory unless given.
     """
     source = source_named(path)
     if source.address:
@@ -75,12 +79,28 @@ def open_table(path: Path, plan: Plan, *, held_bytes: int = HELD_BYTES) -> Table
     raw, files = join([one.raw for one in loaded], names)
     if not raw.rows:
         raise TableError(f"Couldn't read {str(path)!r}: it has columns but no readings.")
+    _check_size(path, raw.rows, most_bytes or _memory() // 2)
     with readable(path, raw.format):
         facts, sifted = _sifted(source.path, plan, raw)
         facts = replace(facts, fingerprint=joined([one.content for one in loaded]), files=files)
         held = sifted.frame.collect() if raw.held else None
     states = () if raw.held else tuple(one.state for one in loaded if one.state)
     return Table(facts, sifted.columns, held, sifted.frame, states, (source.spool, *(one.raw.spool for one in loaded)))
+
+
+def _check_size(path: Path, rows: int, most_bytes: int) -> None:
+    """Refuse a table of which not even one channel can be held, since a channel is sorted as a whole."""
+    needed = rows * _READING_BYTES
+    if needed > most_bytes:
+        raise TableError(
+            f"Couldn't read {str(path)!r}: one channel of {rows:,} readings takes {needed:,} bytes, more than this "
+            f"machine can spare ({most_bytes:,}). Take fewer rows."
+        )
+
+
+def _memory() -> int:
+    """Bytes of memory in this machine."""
+    return os.sysconf("SC_PAGE_SIZE") * os.sysconf("SC_PHYS_PAGES")
 
 
 def _sifted(path: Path, plan: Plan, raw: RawTable) -> tuple[TableFacts, Sifted]:
