@@ -74,10 +74,11 @@ def project(ordered: FloatArray, n: IntArray, rows: IntArray, rule: str, deviati
     groups: list[SizeGroup] = []
     for members in _classes(counts):
         compressed = []
-        step = tile_rows(class_size(int(counts[members[0]])))
-        for first in range(0, members.size, step):
-            at = members[first : first + step]
-            tile = _aligned(ordered, counts[at], middle[at], rows[at], deviations)
+        width = class_size(int(counts[members[0]]))
+        tile = np.zeros((tile_rows(width), width))
+        for first in range(0, members.size, tile.shape[0]):
+            at = members[first : first + tile.shape[0]]
+            _align(ordered, counts[at], middle[at], rows[at], deviations, tile)
             total[at] = tile.sum(axis=1)[: at.size]
             squares[at] = np.einsum("ij,ij->i", tile, tile)[: at.size]
             compressed.append(compress(tile, segments(tile.shape[1] // 2))[: at.size])
@@ -111,17 +112,22 @@ def _by_size(counts: IntArray, members: IntArray, compressed: FloatArray, rule: 
         yield SizeGroup(int(size), members[start:stop], compressed[start:stop], ones, table, begin)
 
 
-def _aligned(
-    ordered: FloatArray, counts: IntArray, middle: FloatArray, rows: IntArray, deviations: Deviations
-) -> FloatArray:
-    """Deviations of the channels `rows`, float64[tile, width]: lower halves left, upper halves right, 0 between."""
-    width = class_size(int(counts[0]))
-    tile = np.zeros((tile_rows(width), width))
+def _align(
+    ordered: FloatArray,
+    counts: IntArray,
+    middle: FloatArray,
+    rows: IntArray,
+    deviations: Deviations,
+    tile: FloatArray,
+) -> None:
+    """Write deviations of the channels `rows` into tile: lower halves left, upper halves right, 0 between and below."""
+    width = tile.shape[1]
+    tile[rows.size :] = 0.0
     starts = np.flatnonzero(np.diff(counts, prepend=-1))
     for start, stop in zip(starts, [*starts[1:], rows.size], strict=True):
         same, size = rows[start:stop], int(counts[start])
         half = size // 2
-        centre = middle[start:stop, None]
+        centre, upper = middle[start:stop, None], width - (size - half)
         deviations(ordered[same, :half], centre, tile[start:stop, :half])
-        deviations(ordered[same, half:size], centre, tile[start:stop, width - (size - half) :])
-    return tile
+        tile[start:stop, half:upper] = 0.0
+        deviations(ordered[same, half:size], centre, tile[start:stop, upper:])

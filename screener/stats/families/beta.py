@@ -8,14 +8,16 @@ Source: Johnson, Kotz & Balakrishnan, Continuous Univariate Distributions 2 (2nd
 """
 
 import numpy as np
-from scipy.special import betainccinv, betaincinv
+from scipy.special import betaincinv
 
 from screener.stats.families.family import Family, FloatArray, ShapeGrid, Support
 
 
 def quantile(u: FloatArray, alpha: FloatArray | float, beta: FloatArray | float) -> FloatArray:
     """Standard quantiles at probabilities u and shapes alpha and beta, broadcast."""
-    return np.where(u < 0.5, betaincinv(alpha, beta, u), betainccinv(alpha, beta, 1.0 - u))
+    lower = u < 0.5
+    tail = betaincinv(np.where(lower, alpha, beta), np.where(lower, beta, alpha), np.minimum(u, 1.0 - u))
+    return np.where(lower, tail, 1.0 - tail)
 
 
 def parameters(radius: FloatArray, angle: FloatArray) -> tuple[FloatArray, ...]:

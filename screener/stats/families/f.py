@@ -16,11 +16,12 @@ from screener.stats.families.family import Family, FloatArray, ShapeGrid, Suppor
 def quantile(u: FloatArray, d1: FloatArray | float, d2: FloatArray | float) -> FloatArray:
     """Standard quantiles at probabilities u and degrees of freedom d1 and d2, broadcast."""
     half1, half2 = np.multiply(0.5, d1), np.multiply(0.5, d2)
-    below = np.asarray(betaincinv(half1, half2, np.minimum(u, 0.5)), dtype=np.float64)
-    above = np.asarray(betaincinv(half2, half1, np.minimum(1.0 - u, 0.5)), dtype=np.float64)
+    lower = u < 0.5
+    # B or, above the median, 1 - B, whichever is small.
+    tail = betaincinv(np.where(lower, half1, half2), np.where(lower, half2, half1), np.minimum(u, 1.0 - u))
     # Far out in the tail the quantile is beyond every number.
     with np.errstate(divide="ignore"):
-        odds = np.where(u < 0.5, below / (1.0 - below), (1.0 - above) / above)
+        odds = np.where(lower, tail / (1.0 - tail), (1.0 - tail) / tail)
     return np.asarray(odds * half2 / half1, dtype=np.float64)
 
 
