@@ -18,6 +18,7 @@ COMMANDS = {
     "flagged": "Print the names of the flagged channels.",
     "export": "Write the results to a file.",
     "show": "Print one channel: numbers and quantile plot.",
+    "compare": "Compare two runs of the same channels.",
     "critical": "Print critical values of r.",
     "nulls": "Show or build the null tables.",
 }

@@ -35,14 +35,33 @@ def export(results: pl.DataFrame, facts: TableFacts, plan: Plan, path: Path) -> 
     _replace(path, render(rows, facts, plan))
 
 
+def export_comparison(rows: pl.DataFrame, path: Path) -> None:
+    """Write the rows of a comparison, as they are sorted, as .csv, .parquet or .json, all or nothing.
+
+    Raises: RunFileError when the extension is unknown or the file cannot be written.
+    """
+    render = {".csv": _csv_of, ".parquet": _parquet_of, ".json": _json_of}.get(path.suffix.lower())
+    if render is None:
+        raise _refusal(path, "its extension names no known format", "Use one of .csv, .parquet, .json.")
+    _replace(path, render(rows))
+
+
 def _csv(rows: pl.DataFrame, _facts: TableFacts, _plan: Plan) -> bytes:
+    return _csv_of(rows)
+
+
+def _csv_of(rows: pl.DataFrame) -> bytes:
     """Text that a spreadsheet would run is preceded by an apostrophe; numbers are left alone."""
-    texts = [name for name, kind in RESULT_COLUMNS.items() if kind is str]
+    texts = [name for name, kind in rows.schema.items() if kind == pl.String]
     defused = rows.with_columns(pl.col(texts).str.replace(_FORMULA, "'$1"))
     return defused.write_csv().encode()
 
 
 def _parquet(rows: pl.DataFrame, _facts: TableFacts, _plan: Plan) -> bytes:
+    return _parquet_of(rows)
+
+
+def _parquet_of(rows: pl.DataFrame) -> bytes:
     written = io.BytesIO()
     rows.write_parquet(written)
     return written.getvalue()
@@ -53,12 +72,20 @@ def _json(rows: pl.DataFrame, facts: TableFacts, plan: Plan) -> bytes:
     table = asdict(facts) | {"path": str(facts.path)}
     del table["channels"]
     about = {"exported_by": f"screener {__version__}", "plan": asdict(plan), "table": table}
-    numbers = pl.col(pl.Float64)
-    finite = rows.with_columns(pl.when(numbers.is_finite()).then(numbers))
-    lines = (json.dumps(row, ensure_ascii=False, allow_nan=False) for row in finite.iter_rows(named=True))
-    head, body = json.dumps(about, ensure_ascii=False, indent=1), ",\n".join(lines)
+    head, body = json.dumps(about, ensure_ascii=False, indent=1), _json_rows(rows)
     # A file name that is no text has lone surrogates in its path: written as the escapes that JSON reads back.
     return f'{{"about": {head},\n"channels": [\n{body}\n]}}\n'.encode(errors="backslashreplace")
+
+
+def _json_of(rows: pl.DataFrame) -> bytes:
+    return f'{{"exported_by": "screener {__version__}",\n"channels": [\n{_json_rows(rows)}\n]}}\n'.encode()
+
+
+def _json_rows(rows: pl.DataFrame) -> str:
+    """One object for each row, one a line."""
+    numbers = pl.col(pl.Float64)
+    finite = rows.with_columns(pl.when(numbers.is_finite()).then(numbers))
+    return ",\n".join(json.dumps(row, ensure_ascii=False, allow_nan=False) for row in finite.iter_rows(named=True))
 
 
 _RENDERERS: dict[str, Callable[[pl.DataFrame, TableFacts, Plan], bytes]] = {

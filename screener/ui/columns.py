@@ -104,7 +104,7 @@ NUMBERED = ("verdict", "channel", "n", "r", "critical_r", "p", "departure_size",
 FIXED = ("verdict", "channel", "remark")
 """Columns that cannot be left out."""
 USUAL = (*FIXED, "r", "critical_r", "p", "departure_size", "strip")
-WIDE_ENOUGH = {"n": 64, "departure": 100, "conditions": 116}
+WIDE_ENOUGH = {"n": 90, "departure": 100, "conditions": 116}
 """Columns that are shown too, once the table is that wide; the last two only when the run knows any."""
 
 SOURCES = ("position", "unit", "reason", "closest", *(c.key for c in COLUMNS if c.key != "remark"))

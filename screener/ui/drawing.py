@@ -64,6 +64,8 @@ def drawing(run: RunFile, facts: TableFacts, plan: Plan, wanted: Wanted, *, char
     said = closest_words(fits, plan.alpha, wanted.n)
     if wanted.view is View.FAMILIES:
         lines = family_lines(fits, said, wanted.family, width=wanted.width, height=wanted.height)
+    elif wanted.view is View.SHAPE:
+        lines = _shape_plot(run, plan, wanted, charset)
     elif wanted.view in OF_ROWS:
         lines = _row_plot(run, facts, wanted, charset)
     else:
@@ -102,6 +104,13 @@ def _quantile_plot(run: RunFile, plan: Plan, wanted: Wanted, fit: dict[str, Any]
 
     view = view_of(run, plan, wanted, fit)
     return quantile_plot(view, width=wanted.width, height=wanted.height, charset=charset)
+
+
+def _shape_plot(run: RunFile, plan: Plan, wanted: Wanted, charset: Charset) -> list[str]:
+    from screener.plots import shape_plot
+
+    size: dict[str, Any] = {"width": wanted.width, "height": wanted.height, "charset": charset}
+    return shape_plot(run.points(wanted.position), wanted.n, wanted.family, plan.positions, **size)
 
 
 def _row_plot(run: RunFile, facts: TableFacts, wanted: Wanted, charset: Charset) -> list[str]:

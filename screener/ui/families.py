@@ -14,12 +14,12 @@ Fit = dict[str, Any]
 CELLS: tuple[tuple[str, int, Callable[[Fit], str]], ...] = (
     ("r", 10, lambda fit: r_text(fit["r"])),
     ("critical r", 10, lambda fit: r_text(fit["critical_r"])),
-    ("p", 8, lambda fit: p_text(fit["p"]) + ("*" if fit["extrapolated"] else "")),
-    ("location", 10, lambda fit: reading_text(fit["location"])),
-    ("scale", 10, lambda fit: reading_text(fit["scale"])),
-    ("shapes", 10, lambda fit: ", ".join(f"{value:.3g}" for value in shapes(fit))),
+    ("p", 9, lambda fit: p_text(fit["p"]) + ("*" if fit["extrapolated"] else "")),
+    ("location", 9, lambda fit: reading_text(fit["location"])),
+    ("scale", 9, lambda fit: reading_text(fit["scale"])),
+    ("shapes", 12, lambda fit: ", ".join(f"{value:.3g}" for value in shapes(fit))),
 )
-NAME = 23
+NAME = 20
 
 
 def shapes(fit: Fit) -> tuple[float, ...]:

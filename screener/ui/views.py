@@ -13,6 +13,7 @@ class View(StrEnum):
     RUN_ORDER = "run order"
     LAG = "lag"
     HISTOGRAM = "histogram"
+    SHAPE = "shape curve"
     FAMILIES = "families"
 
     @property
@@ -29,6 +30,7 @@ MEANINGS = {
     View.RUN_ORDER: "readings in the order of rows",
     View.LAG: "each reading against the one in the row before",
     View.HISTOGRAM: "counts of readings in bars",
+    View.SHAPE: "r over the shape of the family, from the readings kept",
     View.FAMILIES: "all families that the channel was held against",
 }
 

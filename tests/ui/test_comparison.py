@@ -1,0 +1,73 @@
+"""The screen of a comparison."""
+
+from pathlib import Path
+
+import polars as pl
+import pytest
+from made_run import made_facts, made_run, made_scores
+from screen_text import screen_lines, screen_text, shows
+
+from screener.records import Plan
+from screener.runs import RunFile, compared
+from screener.ui.abilities import Abilities
+from screener.ui.comparison import ComparisonApp
+
+
+@pytest.fixture
+def rows(tmp_path: Path) -> pl.DataFrame:
+    """Fifty channels of which the scores have moved by three places."""
+    with made_run(tmp_path / "a.run", 50, names={9: "[@click=app.quit]x\x1b[2J"}) as old:
+        new = RunFile.create(tmp_path / "b.run", made_facts(52), Plan(), version="0", null_version="0")
+        with new:
+            new.store(made_scores(0, 52))
+            return compared(old, new)
+
+
+def app_on(rows: pl.DataFrame, *, unicode: bool = True) -> ComparisonApp:
+    return ComparisonApp(rows, "a.run -> b.run", can=Abilities(unicode=unicode))
+
+
+async def test_changes_are_shown_first_and_all_when_asked_for(rows: pl.DataFrame) -> None:
+    async with app_on(rows).run_test(size=(80, 24)) as pilot:
+        text = await shows(pilot, "heaviest changes first")
+        assert "53 channels: 1 missing, 3 new, 49 same" in text
+        assert "of 4 changes" in text
+        await pilot.press("a")
+        await shows(pilot, "1 of 53 channels")
+        await pilot.press("end")
+        await shows(pilot, "53 of 53 channels")
+
+
+async def test_rows_are_sorted_by_number_both_ways(rows: pl.DataFrame) -> None:
+    async with app_on(rows).run_test(size=(80, 24)) as pilot:
+        await shows(pilot, "heaviest")
+        await pilot.press("a", "3")
+        await shows(pilot, "sorted by r before")
+        smallest = rows.sort("r_before", nulls_last=True)["channel"][0]
+        assert f" {smallest} " in screen_lines(pilot.app)[3]
+        await pilot.press("3")
+        await pilot.pause()
+        largest = rows.sort("r_before", descending=True, nulls_last=True)["channel"][0]
+        assert f" {largest} " in screen_lines(pilot.app)[3]
+
+
+async def test_the_rows_are_exported_and_an_existing_file_is_kept(rows: pl.DataFrame, tmp_path: Path) -> None:
+    target = tmp_path / "x.csv"
+    async with app_on(rows).run_test(size=(80, 24)) as pilot:
+        await shows(pilot, "heaviest")
+        for _ in range(2):
+            await pilot.press("e")
+            pilot.app.query_one("#answer").value = str(target)  # type: ignore[attr-defined]
+            await pilot.press("enter")
+            await shows(pilot, lambda text: "Wrote 4 channels" in text or "exists: give another name" in text)
+    assert pl.read_csv(target).height == 4
+
+
+@pytest.mark.parametrize("unicode", [True, False])
+async def test_names_are_shown_and_never_acted_upon(rows: pl.DataFrame, *, unicode: bool) -> None:
+    async with app_on(rows, unicode=unicode).run_test(size=(80, 24)) as pilot:
+        await shows(pilot, "[@click=")
+        assert screen_text(pilot.app).isascii()
+        assert all(line.isprintable() for line in screen_lines(pilot.app))
+        await pilot.press("q")
+    assert pilot.app.return_value == 0
