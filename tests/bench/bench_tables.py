@@ -1,6 +1,8 @@
 """Cost of opening and reading tables, as a multiple of what polars takes for the same columns.
 
 Usage: python tests/bench/bench_tables.py [ROWS CHANNELS]
+
+Without a shape: 10,000 x 1,000, 1,000 x 20,000 and 1,000,000 x 100. Memory: see bench_memory.py.
 """
 
 import statistics
@@ -18,6 +20,7 @@ from screener.tables import open_table, spans
 from screener.tables.table import Table
 
 REPEATS = 9
+SHAPES = ((10_000, 1_000), (1_000, 20_000), (1_000_000, 100))
 
 
 def seconds(work: Callable[[], object]) -> float:
@@ -48,7 +51,10 @@ def read_columns(path: Path, width: int, names: list[str]) -> None:
 
 def bench_csv(folder: Path, frame: pl.DataFrame) -> None:
     """Text tables: clean, with a text column, and with one word late in the file."""
-    stamps = [f"2024-01-01 {row // 3600:02}:{row // 60 % 60:02}:{row % 60:02}" for row in range(len(frame))]
+    stamps = [
+        f"2024-01-{1 + row // 86400:02} {row // 3600 % 24:02}:{row // 60 % 60:02}:{row % 60:02}"
+        for row in range(len(frame))
+    ]
     words = [str(value) for value in frame["ch0"]]
     words[-5] = "OVER"
     tables = {
@@ -84,15 +90,21 @@ def bench_parquet(folder: Path, frame: pl.DataFrame) -> None:
     )
 
 
-def main() -> None:
-    """Measure one shape; 10,000 x 1,000 by default."""
-    rows, channels = (int(word) for word in sys.argv[1:3]) if len(sys.argv) > 2 else (10_000, 1_000)
+def bench_shape(rows: int, channels: int) -> None:
+    """One shape in every format."""
     readings = np.random.default_rng(1).normal(size=(rows, channels)).round(6)
     frame = pl.DataFrame(readings, schema=[f"ch{number}" for number in range(channels)])
-    print(f"{rows:,} rows x {channels:,} channels, medians of {REPEATS}: screener, polars, ratio")
+    print(f"{rows:,} rows x {channels:,} channels, medians of {REPEATS}: screener, polars, ratio", flush=True)
     with tempfile.TemporaryDirectory() as name:
         bench_csv(Path(name), frame)
         bench_parquet(Path(name), frame)
+
+
+def main() -> None:
+    """Measure the shape given, or those of the issue."""
+    shapes = [(int(sys.argv[1]), int(sys.argv[2]))] if len(sys.argv) > 2 else SHAPES
+    for rows, channels in shapes:
+        bench_shape(rows, channels)
 
 
 if __name__ == "__main__":

@@ -1,0 +1,93 @@
+"""Cost of finding the conditions of a block over np.sort of the same block, one thread against one thread.
+
+python tests/bench/bench_conditions.py
+"""
+
+import time
+from collections.abc import Callable
+
+import numpy as np
+from numpy.typing import NDArray
+from threadpoolctl import threadpool_limits
+
+from screener.stats.conditions import find_conditions
+from screener.stats.conditions.clipping import find_clipping
+from screener.stats.conditions.repeats import find_repeats
+from screener.stats.conditions.resolution import find_lattice
+from screener.stats.conditions.row_pass import pass_over
+from screener.stats.conditions.serial import serial_dependence
+from screener.stats.ordering import sort_in_place
+
+Readings = NDArray[np.float64]
+
+CHANNELS, ROWS = 1000, 10_000
+
+
+def least(works: dict[str, Callable[[], object]], rounds: int = 7) -> dict[str, float]:
+    """Least seconds of each of several works, done in turn so that a busy moment hits all alike."""
+    seconds = dict.fromkeys(works, np.inf)
+    for _ in range(rounds):
+        for name, work in works.items():
+            started = time.perf_counter()
+            work()
+            seconds[name] = min(seconds[name], time.perf_counter() - started)
+    return seconds
+
+
+def blocks() -> dict[str, Readings]:
+    """What is measured: independent, rounded, incomplete, serial and clipped readings."""
+    rng = np.random.default_rng(1)
+    plain = 20.0 + rng.standard_normal((CHANNELS, ROWS))
+    rounded = np.rint(plain / 0.1) * 0.1
+    incomplete = np.where(rng.random(plain.shape) < 0.02, np.nan, plain)
+    serial = np.cumsum(plain - 20.0, axis=1)
+    serial[:, 100:] -= serial[:, :-100].copy()
+    clipped = np.minimum(rounded, 21.0)
+    return {
+        "unrounded": plain,
+        "rounded to 0.1 sd": rounded,
+        "2 % missing": incomplete,
+        "serial to lag 100": serial,
+        "rounded, 16 % clipped": clipped,
+    }
+
+
+def main() -> None:
+    """Print the ratios, each part and all together."""
+    print(f"{CHANNELS:,} x {ROWS:,}, one thread; times over np.sort of the same block")
+    head = ("sort ns/reading", "row pass", "serial", "lattice", "clipping", "repeats", "all")
+    print(f"{'':24}" + "".join(f"{word:>16}" for word in head))
+    for name, readings in blocks().items():
+        ordered = readings.copy()
+        n = sort_in_place(ordered)
+        passed, lattice = pass_over(readings, ordered, n), find_lattice(ordered, n)
+        ones = np.ones(CHANNELS)
+        room = readings.copy()
+
+        def refill(room: Readings = room, readings: Readings = readings) -> None:
+            room[...] = readings
+
+        def refill_and_sort(room: Readings = room, readings: Readings = readings) -> None:
+            room[...] = readings
+            room.sort(axis=1)
+
+        seconds = least(
+            {
+                "refill": refill,
+                "sort": refill_and_sort,
+                "row pass": lambda r=readings, o=ordered, n=n: pass_over(r, o, n),
+                "serial": lambda p=passed, n=n, r=readings: serial_dependence(p.resolutions, n, r),
+                "lattice": lambda o=ordered, n=n: find_lattice(o, n),
+                "clipping": lambda o=ordered, n=n, t=lattice, i=ones: find_clipping(o, n, t, i),
+                "repeats": lambda o=ordered, n=n, t=lattice, i=ones: find_repeats(o, n, t, i),
+                "all": lambda r=readings, o=ordered, n=n: find_conditions(r, o, n),
+            }
+        )
+        floor = seconds["sort"] - seconds["refill"]
+        ratios = "".join(f"{seconds[part] / floor:16.2f}" for part in head[1:])
+        print(f"{name:24}{1e9 * floor / readings.size:16.2f}{ratios}")
+
+
+if __name__ == "__main__":
+    with threadpool_limits(1):
+        main()
