@@ -3,6 +3,7 @@
 from screener.plots.canvas import Charset
 from screener.plots.four import histogram, histogram_plot, lag_plot, run_order_plot
 from screener.plots.quantile import QuantileView, difference_of, quantile_plot, quantile_view, tail_of
+from screener.plots.shape import shape_plot
 
 __all__ = [
     "Charset",
@@ -14,5 +15,6 @@ __all__ = [
     "quantile_plot",
     "quantile_view",
     "run_order_plot",
+    "shape_plot",
     "tail_of",
 ]

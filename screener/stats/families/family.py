@@ -38,6 +38,8 @@ class ShapeGrid:
     """The shape parameters at coordinates, one array for each axis."""
     coordinates: Callable[..., tuple[float, ...]]
     """The coordinates of shape parameters: the inverse, for single numbers."""
+    coordinate_name: str = ""
+    """What the coordinate of a single shape is, for the axis of a plot."""
 
     @property
     def counts(self) -> tuple[int, ...]:

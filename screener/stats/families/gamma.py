@@ -27,7 +27,7 @@ FAMILY = Family(
     support=Support.HALF_LINE,
     quantile=quantile,
     arises_from="sums of waiting times",
-    shapes=ShapeGrid(("k",), ((0.02, 2.0, 21),), parameters, lambda k: (k**-0.5,)),
+    shapes=ShapeGrid(("k",), ((0.02, 2.0, 21),), parameters, lambda k: (k**-0.5,), "1/sqrt(k)"),
     typical=((0.5,), (2.0,), (9.0,), (100.0,)),
     costly=True,
 )
