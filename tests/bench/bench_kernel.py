@@ -6,6 +6,8 @@ python tests/bench/bench_kernel.py
 import time
 import tracemalloc
 from collections.abc import Callable
+from concurrent.futures import ThreadPoolExecutor
+from functools import partial
 
 import numpy as np
 from numpy.typing import NDArray
@@ -66,6 +68,9 @@ def main() -> None:
     readings = block(100, 10_000, 0.0)
     loop = best(lambda r: [stats.probplot(channel) for channel in r], readings, 2)
     print(f"a loop of scipy.stats.probplot, normal only: {10 * loop / floor:.0f} (from 100 channels)")
+    readings = block(2000, 10_000, 0.02)
+    one, two = (best(partial(in_threads, jobs=jobs), readings, 3) for jobs in (1, 2))
+    print(f"two threads on two cores: {one / two:.2f} times one (blocks of 50 channels)")
     tracemalloc.start()
     copy = block(1000, 10_000, 0.02)
     tracemalloc.reset_peak()
@@ -76,6 +81,12 @@ def main() -> None:
     print(f"memory beyond the block: {beyond / copy.nbytes:.2f} of the block ({beyond / 1e6:.0f} MB)\n")
     growth("readings a channel", [(max(10, 3_000_000 // n), n) for n in (100, 1000, 10_000, 100_000, 1_000_000)], 1)
     growth("channels", [(channels, 1000) for channels in (10, 100, 1000, 10_000, 20_000)], 0)
+
+
+def in_threads(readings: Readings, jobs: int) -> None:
+    """Score blocks of 50 channels in that many threads."""
+    with ThreadPoolExecutor(jobs) as pool:
+        list(pool.map(score_all, [readings[first : first + 50] for first in range(0, len(readings), 50)]))
 
 
 def growth(name: str, shapes: list[tuple[int, int]], axis: int) -> None:
