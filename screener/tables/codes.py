@@ -23,14 +23,16 @@ _FEWEST_OTHERS = 3
 _BATCH_READINGS = 8_000_000
 
 
-def proposed_codes(frame: pl.LazyFrame, columns: Sequence[str], rows: int, *, held: bool) -> tuple[Proposal, ...]:
+def proposed_codes(frame: pl.DataFrame | pl.LazyFrame, columns: Sequence[str], rows: int) -> tuple[Proposal, ...]:
     """The values that look like codes for a missing reading, those in most cells first."""
     if rows < _FEWEST_CELLS + _FEWEST_OTHERS or not columns:
         return ()
     found: dict[str, list[int]] = {}
-    for batch in _batches(columns, rows, held=held):
-        part = frame.collect() if held else frame.select(batch).collect()
-        part = part if part.width == len(batch) else part.select(batch)
+    for batch in _batches(columns, rows, held=isinstance(frame, pl.DataFrame)):
+        if isinstance(frame, pl.DataFrame) and frame.width == len(batch):
+            part = frame
+        else:
+            part = frame.lazy().select(batch).collect()
         for column in _far_reaching(part):
             for value, cells in _codes(column.cast(pl.Float64).to_numpy()):
                 found.setdefault(_written(value, column.dtype), []).append(cells)

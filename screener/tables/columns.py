@@ -51,7 +51,9 @@ def reason_for_type(dtype: pl.DataType) -> str:
     return "several values or raw bytes in each cell, not one number"
 
 
-def unfit(frame: pl.LazyFrame, columns: Sequence[str], rows: int, shown: Mapping[str, str]) -> dict[str, str]:
+def unfit(
+    frame: pl.DataFrame | pl.LazyFrame, columns: Sequence[str], rows: int, shown: Mapping[str, str]
+) -> dict[str, str]:
     """For each numeric column that is constant, empty, a counter, a time, an identifier, a code or a flag: the reason.
 
     The first rows clear most columns; only the rest is read to the end, some at a time. `shown` gives each
@@ -67,7 +69,7 @@ def unfit(frame: pl.LazyFrame, columns: Sequence[str], rows: int, shown: Mapping
     width = max(1, _BATCH_READINGS // rows)
     for start in range(0, len(suspects), width):
         batch = suspects[start : start + width]
-        readings = readings_of(frame.select(reading(*batch)))
+        readings = readings_of(frame.lazy().select(reading(*batch)))
         reasons |= {column: _reason(row, shown[column]) for column, row in zip(batch, readings, strict=True)}
     return {column: reason for column, reason in reasons.items() if reason}
 
@@ -78,9 +80,9 @@ def readings_of(frame: pl.LazyFrame) -> NDArray[np.float64]:
     return readings
 
 
-def glance(frame: pl.LazyFrame, columns: Sequence[str], rows: int) -> NDArray[np.float64]:
+def glance(frame: pl.DataFrame | pl.LazyFrame, columns: Sequence[str], rows: int) -> NDArray[np.float64]:
     """float64[columns, rows], the first rows of the columns."""
-    part = frame.head(rows).collect()
+    part = frame.head(rows).lazy().collect() if isinstance(frame, pl.LazyFrame) else frame.head(rows)
     if part.width != len(columns):
         part = part.select(columns)
     if any(dtype != pl.Float64 for dtype in part.dtypes):

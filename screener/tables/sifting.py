@@ -41,6 +41,8 @@ class Sifted:
     above: Mapping[str, int] = field(default_factory=dict)
     units: Mapping[str, str] = field(default_factory=dict)
     """The unit that follows the numbers of a column."""
+    whole: pl.DataFrame | None = None
+    """What the frame gives, where it was computed on the way."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -69,14 +71,17 @@ def sift(raw: RawTable, shown: Mapping[str, str], choice: Choice, missing: Seque
     reasons |= text.reasons
     numeric = [column for column in schema if column not in reasons]
     frame, codes = _without_codes(text.frame, numeric, missing, held=raw.held)
-    unfit_reasons = unfit(frame, [column for column in schema if column not in reasons], raw.rows, shown)
+    whole = frame.collect() if raw.held else None
+    unfit_reasons = unfit(
+        frame if whole is None else whole, [column for column in schema if column not in reasons], raw.rows, shown
+    )
     by_name = {column for at, column in enumerate(schema) if at in choice.by_name}
     reasons |= {c: why for c, why in unfit_reasons.items() if not (c in by_name and why.startswith(GUESSES))}
     columns = tuple(column for column in schema if column not in reasons)
-    proposals = proposed_codes(frame, columns, raw.rows, held=raw.held)
+    proposals = proposed_codes(frame if whole is None else whole, columns, raw.rows)
     remarks = (*text.remarks, *codes, *(proposal.sentence() for proposal in proposals))
     if not mixed and len(columns) == len(wanted):
-        return Sifted(frame, columns, reasons, remarks, proposals)
+        return Sifted(frame, columns, reasons, remarks, proposals, whole=whole)
     if text.forms is None:
         return Sifted(_only(frame, columns), columns, reasons, remarks, proposals)
     units = {column: form.suffix for column, form in text.forms.by_column.items()}
