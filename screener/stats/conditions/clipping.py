@@ -1,0 +1,125 @@
+"""Clipping: readings piled up at the least or the greatest value of a channel.
+
+Unrounded readings never repeat by chance, so equal extreme readings are clipped ones. On a lattice the extreme value is
+compared with what the values next to it let expect, in two ways:
+
+* it holds at least twice as many readings as the value beside it, and the values inside do not rise so towards the end;
+* or the counts at all values inside are those of a rounded normal channel (a straight line on normal probability
+  paper), continued beyond the extreme value by readings of which none is there.
+"""
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+from scipy.special import ndtr, ndtri
+
+from screener.stats.conditions.counting import FloatArray, IntArray, at_rank, count_below, noise
+from screener.stats.conditions.resolution import Lattice
+
+BoolArray = NDArray[np.bool_]
+
+FEWEST = 3
+"""Equal extreme readings of a channel without a step that are no coincidence; two among few readings without ties."""
+FEW_READINGS = 200
+PILE, SURE = 2.0, 2.5
+"""Times the expected count, and standard errors above it, from which a lattice value is piled up."""
+ABSENT = 15.0
+"""Readings that a normal channel would have beyond its extreme value; the chance to see none is exp(-15)."""
+PLACES, STRAIGHT = 9, 3.0
+"""Places between the ends where the normal line is checked, and how far it may be off, in standard errors."""
+
+
+@dataclass(frozen=True, slots=True)
+class Clipping:
+    """Readings at the ends of each of C channels."""
+
+    low: IntArray
+    """[C] clipped readings at the least value; 0 where it is not clipped."""
+    high: IntArray
+    at_low: IntArray
+    """[C] readings equal to the least value, clipped or not."""
+    at_high: IntArray
+
+
+def find_clipping(ordered: FloatArray, n: IntArray, lattice: Lattice, inflation: FloatArray) -> Clipping:
+    """Clipping of sorted readings; inflation[C] is by how much serial dependence widens the variance of counts."""
+    at_low, beside_low = _end_counts(ordered, n, lattice, high=False)
+    at_high, beside_high = _end_counts(ordered, n, lattice, high=True)
+    rounded = lattice.step > 0
+    low, high = (_repeated(at, n, lattice.ties) & ~rounded for at in (at_low, at_high))
+    # Beyond a high level readings come in smaller clusters than the variance of the whole record says.
+    clusters = np.sqrt(inflation)
+    low |= rounded & _piled(at_low, beside_low, clusters)
+    high |= rounded & _piled(at_high, beside_high, clusters)
+    where = np.flatnonzero(rounded & (n > 2 * ABSENT))
+    if where.size:
+        cut_low, cut_high = _cut_off(ordered, n, lattice, inflation, where)
+        low[where] |= cut_low
+        high[where] |= cut_high
+    varied = (n > 0) & (at_low < n)
+    return Clipping(np.where(low & varied, at_low, 0), np.where(high & varied, at_high, 0), at_low, at_high)
+
+
+def _end_counts(ordered: FloatArray, n: IntArray, lattice: Lattice, *, high: bool) -> tuple[IntArray, IntArray]:
+    """Readings at an end's value, [C], and at the two lattice values inside it, [C, 2]."""
+    end = at_rank(ordered, np.maximum(n - 1, 0)[:, None] if high else np.zeros((n.size, 1), dtype=np.int64))
+    half = np.maximum(lattice.step / 2.0, noise(ordered, n))[:, None]
+    sign = -1.0 if high else 1.0
+    some = n > 0
+    limits = np.where(some[:, None], end + sign * half * np.array([1.0, 3.0, 5.0]), 0.0)
+    below = count_below(ordered, n, limits)
+    inside = n[:, None] - below if high else below
+    return inside[:, 0], np.diff(inside, axis=1)
+
+
+def _repeated(at: IntArray, n: IntArray, ties: FloatArray) -> BoolArray:
+    """Whether the extreme reading of a channel without a step repeats beyond coincidence."""
+    two: BoolArray = (at == 2) & (n < FEW_READINGS) & (ties <= 2.0 / np.maximum(n - 1, 1))
+    return two | (at >= FEWEST)
+
+
+def _piled(at: IntArray, beside: IntArray, inflation: FloatArray) -> BoolArray:
+    """Whether an extreme lattice value holds more than its neighbours let expect."""
+    near, next_ = beside[:, 0].astype(np.float64), beside[:, 1].astype(np.float64)
+    # A law that rises towards its end (a sine's) rises further in its last value.
+    expected = np.maximum(near, near**2 / np.maximum(next_, 1.0))
+    error = np.sqrt((at + expected) * inflation)
+    piled: BoolArray = (at >= FEWEST) & (at >= PILE * expected) & (at - expected > SURE * error)
+    return piled
+
+
+def _cut_off(
+    ordered: FloatArray, n: IntArray, lattice: Lattice, inflation: FloatArray, where: IntArray
+) -> tuple[BoolArray, BoolArray]:
+    """Whether the channels at `where` are rounded normal ones whose readings beyond an extreme value are not there."""
+    count, step = n[where].astype(np.float64), lattice.step[where]
+    least = ordered[where, 0] + 0.5 * step
+    values = np.rint((ordered[where, n[where] - 1] - ordered[where, 0]) / step) - 1
+    place = np.rint(np.linspace(0.0, 1.0, PLACES) * np.maximum(values, 0.0)[:, None])
+    share = count_below(ordered, n, least[:, None] + place * step[:, None], where) / count[:, None]
+    usable = (share > 0) & (share < 1)
+    line = np.where(usable, share, 0.5)
+    score = ndtri(line)
+    density = np.exp(-0.5 * score**2) / np.sqrt(2.0 * np.pi)
+    weight = np.where(usable, density**2 / (line * (1.0 - line)), 0.0)
+    slope, at_zero = _line(place, score, weight)
+    fitted = ndtr(at_zero[:, None] + slope[:, None] * place)
+    error = np.sqrt(np.maximum(line * (1.0 - line) * inflation[where, None] / count[:, None], 1e-300))
+    straight = np.all(~usable | (np.abs(line - fitted) <= STRAIGHT * error), axis=1) & (values >= 2) & (slope > 0)
+    independent = count / np.sqrt(inflation[where])
+    missing_low = independent * ndtr(score[:, 0] - slope)
+    missing_high = independent * ndtr(-score[:, -1] - slope)
+    return (
+        straight & usable[:, 0] & (missing_low >= ABSENT),
+        straight & usable[:, -1] & (missing_high >= ABSENT),
+    )
+
+
+def _line(x: FloatArray, y: FloatArray, weight: FloatArray) -> tuple[FloatArray, FloatArray]:
+    """Slope and value at 0 of the weighted straight line through each row."""
+    total = np.maximum(weight.sum(axis=1), 1e-300)
+    middle_x, middle_y = (weight * x).sum(axis=1) / total, (weight * y).sum(axis=1) / total
+    off = x - middle_x[:, None]
+    slope = (weight * off * y).sum(axis=1) / np.maximum((weight * off**2).sum(axis=1), 1e-300)
+    return slope, middle_y - slope * middle_x

@@ -1,0 +1,36 @@
+"""Counting in sorted readings without passing over them: bisection of all channels at once."""
+
+import numpy as np
+from numpy.typing import NDArray
+
+FloatArray = NDArray[np.float64]
+IntArray = NDArray[np.int64]
+
+NOISE = 2.0**-50
+"""Decimal readings of one lattice value differ by at most this share of the channel's largest reading."""
+
+
+def count_below(ordered: FloatArray, n: IntArray, limit: FloatArray, where: IntArray | None = None) -> IntArray:
+    """How many of the first n sorted readings lie below each limit, int64[c, k]; limit is float64[c, k].
+
+    Of the channels at `where`, int64[c], or of all.
+    """
+    channels = (np.arange(n.size) if where is None else where)[:, None]
+    low = np.zeros(limit.shape, dtype=np.int64)
+    high = np.broadcast_to(n[channels], limit.shape).copy()
+    for _ in range(int(np.max(high, initial=0)).bit_length()):
+        middle = (low + high) // 2
+        inside = (low < high) & (ordered[channels, np.minimum(middle, ordered.shape[1] - 1)] < limit)
+        low, high = np.where(inside, middle + 1, low), np.where(inside, high, np.maximum(middle, low))
+    return low
+
+
+def at_rank(ordered: FloatArray, rank: IntArray) -> FloatArray:
+    """The sorted readings at ranks int64[C, k], 0-based."""
+    return np.take_along_axis(ordered, rank, axis=1)
+
+
+def noise(ordered: FloatArray, n: IntArray) -> FloatArray:
+    """Below which difference two readings of a channel are the same, float64[C]."""
+    last = at_rank(ordered, np.maximum(n - 1, 0)[:, None])[:, 0]
+    return NOISE * np.where(n > 0, np.maximum(np.abs(ordered[:, 0]), np.abs(last)), 0.0)

@@ -1,0 +1,79 @@
+"""Stuck stretches: runs of equal readings longer than the step and serial dependence explain.
+
+If a reading equals the one before with probability q, whatever happened earlier, a record of n readings holds n q^(L-1)
+runs of at least L equal ones. q is taken large, from the step (an AR(1) that starts in the middle of its commonest
+value), from the commonest value's share, and from how often runs of two go on to three.
+"""
+
+from dataclasses import dataclass
+
+import numpy as np
+from scipy.special import ndtr
+
+from screener.stats.conditions import bits
+from screener.stats.conditions.bits import Bits
+from screener.stats.conditions.counting import FloatArray, IntArray
+
+CHANCE = 1e-4
+"""Expected number of runs in a record from which a run counts as stuck."""
+SHORTEST = 5
+"""No shorter run counts."""
+
+
+@dataclass(frozen=True, slots=True)
+class Stuck:
+    """Runs of equal readings of each of C channels."""
+
+    longest: IntArray
+    """[C] readings in the longest run of equal neighbours; 1 where no two are equal, 0 without readings."""
+    explained: IntArray
+    """[C] readings in the longest run that the step and serial dependence explain."""
+    readings: IntArray
+    """[C] readings in longer runs."""
+
+
+def find_stuck(same: Bits, n: IntArray, step: FloatArray, rho: FloatArray, commonest: FloatArray) -> Stuck:
+    """Stuck stretches given the bits of equal neighbours.
+
+    step is in standard deviations, rho the autocorrelation at lag 1, commonest the largest share of one value, all [C].
+    """
+    channels = np.flatnonzero(np.any(same != 0, axis=1))
+    longest, inside = np.where(n > 0, 1, 0).astype(np.int64), np.zeros(n.size, dtype=np.int64)
+    explained = np.maximum(longest, SHORTEST)
+    if channels.size:
+        runs = same[channels]
+        longest[channels] = bits.longest_run(runs) + 1
+        stays = _stays(runs, longest[channels], step[channels], rho[channels], commonest[channels])
+        explained[channels] = _explained(n[channels], stays)
+        beyond = channels[longest[channels] > explained[channels]]
+        if beyond.size:
+            inside[beyond] = _inside_runs(same[beyond], explained[beyond])
+    return Stuck(longest, explained, inside)
+
+
+def _stays(runs: Bits, longest: IntArray, step: FloatArray, rho: FloatArray, commonest: FloatArray) -> FloatArray:
+    """The probability that a reading equals the one before, at most, [c]."""
+    follows = np.clip(np.nan_to_num(rho), 0.0, 0.9999)
+    by_step = 2.0 * ndtr(0.5 * step / np.sqrt(1.0 - follows**2)) - 1.0
+    two = bits.count(runs) - (longest - 1)
+    three = bits.count(runs & bits.later(runs, 1)) - np.maximum(longest - 2, 0)
+    # As many runs of two as that are needed to say how they go on.
+    goes_on = np.where(two >= 20, three / np.maximum(two, 1), 0.0)
+    return np.clip(np.maximum(np.maximum(by_step, commonest), goes_on), 1e-3, 0.9999)
+
+
+def _explained(n: IntArray, stays: FloatArray) -> IntArray:
+    """Readings in the longest run that is no surprise, [c]."""
+    longest = 1.0 + np.log(np.maximum(n, 1) / CHANCE) / -np.log(stays)
+    return np.maximum(np.ceil(longest), SHORTEST).astype(np.int64)
+
+
+def _inside_runs(same: Bits, explained: IntArray) -> IntArray:
+    """Readings in runs of equal ones longer than explained, [c]."""
+    rows = 64 * same.shape[1]
+    equal = np.zeros((len(same), rows + 2), dtype=np.int8)
+    equal[:, 1:-1] = bits.unpacked(same, rows)
+    change = np.diff(equal, axis=1)
+    channel, first = np.nonzero(change == 1)
+    length = np.nonzero(change == -1)[1] - first + 1
+    return np.bincount(channel, np.where(length > explained[channel], length, 0), len(same)).astype(np.int64)
