@@ -1,7 +1,7 @@
 """A fingerprint of a file's content.
 
-Up to `WHOLE_BYTES` every byte counts. A larger file is known by its size, its time of change and 64 pieces of 1 MB
-spread evenly over it, so that a table of many gigabytes is not read twice; an edit between those pieces
+Up to `WHOLE_BYTES` every byte counts. A larger file is known by its size, its time of change and 64 pieces of 256 kB
+spread evenly over it, so that a large table is not read twice; an edit between those pieces
 is noticed by the time of change.
 """
 
@@ -9,9 +9,10 @@ import hashlib
 from collections.abc import Sequence
 from pathlib import Path
 
-WHOLE_BYTES = 256 << 20
+WHOLE_BYTES = 64 << 20
 _PIECES = 64
 _PIECE_BYTES = 1 << 20
+_SAMPLED_BYTES = 1 << 18
 
 
 def fingerprint(path: Path, *, size: int | None = None, whole_bytes: int = WHOLE_BYTES) -> str:
@@ -39,9 +40,9 @@ def _whole(path: Path, size: int) -> str:
 def _sampled(path: Path, size: int) -> str:
     digest = hashlib.sha256()
     digest.update(f"{size} {path.stat().st_mtime_ns} ".encode())
-    last = max(0, size - _PIECE_BYTES)
+    last = max(0, size - _SAMPLED_BYTES)
     with path.open("rb") as file:
         for piece in range(_PIECES):
             file.seek(last * piece // (_PIECES - 1))
-            digest.update(file.read(_PIECE_BYTES))
+            digest.update(file.read(_SAMPLED_BYTES))
     return digest.hexdigest()
