@@ -41,6 +41,13 @@ def later(bits: Bits, rows: int) -> Bits:
     return moved
 
 
+def earlier(bits: Bits) -> Bits:
+    """Bit i is bit i - 1 of the given ones."""
+    moved = bits << np.uint64(1)
+    moved[:, 1:] |= bits[:, :-1] >> np.uint64(63)
+    return moved
+
+
 def count(bits: Bits) -> IntArray:
     """How many bits of each channel are set."""
     found: IntArray = np.bitwise_count(bits).sum(axis=1, dtype=np.int64)

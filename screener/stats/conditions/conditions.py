@@ -5,17 +5,17 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from screener.stats.conditions import bits
-from screener.stats.conditions.bits import Bits
 from screener.stats.conditions.clipping import Clipping, find_clipping
 from screener.stats.conditions.counting import FloatArray, IntArray
 from screener.stats.conditions.drift import find_trend
 from screener.stats.conditions.gaps import find_gaps
+from screener.stats.conditions.rails import apart_from_rails
 from screener.stats.conditions.repeats import Repeats, find_repeats
 from screener.stats.conditions.resolution import find_lattice, sample_ranks
 from screener.stats.conditions.row_pass import RowPass, pass_over
 from screener.stats.conditions.serial import Serial, serial_dependence
 from screener.stats.conditions.stuck import Stuck, find_stuck
+from screener.stats.ordering import brought_near
 
 BoolArray = NDArray[np.bool_]
 
@@ -23,11 +23,9 @@ ROUNDED_FROM = 1.0
 """A step matters from this many standard deviations over the square root of n."""
 FEWEST_EFFECTIVE = 20.0
 """A record worth fewer independent readings does not define a marginal distribution."""
-TOGETHER = 16
-"""Clipped channels worked on at a time."""
 SLOW = 2.0
 """tau_4 below which a short record is short, not drifting."""
-LASTING = 0.5
+LASTING = 0.45
 """Autocorrelation over a sixteenth of the record from which it has wandered rather than varied about a level."""
 
 
@@ -70,7 +68,7 @@ class Conditions:
     slow: FloatArray
     """Autocorrelation over about a sixteenth of the record."""
     drifting: BoolArray
-    """The record does not define a marginal distribution: its effective n is below 20, it still correlates 0.5 over a
+    """The record does not define a marginal distribution: its effective n is below 20, it still correlates 0.45 over a
     sixteenth of the record, or its rise is large beyond chance."""
     missing: IntArray
     longest_gap: IntArray
@@ -84,6 +82,8 @@ def find_conditions(readings: FloatArray, ordered: FloatArray, n: IntArray) -> C
 
     ordered are the same readings sorted, and n[C] how many of them are finite, as `sort_in_place` leaves them.
     """
+    ordered, exponent = brought_near(ordered, n)
+    readings = _brought_along(readings, exponent)
     passed = pass_over(readings, ordered, n)
     spread = _spread(passed)
     dependence = serial_dependence(passed.resolutions, n, readings)
@@ -93,7 +93,7 @@ def find_conditions(readings: FloatArray, ordered: FloatArray, n: IntArray) -> C
     ar = _same_tau(dependence)
     clipping = find_clipping(ordered, n, lattice, (1.0 + ar**2) / (1.0 - ar**2))
     repeats = find_repeats(ordered, n, sample, lattice, spread)
-    same = _off_the_rails(passed.same, readings, ordered, n, lattice.step, clipping)
+    same, clipping = apart_from_rails(passed.same, readings, ordered, n, lattice.step, clipping)
     stuck = find_stuck(same, n, step_in_sd, dependence.rho[:, 1], repeats.count / np.maximum(n, 1))
     repeated = _neither_clipped_nor_stuck(repeats, ordered, n, lattice.step, clipping, stuck)
     trend = find_trend(passed.sums, passed.counts, np.ldexp(spread, -passed.exponent) ** 2)
@@ -103,14 +103,14 @@ def find_conditions(readings: FloatArray, ordered: FloatArray, n: IntArray) -> C
     wandered = unsettled & dependence.found & (dependence.tau_4 >= SLOW)
     return Conditions(
         n=n,
-        step=lattice.step,
+        step=_back(lattice.step, exponent),
         step_in_sd=step_in_sd,
         rounded=step_in_sd * np.sqrt(n) >= ROUNDED_FROM,
         clipped_low=clipping.low,
         clipped_high=clipping.high,
         longest_run=stuck.longest,
         stuck=stuck.readings,
-        repeated_value=np.where(repeated > 0, repeats.value, np.nan),
+        repeated_value=np.where(repeated > 0, _back(repeats.value, exponent), np.nan),
         repeated=repeated,
         serial=dependence.found,
         rho_1=dependence.rho[:, 1],
@@ -127,6 +127,23 @@ def find_conditions(readings: FloatArray, ordered: FloatArray, n: IntArray) -> C
     )
 
 
+def _brought_along(readings: FloatArray, exponent: IntArray) -> FloatArray:
+    """Readings scaled by 2^-exponent, the same array where none is."""
+    extreme = np.flatnonzero(exponent)
+    if extreme.size == 0:
+        return readings
+    near = readings.copy()
+    near[extreme] = np.ldexp(near[extreme], -exponent[extreme, None])
+    return near
+
+
+def _back(values: FloatArray, exponent: IntArray) -> FloatArray:
+    """Values in the unit of the readings again, at most the largest number there is."""
+    largest = np.finfo(np.float64).max
+    with np.errstate(over="ignore", under="ignore"):
+        return np.clip(np.ldexp(values, exponent), -largest, largest)
+
+
 def _greatest(ordered: FloatArray, n: IntArray) -> FloatArray:
     return ordered[np.arange(n.size), np.maximum(n - 1, 0)]
 
@@ -141,25 +158,6 @@ def _same_tau(dependence: Serial) -> FloatArray:
     """The coefficient of the AR(1) with the same tau_4, [C]; 0 where no dependence was found."""
     size = ((dependence.tau_4 - 1.0) / (dependence.tau_4 + 1.0)) ** 0.25
     return np.where(dependence.found, np.copysign(size, np.nan_to_num(dependence.rho[:, 1])), 0.0)
-
-
-def _off_the_rails(
-    same: Bits, readings: FloatArray, ordered: FloatArray, n: IntArray, step: FloatArray, clipping: Clipping
-) -> Bits:
-    """The bits of equal neighbours without those at the ends of clipped channels, where runs are no surprise."""
-    railed = np.flatnonzero((clipping.low > 0) | (clipping.high > 0))
-    if railed.size == 0:
-        return same
-    kept = same.copy()
-    for first in range(0, railed.size, TOGETHER):
-        some = railed[first : first + TOGETHER]
-        half = step[some] / 2.0
-        low = np.where(clipping.low[some] > 0, ordered[some, 0] + half, -np.inf)[:, None]
-        high = np.where(clipping.high[some] > 0, _greatest(ordered, n)[some] - half, np.inf)[:, None]
-        rail = bits.empty(some.size, readings.shape[1])
-        bits.put((readings[some] <= low) | (readings[some] >= high), rail)
-        kept[some] &= ~rail
-    return kept
 
 
 def _neither_clipped_nor_stuck(

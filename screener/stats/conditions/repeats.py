@@ -12,7 +12,7 @@ BoolArray = NDArray[np.bool_]
 
 FEWEST, SHARE = 4, 0.01
 """Readings and share of the record that a value must exceed its expected count by."""
-TIMES, SURE = 3.0, 5.0
+TIMES, SURE = 2.5, 5.0
 """Times its expected count, and standard errors above it."""
 
 

@@ -18,6 +18,8 @@ CHANCE = 1e-4
 """Expected number of runs in a record from which a run counts as stuck."""
 SHORTEST = 5
 """No shorter run counts."""
+FEWEST_RUNS = 20
+"""Runs needed to say how often they go on."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -43,7 +45,7 @@ def find_stuck(same: Bits, n: IntArray, step: FloatArray, rho: FloatArray, commo
     if channels.size:
         runs = same[channels]
         longest[channels] = bits.longest_run(runs) + 1
-        stays = _stays(runs, longest[channels], step[channels], rho[channels], commonest[channels])
+        stays = _stays(runs, step[channels], rho[channels], commonest[channels])
         explained[channels] = _explained(n[channels], stays)
         beyond = channels[longest[channels] > explained[channels]]
         if beyond.size:
@@ -51,15 +53,26 @@ def find_stuck(same: Bits, n: IntArray, step: FloatArray, rho: FloatArray, commo
     return Stuck(longest, explained, inside)
 
 
-def _stays(runs: Bits, longest: IntArray, step: FloatArray, rho: FloatArray, commonest: FloatArray) -> FloatArray:
+def _stays(runs: Bits, step: FloatArray, rho: FloatArray, commonest: FloatArray) -> FloatArray:
     """The probability that a reading equals the one before, at most, [c]."""
     follows = np.clip(np.nan_to_num(rho), 0.0, 0.9999)
     by_step = 2.0 * ndtr(0.5 * step / np.sqrt(1.0 - follows**2)) - 1.0
-    two = bits.count(runs) - (longest - 1)
-    three = bits.count(runs & bits.later(runs, 1)) - np.maximum(longest - 2, 0)
-    # As many runs of two as that are needed to say how they go on.
-    goes_on = np.where(two >= 20, three / np.maximum(two, 1), 0.0)
-    return np.clip(np.maximum(np.maximum(by_step, commonest), goes_on), 1e-3, 0.9999)
+    seen = np.where(step > 0, np.maximum(by_step, commonest), 0.0)
+    return np.clip(np.maximum(seen, _goes_on(runs)), 1e-3, 0.9999)
+
+
+def _goes_on(runs: Bits) -> FloatArray:
+    """The share of the runs of two readings that go on to three, or, each time, of those of three to five, [c].
+
+    0 where there are too few to say. Runs are counted, not readings, so that a few long ones do not matter.
+    """
+    two = runs & ~bits.earlier(runs)
+    three = two & bits.later(runs, 1)
+    five = three & bits.later(runs, 2) & bits.later(runs, 3)
+    of_two, of_three, of_five = bits.count(two), bits.count(three), bits.count(five)
+    once = np.where(of_two >= FEWEST_RUNS, of_three / np.maximum(of_two, 1), 0.0)
+    twice = np.where(of_three >= FEWEST_RUNS, np.sqrt(of_five / np.maximum(of_three, 1)), 0.0)
+    return np.maximum(once, twice)
 
 
 def _explained(n: IntArray, stays: FloatArray) -> IntArray:

@@ -1,0 +1,36 @@
+"""Runs at the rails: a clipped channel rests at its extreme value again and again, a stuck one rests there once."""
+
+from dataclasses import replace
+
+import numpy as np
+
+from screener.stats.conditions import bits
+from screener.stats.conditions.bits import Bits
+from screener.stats.conditions.clipping import Clipping
+from screener.stats.conditions.counting import FloatArray, IntArray
+
+TOGETHER = 16
+"""Channels worked on at a time, so that they stay in the processor's cache."""
+HELD, LONG = 0.8, 10
+"""Share of an end's readings, and readings, in one run that make the channel stuck there rather than clipped."""
+
+
+def apart_from_rails(
+    same: Bits, readings: FloatArray, ordered: FloatArray, n: IntArray, step: FloatArray, clipping: Clipping
+) -> tuple[Bits, Clipping]:
+    """The bits of equal neighbours without runs at the ends of clipped channels; the clipping without stuck ends."""
+    if not (np.any(clipping.low) or np.any(clipping.high)):
+        return same, clipping
+    kept, low, high = same.copy(), clipping.low.copy(), clipping.high.copy()
+    greatest = ordered[np.arange(n.size), np.maximum(n - 1, 0)]
+    for sign, end, counted in ((1.0, ordered[:, 0], low), (-1.0, -greatest, high)):
+        railed = np.flatnonzero(counted)
+        for first in range(0, railed.size, TOGETHER):
+            some = railed[first : first + TOGETHER]
+            rail = bits.empty(some.size, readings.shape[1])
+            bits.put(sign * readings[some] <= (end + step / 2.0)[some, None], rail)
+            longest = bits.longest_run(rail & same[some]) + 1
+            held = longest >= np.maximum(HELD * counted[some], LONG)
+            kept[some] &= ~np.where(held[:, None], np.uint64(0), rail)
+            counted[some[held]] = 0
+    return kept, replace(clipping, low=low, high=high)
