@@ -50,6 +50,8 @@ def blocks() -> dict[str, Readings]:
         "2 % missing": incomplete,
         "serial to lag 100": serial,
         "rounded, 16 % clipped": clipped,
+        "50 channels, unrounded": plain[:50].copy(),
+        "50 channels, rounded": rounded[:50].copy(),
     }
 
 
@@ -71,7 +73,7 @@ def main() -> None:
         n = sort_in_place(ordered)
         passed, sample = pass_over(readings, ordered, n), sample_ranks(ordered, n)
         lattice = find_lattice(ordered, n, sample)
-        ones = np.ones(CHANNELS)
+        ones = np.ones(n.size)
         room = readings.copy()
         seconds = least(
             {

@@ -26,7 +26,9 @@ def count_below(ordered: FloatArray, n: IntArray, limit: FloatArray, where: IntA
 
 
 def at_rank(ordered: FloatArray, rank: IntArray) -> FloatArray:
-    """The sorted readings at ranks int64[C, k], 0-based."""
+    """The sorted readings at ranks int64[C, k], 0-based, or int64[1, k] for all channels alike."""
+    if len(rank) == 1:
+        return ordered[:, rank[0]]
     return np.take_along_axis(ordered, rank, axis=1)
 
 

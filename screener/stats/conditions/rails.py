@@ -23,12 +23,13 @@ def apart_from_rails(
         return same, clipping
     kept, low, high = same.copy(), clipping.low.copy(), clipping.high.copy()
     greatest = ordered[np.arange(n.size), np.maximum(n - 1, 0)]
-    for sign, end, counted in ((1.0, ordered[:, 0], low), (-1.0, -greatest, high)):
+    ends = ((np.less_equal, ordered[:, 0] + step / 2.0, low), (np.greater_equal, greatest - step / 2.0, high))
+    for beyond, end, counted in ends:
         railed = np.flatnonzero(counted)
         for first in range(0, railed.size, TOGETHER):
             some = railed[first : first + TOGETHER]
             rail = bits.empty(some.size, readings.shape[1])
-            bits.put(sign * readings[some] <= (end + step / 2.0)[some, None], rail)
+            bits.put(beyond(readings[some], end[some, None]), rail)
             longest = bits.longest_run(rail & same[some]) + 1
             held = longest >= np.maximum(HELD * counted[some], LONG)
             kept[some] &= ~np.where(held[:, None], np.uint64(0), rail)

@@ -58,11 +58,12 @@ class Lattice:
 def sample_ranks(ordered: FloatArray, n: IntArray) -> Sample:
     """A sample of sorted readings, float64[C, rows], of which the first n[C] are finite."""
     rows = ordered.shape[1]
-    rank, counted = _ranks(n, min(SAMPLE if rows <= MANY else LARGE_SAMPLE, max(rows - 1, 1)))
+    alike = n[:1] if n.size and np.all(n == n[0]) else n
+    rank, counted = _ranks(alike, min(SAMPLE if rows <= MANY else LARGE_SAMPLE, max(rows - 1, 1)))
     readings = at_rank(ordered, rank)
     same = noise(ordered, n)
     tied = counted & (at_rank(ordered, np.minimum(rank + 1, rows - 1)) - readings <= same[:, None])
-    return Sample(readings, counted, tied, same)
+    return Sample(readings, np.broadcast_to(counted, readings.shape), tied, same)
 
 
 def find_lattice(ordered: FloatArray, n: IntArray, sample: Sample) -> Lattice:

@@ -119,11 +119,11 @@ def _centre(
         equal &= flags[:, 1:]
         np.logical_not(flags, out=flags)
         bits.put(flags, absent)
-        inside[flags] = 0.0
+        np.copyto(inside, np.float32(0.0), where=flags)
     bits.put(equal, same)
     inside -= (np.vecdot(inside, room.ones) / np.maximum(n, 1).astype(np.float32))[:, None]
     if not complete:
-        inside[flags] = 0.0
+        np.copyto(inside, np.float32(0.0), where=flags)
 
 
 def _through(room: _Scratch, channels: int, rows: int, products: FloatArray) -> FloatArray:

@@ -39,15 +39,14 @@ def find_stuck(same: Bits, n: IntArray, step: FloatArray, rho: FloatArray, commo
 
     step is in standard deviations, rho the autocorrelation at lag 1, commonest the largest share of one value, all [C].
     """
-    channels = np.flatnonzero(np.any(same != 0, axis=1))
-    longest, inside = np.where(n > 0, 1, 0).astype(np.int64), np.zeros(n.size, dtype=np.int64)
-    explained = np.maximum(longest, SHORTEST)
-    if channels.size:
-        runs = same[channels]
-        longest[channels] = bits.longest_run(runs) + 1
-        stays = _stays(runs, step[channels], rho[channels], commonest[channels])
-        explained[channels] = _explained(n[channels], stays)
-        beyond = channels[longest[channels] > explained[channels]]
+    longest, inside = np.minimum(n, 1), np.zeros(n.size, dtype=np.int64)
+    explained = np.full(n.size, SHORTEST, dtype=np.int64)
+    equal = np.flatnonzero(np.any(same != 0, axis=1))
+    for first in range(0, equal.size, bits.TOGETHER):
+        some = equal[first : first + bits.TOGETHER]
+        longest[some] = bits.longest_run(same[some]) + 1
+        explained[some] = _explained(n[some], _stays(same[some], step[some], rho[some], commonest[some]))
+        beyond = some[longest[some] > explained[some]]
         if beyond.size:
             inside[beyond] = _inside_runs(same[beyond], explained[beyond])
     return Stuck(longest, explained, inside)
