@@ -75,6 +75,8 @@ class Plan:
     """What holds a channel: `columns`, `rows`, or `long` (each row a name and a value); empty means as found."""
     expect: tuple[str, ...] = ()
     """`PATTERN=FAMILY`: channels of such names are held against that family, instead of `family`; first match."""
+    match: bool = True
+    """Hold each channel against the critical value of a channel in its own condition, not the textbook one."""
     part: str = ""
     """The sheet, group or variable of a file that holds several; empty means the first that is a table."""
 
@@ -201,6 +203,12 @@ class BlockScores:
     """[C] sorted readings kept for the plot, at the ranks `stats.points.kept_ranks(n)`."""
     in_order: tuple[FloatArray, ...] = ()
     """[C] readings kept in row order, as `stats.row_order.kept_in_order` keeps them; empty when none are."""
+    conditions: tuple[str, ...] = ()
+    """[C] the conditions of the channel in words; empty where there is none."""
+    step: FloatArray | None = None
+    """[C] the resolution step, 0 where none was found."""
+    n_effective: FloatArray | None = None
+    """[C] the number of independent readings that a serial channel is worth."""
 
 
 @dataclass(frozen=True, slots=True)

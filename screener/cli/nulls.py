@@ -21,6 +21,7 @@ def info(positions: str) -> None:
     """Show what a null table holds, how it was made, and its Monte Carlo error."""
     from screener.cli.output import put
     from screener.screening.null_source import held_nulls
+    from screener.stats.null.matched import COEFFICIENTS, STEPS, samples_at
 
     nulls = held_nulls(positions)
     if nulls is None:
@@ -47,6 +48,14 @@ def info(positions: str) -> None:
     for row, size in enumerate(next(iter(nulls.shaped.values())).sizes):
         counts = sorted({int(shaped.samples[row]) for shaped in nulls.shaped.values()})
         lines.append(f"{size:>8,} {' or '.join(f'{count:,}' for count in counts)}")
+    if nulls.matched is not None:
+        sizes = nulls.matched.sizes
+        lines += [
+            "",
+            f"normal in its own condition: {sizes.size} sizes from {sizes[0]} to {sizes[-1]:,}, "
+            f"rounded to {STEPS[0]:g} to {STEPS[-1]:g} sd, AR(1) of 0 to {COEFFICIENTS[-1]:g}; "
+            f"{samples_at(sizes[-1]):,} to {samples_at(sizes[0]):,} samples each",
+        ]
     put(lines)
 
 
@@ -68,11 +77,11 @@ def build(positions: str, output: Path | None, seed: int, share: float, jobs: in
     from screener.screening.null_build import build, parts, write_arrays
     from screener.screening.null_source import built_path, null_folder
     from screener.screening.workers import usable_cores
-    from screener.stats.null.packing import packed, tasks
+    from screener.stats.null.packing import matched_tasks, packed, tasks
     from screener.stats.positions import rule_key
 
     rule = rule_key(positions)
-    wanted, folder = tasks(rule, seed, share), null_folder() / "parts"
+    wanted, folder = {**tasks(rule, seed, share), **matched_tasks(rule, seed)}, null_folder() / "parts"
     path = output or built_path(rule)
     with _explained():
         path.parent.mkdir(parents=True, exist_ok=True)

@@ -51,6 +51,12 @@ PLAN_OPTIONS = (
         metavar="GLOB=FAMILY",
         help="Hold channels of these names against another family, such as 'runout*=half-normal'.",
     ),
+    click.option(
+        "--match/--plain",
+        default=DEFAULTS.match,
+        show_default=True,
+        help="Critical values of a channel in its own condition (rounded, serial), or the textbook ones.",
+    ),
     click.option("--seed", type=int, default=DEFAULTS.seed, show_default=True, help="Seed of everything random."),
 )
 
@@ -105,6 +111,7 @@ def plan_from(given: dict[str, Any]) -> Plan:
         shape=given["shape"] or "",
         part=given["part"],
         expect=given["expect"],
+        match=given["match"],
     )
 
 

@@ -88,6 +88,12 @@ def _numbers(run: "RunFile", position: int, row: Row | None) -> list[str]:
     head = f"{channel.name}{counted}"
     if row["verdict"] == "not scored":
         return [head, f"not scored: {row['reason']}"]
+    condition = [f"conditions: {row['conditions']}"] if row["conditions"] else []
+    if row["plain_critical_r"] is not None and row["plain_critical_r"] != row["critical_r"]:
+        condition.append(
+            f"matched critical r {r_text(row['critical_r'])} for that condition, instead of the textbook "
+            f"{r_text(row['plain_critical_r'])}"
+        )
     sign = "<" if row["r"] < row["critical_r"] else ">="
     return [
         head,
@@ -95,6 +101,7 @@ def _numbers(run: "RunFile", position: int, row: Row | None) -> list[str]:
         f"r {r_text(row['r'])} {sign} critical {r_text(row['critical_r'])}",
         f"p {p_text(row['p'])}, q {p_text(row['q'])}, departure size {size_text(row['departure_size'])} "
         "(rms distance from the line, in standard deviations)",
+        *condition,
     ]
 
 

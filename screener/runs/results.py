@@ -26,7 +26,7 @@ DTYPES: dict[type, pl.DataType] = {int: pl.Int64(), float: pl.Float64(), str: pl
 _RESULTS = """
 SELECT score.position, channel.name, channel.unit, score.n, score.missing, score.reason,
     family.name, fit.r, fit.critical_r, fit.plain_critical_r, fit.p, fit.note,
-    near.name, near_fit.r, near_fit.p
+    near.name, near_fit.r, near_fit.p, score.conditions, score.step, score.n_effective
 FROM score JOIN channel USING (position)
 LEFT JOIN family ON family.id = score.held
 LEFT JOIN fit ON fit.family = score.held AND fit.position = score.position
@@ -38,6 +38,7 @@ _RESULT_FIELDS = {
     **{"position": int, "channel": str, "unit": str, "n": int, "missing": int, "reason": str},
     **{"family": str, "r": float, "critical_r": float, "plain_critical_r": float, "p": float, "fit_note": str},
     **{"closest": str, "closest_r": float, "closest_p": float},
+    **{"conditions": str, "step": float, "n_effective": float},
 }
 _FITS = """
 SELECT family.name, r, critical_r, plain_critical_r, p, extrapolated, location, scale, shape_1, shape_2, note

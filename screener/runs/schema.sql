@@ -79,7 +79,10 @@ CREATE TABLE score (
     missing INTEGER,
     reason TEXT, -- why it is not scored
     held INTEGER, -- the family it is held against
-    closest INTEGER -- the closest family that its own test does not reject
+    closest INTEGER, -- the closest family that its own test does not reject
+    conditions TEXT, -- in words
+    step REAL, -- of its resolution
+    n_effective REAL -- independent readings that a serial channel is worth
 );
 
 -- One row per family, in the order of the registry.

@@ -33,7 +33,8 @@ def store_scores(connection: sqlite3.Connection, scores: BlockScores, rule: str)
     families = _family_ids(connection, scores.families)
     connection.execute("INSERT OR REPLACE INTO span (first, stop) VALUES (?, ?)", (span.first, span.stop))
     connection.executemany(
-        "INSERT OR REPLACE INTO score (position, n, missing, reason, held, closest) VALUES (?, ?, ?, ?, ?, ?)",
+        "INSERT OR REPLACE INTO score (position, n, missing, reason, held, closest, conditions, step, n_effective)"
+        " VALUES (?, ?, ?, ?, ?, ?, ?, ?, ?)",
         _score_rows(scores, families),
     )
     connection.executemany(
@@ -91,7 +92,10 @@ def _score_rows(scores: BlockScores, families: list[int]) -> Iterator[Row]:
     positions = range(scores.span.first, scores.span.stop)
     held = (families[place] for place in scores.held.tolist())
     closest = (families[place] if place >= 0 else None for place in scores.closest.tolist())
-    return zip(positions, scores.n.tolist(), scores.missing.tolist(), reasons, held, closest, strict=True)
+    conditions = (visible(words) or None for words in scores.conditions or [""] * scores.n.size)
+    step, effective = ([None] * scores.n.size if v is None else v.tolist() for v in (scores.step, scores.n_effective))
+    counts = scores.n.tolist(), scores.missing.tolist()
+    return zip(positions, *counts, reasons, held, closest, conditions, step, effective, strict=True)
 
 
 def _fit_rows(scores: BlockScores, families: list[int]) -> Iterator[Row]:

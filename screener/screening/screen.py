@@ -12,6 +12,7 @@ from numpy.typing import NDArray
 from screener.errors import PlanError, ScreenerError
 from screener.records import Block, BlockFailed, BlockScored, BlockScores, Event, Plan, RunFinished, Span, TableFacts
 from screener.stats.closest import closest
+from screener.stats.conditions import conditions_of
 from screener.stats.families import FAMILIES, family_named
 from screener.stats.null.nulls import Nulls
 from screener.stats.scoring import score
@@ -81,7 +82,7 @@ def _expectation(text: str) -> tuple[str, int]:
 
 def score_span(table: ReadableTable, span: Span, plan: Plan, null: Nulls) -> BlockScores:
     """Read and score the channels of one span."""
-    scoring = score(table.read(span).readings, FAMILIES, null, plan.alpha)
+    scoring = score(table.read(span).readings, FAMILIES, null, plan.alpha, match=plan.match)
     fits = scoring.fits
     notes = tuple(tuple("outside support" if outside else "" for outside in row) for row in fits.outside)
     return BlockScores(
@@ -92,7 +93,7 @@ def score_span(table: ReadableTable, span: Span, plan: Plan, null: Nulls) -> Blo
         reasons=scoring.reasons,
         r=fits.r,
         critical_r=scoring.critical_r,
-        plain_critical_r=scoring.critical_r,
+        plain_critical_r=scoring.plain_critical_r,
         p=scoring.p,
         extrapolated=scoring.extrapolated,
         location=fits.location,
@@ -101,6 +102,9 @@ def score_span(table: ReadableTable, span: Span, plan: Plan, null: Nulls) -> Blo
         shapes=fits.shapes,
         held=held_against([channel.name for channel in table.facts.channels[span.first : span.stop]], plan),
         closest=closest(scoring.p, FAMILIES, plan.alpha),
+        conditions=tuple(conditions_of(scoring.conditions, channel) for channel in range(scoring.n.size)),
+        step=scoring.conditions.step,
+        n_effective=scoring.conditions.n_effective,
         points=scoring.points,
         in_order=tuple(scoring.in_order),
     )

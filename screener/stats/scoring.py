@@ -6,9 +6,11 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from screener.stats.conditions import Conditions, conditions_of, find_conditions
 from screener.stats.correlation import Fits, fit_families
 from screener.stats.families import Family
 from screener.stats.families.family import FloatArray
+from screener.stats.null.matched import MatchedTable
 from screener.stats.null.nulls import Nulls
 from screener.stats.ordering import sort_in_place
 from screener.stats.points import kept_ranks
@@ -16,6 +18,14 @@ from screener.stats.row_order import kept_in_order
 
 FEWEST = 3
 """Readings without which a plot has no shape."""
+
+FEWEST_DISTINCT = 4
+"""Distinct readings without which a plot is a stair of two or three steps."""
+
+COARSE = 0.5
+"""Steps, in standard deviations, below which distinct readings cannot be so few."""
+
+MATCHED_FAMILY = "normal"
 
 
 @dataclass(frozen=True, slots=True)
@@ -39,21 +49,82 @@ class Scoring:
     """[C] sorted readings at `kept_ranks(n)`."""
     in_order: FloatArray
     """[C, k] readings in row order, as `kept_in_order` keeps them."""
+    plain_critical_r: FloatArray
+    """[C, F] the textbook value, for independent, unrounded, complete readings."""
+    conditions: Conditions
 
 
-def score(readings: FloatArray, families: Sequence[Family], nulls: Nulls, alpha: float) -> Scoring:
-    """Score readings, float64[C, rows], which are sorted in place."""
-    in_order = kept_in_order(readings)
-    n = sort_in_place(readings)
-    scored = _scorable(readings, n)
-    reasons = [""] * n.size
-    for channel in np.flatnonzero(~scored):
-        reasons[channel] = _reason(readings[channel], int(n[channel]))
-    fits = fit_families(readings, np.where(scored, n, 0), families, nulls.rule)
-    critical, p, extrapolated = _against_null(fits, n, families, nulls, alpha)
+def score(
+    readings: FloatArray, families: Sequence[Family], nulls: Nulls, alpha: float, *, match: bool = True
+) -> Scoring:
+    """Score readings in row order, float64[C, rows].
+
+    With `match`, a channel that is rounded or follows itself in time is held against the normal family by the critical
+    value of a normal channel in the same condition; other families keep the plain one.
+    """
+    ordered = readings.copy()
+    n = sort_in_place(ordered)
+    scored = _scorable(ordered, n)
+    conditions = find_conditions(readings, ordered, n)
+    fits = fit_families(ordered, np.where(scored, n, 0), families, nulls.rule)
+    plain, p, extrapolated = _against_null(fits, n, families, nulls, alpha)
+    critical = plain.copy()
+    if match and nulls.matched is not None:
+        for column in (place for place, family in enumerate(families) if family.name == MATCHED_FAMILY):
+            _match(column, fits, conditions, nulls.matched, alpha, critical, p, extrapolated)
     return Scoring(
-        n, readings.shape[1] - n, tuple(reasons), fits, critical, p, extrapolated, _kept(readings, n), in_order
+        n=n,
+        missing=readings.shape[1] - n,
+        reasons=_reasons(ordered, n, scored, conditions),
+        fits=fits,
+        critical_r=critical,
+        p=p,
+        extrapolated=extrapolated,
+        points=_kept(ordered, n),
+        in_order=kept_in_order(readings),
+        plain_critical_r=plain,
+        conditions=conditions,
     )
+
+
+def _match(
+    column: int,
+    fits: Fits,
+    conditions: Conditions,
+    table: MatchedTable,
+    alpha: float,
+    critical: FloatArray,
+    p: FloatArray,
+    extrapolated: NDArray[np.bool_],
+) -> None:
+    """Replace the critical value and p of one family where the channel's condition calls for it."""
+    r = fits.r[:, column]
+    at = np.flatnonzero((conditions.rounded | conditions.serial) & ~np.isnan(r))
+    if at.size:
+        step = np.where(conditions.rounded, conditions.step_in_sd, 0.0)[at]
+        tau = np.where(conditions.serial, conditions.tau_4, 1.0)[at]
+        null, each = table.rows(conditions.n[at], step, tau), np.arange(at.size)
+        critical[at, column] = null.critical(alpha)
+        p[at, column] = null.p_against(r[at], each, alpha)
+        extrapolated[at, column] = p[at, column] < null.floor
+
+
+def _reasons(
+    ordered: FloatArray, n: NDArray[np.int64], scored: NDArray[np.bool_], conditions: Conditions
+) -> tuple[str, ...]:
+    """Why each channel is not scored; empty where it is."""
+    reasons = [""] * n.size
+    coarse = np.flatnonzero(scored & (conditions.step_in_sd >= COARSE))
+    distinct = 1 + np.count_nonzero(np.diff(ordered[coarse], axis=1) > 0.0, axis=1)
+    for channel, count in zip(coarse[distinct < FEWEST_DISTINCT], distinct[distinct < FEWEST_DISTINCT], strict=True):
+        reasons[channel] = f"only {count} distinct readings, at least {FEWEST_DISTINCT} are needed"
+    for channel in np.flatnonzero(scored & (conditions.stuck > 0.5 * n)):
+        reasons[channel] = conditions_of(conditions, int(channel))
+    for channel in np.flatnonzero(scored & conditions.drifting):
+        reasons[channel] = conditions_of(conditions, int(channel))
+    for channel in np.flatnonzero(~scored):
+        reasons[channel] = _reason(ordered[channel], int(n[channel]))
+    return tuple(reasons)
 
 
 def _scorable(ordered: FloatArray, n: NDArray[np.int64]) -> NDArray[np.bool_]:

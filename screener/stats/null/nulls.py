@@ -8,6 +8,7 @@ from numpy.typing import NDArray
 
 from screener.stats.families import Family
 from screener.stats.families.family import FloatArray
+from screener.stats.null.matched import MatchedTable
 from screener.stats.null.shaped import ShapedTable
 from screener.stats.null.table import NullRows, NullTable
 
@@ -23,6 +24,8 @@ class Nulls:
     plain: NullTable
     shaped: Mapping[str, ShapedTable]
     """By the family's name."""
+    matched: MatchedTable | None
+    """The normal family's under rounding and serial dependence; None where it was not simulated for this rule."""
 
     def rows(self, family: Family, n: IntArray, steps: FloatArray) -> tuple[NullRows, IntArray]:
         """The nulls of a family for channels of n readings, int64[C], and which of them is each channel's.

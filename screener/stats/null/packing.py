@@ -10,7 +10,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from screener.stats.families import FAMILIES, Family, family_named
-from screener.stats.null import grid, shaped
+from screener.stats.null import grid, matched, shaped
+from screener.stats.null.matched import MatchedTable
 from screener.stats.null.nulls import Nulls
 from screener.stats.null.shaped import ShapedTable
 from screener.stats.null.simulate import simulated_log_gap
@@ -22,6 +23,8 @@ NULL_VERSION = "2"
 SHIPPED = "filliben.npz"
 
 Arrays = Mapping[str, NDArray[np.generic]]
+
+MATCHED = "matched/"
 
 PARTS = ("log_gap", "tail_shape", "tail_scale", "floor", "samples")
 
@@ -66,6 +69,24 @@ def tasks(rule: str, seed: int, share: float, largest: int | None = None) -> dic
     return made
 
 
+def matched_tasks(rule: str, seed: int) -> dict[str, Task]:
+    """The parts of the matched table of the normal family, by key."""
+    made: dict[str, Task] = {}
+    for n in matched.SIZES:
+        for place, coefficient in enumerate(matched.COEFFICIENTS):
+            samples = matched.samples_at(n)
+            name = f"{rule}-version{NULL_VERSION}-seed{seed}-matched-n{n}-ar{coefficient}-samples{samples}"
+            work = n * samples * (1 + len(matched.STEPS)) // 4
+            make = partial(_matched_part, n, coefficient, rule, samples, seed)
+            made[f"{MATCHED}{n}/{place}"] = Task(name, work, make)
+    return made
+
+
+def _matched_part(n: int, coefficient: float, rule: str, samples: int, seed: int) -> Arrays:
+    rng = np.random.default_rng([seed, n, int(1000 * coefficient)])
+    return {"log_gap": matched.simulated_node(n, coefficient, rule, samples, rng)}
+
+
 def needed(sizes: tuple[int, ...], largest: int | None) -> tuple[int, ...]:
     """The tabled sizes up to the first that reaches `largest`, and no fewer than interpolation takes."""
     if largest is None:
@@ -105,6 +126,10 @@ def packed(parts: Mapping[str, Arrays], rule: str) -> dict[str, NDArray[np.gener
     _pack(arrays, "plain", parts, axis=1)
     for family in shaped_families():
         _pack(arrays, family.name, parts, axis=0)
+    if any(key.startswith(MATCHED) for key in parts):
+        places = range(len(matched.COEFFICIENTS))
+        nodes = [[parts[f"{MATCHED}{n}/{place}"]["log_gap"] for place in places] for n in matched.SIZES]
+        arrays["matched"] = np.array(nodes, dtype=np.float32)
     return arrays
 
 
@@ -144,7 +169,8 @@ def unpacked(arrays: Arrays) -> Nulls:
         )
         for family in shaped_families()
     }
-    return Nulls(rule, version, plain, tables)
+    in_condition = MatchedTable(np.array(matched.SIZES), _float(arrays, "matched")) if "matched" in arrays else None
+    return Nulls(rule, version, plain, tables, in_condition)
 
 
 def _float(arrays: Arrays, name: str) -> NDArray[np.float64]:

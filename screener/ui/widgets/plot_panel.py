@@ -62,9 +62,12 @@ def _evidence(drawing: Drawing) -> Line:
         return plain(f"r {r_text(r)}")
     below = r < critical
     relation = "! below" if below else "not below"
+    textbook = fit.get("plain_critical_r")
+    matched = f" (matched; textbook {r_text(textbook)})" if textbook not in {None, critical} else ""
     return [
         (f"r {r_text(r)} ", PLAIN),
         (f"{relation} critical {r_text(critical)}", FLAGGED if below else PLAIN),
+        (matched, QUIET),
     ]
 
 
