@@ -77,6 +77,7 @@ class ComparisonApp(App[int]):
     Prompt Input { width: 1fr; height: 1; }
     #question { width: auto; height: 1; }
     """
+    AUTO_FOCUS = ""
     ENABLE_COMMAND_PALETTE = False
     BINDINGS: ClassVar[list[BindingType]] = [
         Binding("q,ctrl+c", "quit", "Quit", priority=True),
@@ -194,7 +195,7 @@ class ComparisonApp(App[int]):
         path = Path(event.text.strip()).expanduser()
         self.query_one(Prompt).close()
         if path.exists():
-            self._notice = f"{str(path)!r} exists: give another name."
+            self._notice = "That file exists: give another name."
         else:
             try:
                 export_comparison(self._rows, path)
