@@ -28,9 +28,9 @@ SURE_AT_ONE, SURE = 3.3, 4.2
 """Standard errors from 0 beyond which rho_1, or rho_k at another lag to 16, is no chance."""
 SLIGHT = 0.1
 """A rho below this leaves the null of r as it is, however sure."""
-NARROW, SMOOTH = 0.2, 0.85
-"""|rho| that lasts to the far half of a resolution's lags calls for every lag, by the fast Fourier transform, when the
-next resolution sees less than a share of it. That costs several sorts; few channels swing so."""
+NARROW, SURE_OF_LASTING, SMOOTH = 0.2, 3.0, 0.85
+"""|rho| that lasts to the far half of a resolution's lags, and so many standard errors, calls for every lag when the
+next resolution sees less than a share of it. The Fourier transform costs several sorts; few channels swing so."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -67,7 +67,7 @@ def serial_dependence(resolutions: tuple[Resolution, ...], n: IntArray, readings
             third, fourth = powers(each, width, n, weights, most)
             tau_3 += 2.0 * third
             tau_4 += 2.0 * fourth
-    narrow = _narrow(restored, n, limit)
+    narrow = _narrow(restored, [one.width for one in resolutions], n, limit)
     for channel in np.flatnonzero(narrow):
         tau_3[channel], tau_4[channel] = _from_every_lag(readings[channel], limit)
     tau_3, tau_4 = np.clip(tau_3, 0.0, None), np.maximum(tau_4, 1.0)
@@ -121,14 +121,16 @@ def powers(
     return third, fourth
 
 
-def _narrow(rho: list[FloatArray], n: IntArray, limit: int) -> BoolArray:
+def _narrow(rho: list[FloatArray], wide: list[int], n: IntArray, limit: int) -> BoolArray:
     """Channels whose dependence lasts beyond the lags of some resolution, but swings too fast for the next one."""
     found = np.zeros(n.size, dtype=np.bool_)
     if limit <= LAGS:
         return found
-    least = np.maximum(NARROW, SURE / np.sqrt(np.maximum(n, 1)))
     for i, each in enumerate(rho):
-        lasting = np.max(np.abs(np.nan_to_num(each[:, LAGS // 2 + 1 :])), axis=1)
+        known = np.abs(np.nan_to_num(each))
+        lasting = np.max(known[:, LAGS // 2 + 1 :], axis=1)
+        variance = wide[i] * (2.0 * np.sum(known * known, axis=1) - known[:, 0] ** 2) / np.maximum(n, 1)
+        least = np.maximum(NARROW, SURE_OF_LASTING * np.sqrt(variance))
         if i + 1 < len(rho):
             seen = np.max(np.abs(np.nan_to_num(rho[i + 1][:, 1:3])), axis=1)
             found |= (lasting >= least) & (seen < SMOOTH * lasting)
