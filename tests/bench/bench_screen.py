@@ -90,18 +90,19 @@ def measure_scoring(folder: Path, path: str, size: tuple[int, int], channels: in
     """Cursor steps, one after the other, as long as scoring lasts."""
     began = time.perf_counter()
     with PseudoTerminal([*PROGRAM, path], columns=size[0], rows=size[1], environment=ENVIRONMENT, folder=folder) as run:
-        run.wait_for("1 of ")
+        run.wait_for(lambda text: "1 of " in text or "Scored in" in text)
         print(
             f"\n{channels:,} channels, scoring, {size[0]} x {size[1]}: first rows {time.perf_counter() - began:.2f} s"
         )
         print(HEADER)
         steps: list[tuple[float, int]] = []
-        run.send("\x1b[B")
-        run.wait_for("2 of ")
         while " a second" in run.text:
             steps.append(effect(run, "\x1b[B" if len(steps) % 2 == 0 else "\x1b[A"))
             time.sleep(0.05)
-        report("cursor down, up", steps)
+        if steps:
+            report("cursor down, up", steps)
+        else:
+            print("scored before the first key")
 
 
 def effect(run: PseudoTerminal, key: str) -> tuple[float, int]:
