@@ -18,7 +18,7 @@ from screener.ui.filters import AsciiOnly, Colourless, Harmless
 from screener.ui.numbers import p_text, r_text
 from screener.ui.palette import CURSOR, FLAGGED, HEADER, PLAIN, STRONG, THEME
 from screener.ui.shown import fitted, fitted_name, shown
-from screener.ui.terminal import NoScreenError
+from screener.ui.terminal import NoScreenError, end_with_terminal
 from screener.ui.widgets.key_line import KeyLine
 from screener.ui.widgets.lines import Line, Lines, plain
 from screener.ui.widgets.prompt import Prompt
@@ -63,6 +63,7 @@ def compare_on_screen(rows: pl.DataFrame, title: str) -> int:
     impossible = refusal(os.environ)
     if impossible:
         raise NoScreenError(impossible)
+    end_with_terminal()
     return ComparisonApp(rows, title).run() or 0
 
 
