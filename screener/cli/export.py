@@ -16,20 +16,24 @@ from screener.cli.options import TABLE_OR_RUN, plan_options
 @plan_options
 @click.pass_context
 def command(ctx: click.Context, /, path: Path, file: Path, *, flagged_only: bool, **given: Any) -> None:
-    """Write one row per channel to FILE: .csv, .parquet or .json.
+    """Write one row per channel to FILE: .csv, .parquet or .json; or a report with plots: .md or .html.
 
     In a CSV file, text that a spreadsheet would run as a formula gets a leading apostrophe; Parquet and JSON are exact.
     """
     from screener.cli.output import path_text, tell
     from screener.cli.source import exit_code, finished_run
-    from screener.runs import export
+    from screener.runs import REPORTS, export
+    from screener.ui.report import write_report
 
     _refuse_source(file, path)
     with finished_run(ctx, path, given) as run:
         _refuse_source(file, run.path, run.facts.path)
         results = run.results()
         rows = results.filter(results["verdict"] == "flagged") if flagged_only else results
-        export(rows, run.facts, run.plan, file)
+        if file.suffix.lower() in REPORTS:
+            write_report(run, rows, file)
+        else:
+            export(rows, run.facts, run.plan, file)
         tell(f"{rows.height:,} channels written to {path_text(file)}")
         ctx.exit(exit_code(run, results))
 

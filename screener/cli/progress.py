@@ -10,6 +10,7 @@ from types import FrameType
 from typing import TYPE_CHECKING, cast
 
 from screener.cli.output import path_text, tell
+from screener.cli.report import reading_lines
 from screener.errors import ScreenerError
 from screener.records import BlockFailed, BlockScored, Event, NullsPrepared, RunFinished, TableOpened
 from screener.ui.numbers import seconds_text
@@ -17,8 +18,6 @@ from screener.ui.numbers import seconds_text
 if TYPE_CHECKING:
     from screener.stats.null.nulls import Nulls
 
-SET_ASIDE_SHOWN = 8
-"""Columns set aside that are named; the rest are counted."""
 PAUSE = 10.0
 """Seconds between two lines of progress where they cannot be rewritten."""
 
@@ -126,10 +125,7 @@ def opening_lines(event: TableOpened) -> list[str]:
     """What was read, what was set aside and why, and where the results go."""
     facts = event.facts
     lines = [f"{path_text(facts.path)}: {facts.format}, {facts.rows:,} rows, {len(facts.channels):,} channels"]
-    lines += [f"  {remark}" for remark in facts.remarks]
-    lines += [f"  set aside: {column.name} ({column.reason})" for column in facts.set_aside[:SET_ASIDE_SHOWN]]
-    if len(facts.set_aside) > SET_ASIDE_SHOWN:
-        lines.append(f"  set aside: {len(facts.set_aside) - SET_ASIDE_SHOWN:,} more columns")
+    lines += [f"  {line}" for line in reading_lines(facts)]
     if event.channels_done:
         lines.append(f"  scored before: {event.channels_done:,} of {len(facts.channels):,} channels")
     return [*lines, f"  run file: {path_text(event.run_path)}"]

@@ -3,7 +3,8 @@
 from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
-from screener.cli.output import path_text
+from screener.cli.output import path_text, safe
+from screener.records import TableFacts
 from screener.ui.numbers import count_text, p_text, r_text
 
 if TYPE_CHECKING:
@@ -13,6 +14,9 @@ if TYPE_CHECKING:
 
 SHOWN_AT_MOST = 200
 """Flagged rows printed before the rest is only counted."""
+SET_ASIDE_SHOWN = 8
+"""Columns set aside that are named; the rest are counted."""
+FILES_SHOWN = 4
 
 
 def summary_lines(run: "RunFile", results: "pl.DataFrame") -> list[str]:
@@ -37,6 +41,20 @@ def flagged_lines(results: "pl.DataFrame") -> list[str]:
     lines = aligned(("flagged channel", "n", "r", "critical r", "p"), rows) if rows else ["no channel is flagged"]
     more = flagged.height - len(rows)
     return [*lines, f"... and {more:,} more; `screener flagged` prints all names"] if more > 0 else lines
+
+
+def reading_lines(facts: TableFacts) -> list[str]:
+    """How the table was read: its dialect and files, the reader's remarks, the columns set aside."""
+    lines = [f"read as: {safe(facts.dialect)}"] if facts.dialect else []
+    if facts.files:
+        named = [f"{safe(file.name)} ({file.rows:,} rows)" for file in facts.files[:FILES_SHOWN]]
+        more = [f"{len(facts.files) - FILES_SHOWN:,} more"] if len(facts.files) > FILES_SHOWN else []
+        lines.append(f"files: {', '.join([*named, *more])}")
+    lines += [safe(remark) for remark in facts.remarks]
+    lines += [f"set aside: {safe(one.name)} ({safe(one.reason)})" for one in facts.set_aside[:SET_ASIDE_SHOWN]]
+    if len(facts.set_aside) > SET_ASIDE_SHOWN:
+        lines.append(f"set aside: {len(facts.set_aside) - SET_ASIDE_SHOWN:,} more columns; key i of the screen has all")
+    return lines
 
 
 def aligned(head: Sequence[str], rows: Sequence[Sequence[str]]) -> list[str]:

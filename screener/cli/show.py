@@ -14,6 +14,7 @@ from screener.cli.options import TABLE_OR_RUN, plan_options
 from screener.ui.views import View
 
 if TYPE_CHECKING:
+    from screener.records import Channel
     from screener.runs import RunFile
     from screener.ui.drawing import Drawing
 
@@ -54,6 +55,7 @@ def command(ctx: click.Context, /, path: Path, channel: str, **given: Any) -> No
                 for view in given["view"] or VIEWS[:1]
             ]
             parts += [_families(drawings[0]), *(part for one in drawings for part in ([_heading(one)], one.lines))]
+        parts.append(_reading(run))
         put(line.rstrip() for line in _apart(parts))
         ctx.exit(exit_code(run, results))
 
@@ -85,7 +87,7 @@ def _numbers(run: "RunFile", position: int, row: Row | None) -> list[str]:
     if row is None:
         return [channel.name, "not scored yet: the run was stopped before it"]
     counted = "" if row["n"] is None else f": {row['n']:,} readings, {row['missing']:,} missing"
-    head = f"{channel.name}{counted}"
+    head = f"{channel.name}{counted}{_limited(channel)}"
     if row["verdict"] == "not scored":
         return [head, f"not scored: {row['reason']}"]
     condition = [f"conditions: {row['conditions']}"] if row["conditions"] else []
@@ -103,6 +105,20 @@ def _numbers(run: "RunFile", position: int, row: Row | None) -> list[str]:
         "(rms distance from the line, in standard deviations)",
         *condition,
     ]
+
+
+def _limited(channel: "Channel") -> str:
+    """How many readings are only known to lie beyond a detection limit."""
+    sides = {"below": channel.below, "above": channel.above}
+    return "".join(f", {count:,} {side} a detection limit (taken at it)" for side, count in sides.items() if count)
+
+
+def _reading(run: "RunFile") -> list[str]:
+    """How the table was read."""
+    from screener.cli.report import reading_lines
+
+    lines = reading_lines(run.facts)
+    return ["how the table was read", *(f"  {line}" for line in lines)] if lines else []
 
 
 def _heading(drawn: "Drawing") -> str:

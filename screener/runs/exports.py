@@ -15,6 +15,9 @@ from screener.errors import RunFileError
 from screener.records import RESULT_COLUMNS, Plan, TableFacts
 from screener.runs.failures import why_refused
 
+REPORTS = (".md", ".html")
+"""Extensions of reports, which are written elsewhere since they have plots."""
+
 _FORMULA = r"^([=+\-@\t\r])"
 """What a spreadsheet takes for the start of a formula."""
 
@@ -26,13 +29,11 @@ def export(results: pl.DataFrame, facts: TableFacts, plan: Plan, path: Path) -> 
     """
     render = _RENDERERS.get(path.suffix.lower())
     if render is None:
-        known = ", ".join(_RENDERERS)
+        known = ", ".join([*_RENDERERS, *REPORTS])
         raise _refusal(path, "its extension names no known format", f"Use one of {known}.")
-    if path.is_dir():
-        raise _refusal(path, "it is a folder", "Give the name of a file in it.")
     floats = [name for name, kind in RESULT_COLUMNS.items() if kind is float]
     rows = results.select(RESULT_COLUMNS.keys()).with_columns(pl.col(floats).fill_nan(None))
-    _replace(path, render(rows, facts, plan))
+    write_whole(path, render(rows, facts, plan))
 
 
 def export_comparison(rows: pl.DataFrame, path: Path) -> None:
@@ -43,7 +44,7 @@ def export_comparison(rows: pl.DataFrame, path: Path) -> None:
     render = {".csv": _csv_of, ".parquet": _parquet_of, ".json": _json_of}.get(path.suffix.lower())
     if render is None:
         raise _refusal(path, "its extension names no known format", "Use one of .csv, .parquet, .json.")
-    _replace(path, render(rows))
+    write_whole(path, render(rows))
 
 
 def _csv(rows: pl.DataFrame, _facts: TableFacts, _plan: Plan) -> bytes:
@@ -95,8 +96,13 @@ _RENDERERS: dict[str, Callable[[pl.DataFrame, TableFacts, Plan], bytes]] = {
 }
 
 
-def _replace(path: Path, content: bytes) -> None:
-    """Write beside the path, then rename, so that a reader finds the old file or the new one, never half of one."""
+def write_whole(path: Path, content: bytes) -> None:
+    """Write beside the path, then rename, so that a reader finds the old file or the new one, never half of one.
+
+    Raises: RunFileError when it cannot be written.
+    """
+    if path.is_dir():
+        raise _refusal(path, "it is a folder", "Give the name of a file in it.")
     draft = path.with_name(f".{secrets.token_hex(6)}.export-new")
     try:
         try:

@@ -5,8 +5,6 @@ twice, and lies further from the other readings than three times the range of th
 """
 
 from collections.abc import Iterator, Sequence
-from decimal import Decimal
-from math import nan
 
 import numpy as np
 import polars as pl
@@ -14,13 +12,15 @@ from numpy.typing import NDArray
 
 from screener.records import Proposal
 
-_GLANCED_ROWS = 64
+_GLANCED_ROWS = 32
 _FAR_FOR_A_GLANCE = 6.0
 """Widths of the narrowest half of a few rows; a rough sieve in front of the rule."""
 _FAR = 3.0
 _FEWEST_CELLS = 2
 _FEWEST_OTHERS = 3
 _BATCH_READINGS = 8_000_000
+_HELD_READINGS = 24_000_000
+"""A table in memory of so many readings is looked at as a whole: cutting thousands of columns apart costs as much."""
 
 
 def proposed_codes(frame: pl.DataFrame | pl.LazyFrame, columns: Sequence[str], rows: int) -> tuple[Proposal, ...]:
@@ -28,11 +28,7 @@ def proposed_codes(frame: pl.DataFrame | pl.LazyFrame, columns: Sequence[str], r
     if rows < _FEWEST_CELLS + _FEWEST_OTHERS or not columns:
         return ()
     found: dict[str, list[int]] = {}
-    for batch in _batches(columns, rows, held=isinstance(frame, pl.DataFrame)):
-        if isinstance(frame, pl.DataFrame) and frame.width == len(batch):
-            part = frame
-        else:
-            part = frame.lazy().select(batch).collect()
+    for part in _parts(frame, columns, rows):
         for column in _far_reaching(part):
             for value, cells in _codes(column.cast(pl.Float64).to_numpy()):
                 found.setdefault(_written(value, column.dtype), []).append(cells)
@@ -40,26 +36,26 @@ def proposed_codes(frame: pl.DataFrame | pl.LazyFrame, columns: Sequence[str], r
     return tuple(Proposal(value, len(cells), sum(cells)) for value, cells in ranked)
 
 
-def _batches(columns: Sequence[str], rows: int, *, held: bool) -> Iterator[Sequence[str]]:
-    """All columns where they stand in memory already, else as many as can be read at a time."""
-    width = len(columns) if held else max(1, _BATCH_READINGS // rows)
+def _parts(frame: pl.DataFrame | pl.LazyFrame, columns: Sequence[str], rows: int) -> Iterator[pl.DataFrame]:
+    """The columns, so many at a time."""
+    if isinstance(frame, pl.DataFrame) and frame.width == len(columns) and frame.width * rows <= _HELD_READINGS:
+        yield frame
+        return
+    width = max(1, _BATCH_READINGS // rows)
     for start in range(0, len(columns), width):
-        yield columns[start : start + width]
+        yield frame.lazy().select(columns[start : start + width]).collect()
 
 
 def _far_reaching(frame: pl.DataFrame) -> list[pl.Series]:
     """The columns whose lowest or highest reading lies far from the middle of some of their rows."""
-    first = frame.head(_GLANCED_ROWS)
-    if any(dtype != pl.Float64 for dtype in first.dtypes):
-        first = first.cast(pl.Float64)
-    ordered = np.sort(first.to_numpy(order="fortran").T, axis=1)
-    bottom, top = _shortest_halves(ordered)
-    series = frame.get_columns()
-    lowest, highest = (np.array([_float(one) for one in ends]) for ends in zip(*map(_ends, series), strict=True))
+    numbers = frame if all(dtype == pl.Float64 for dtype in frame.dtypes) else frame.cast(pl.Float64)
+    readings = numbers.to_numpy(order="fortran").T
+    bottom, top = _shortest_halves(np.sort(readings[:, :_GLANCED_ROWS], axis=1))
+    lowest, highest = np.fmin.reduce(readings, axis=1), np.fmax.reduce(readings, axis=1)
     with np.errstate(invalid="ignore", over="ignore"):
         far = _FAR_FOR_A_GLANCE * (top - bottom)
         reaching = (lowest < bottom - far) | (highest > top + far)
-    return [column for column, one in zip(series, reaching, strict=True) if one]
+    return [frame.to_series(int(at)) for at in np.flatnonzero(reaching)]
 
 
 def _shortest_halves(ordered: NDArray[np.float64]) -> tuple[NDArray[np.float64], NDArray[np.float64]]:
@@ -72,14 +68,6 @@ def _shortest_halves(ordered: NDArray[np.float64]) -> tuple[NDArray[np.float64],
         widths = np.where(last < known, ends - ordered, np.inf)
     at = np.nan_to_num(widths, nan=np.inf).argmin(axis=1)[:, None]
     return np.take_along_axis(ordered, at, axis=1)[:, 0], np.take_along_axis(ends, at, axis=1)[:, 0]
-
-
-def _ends(column: pl.Series) -> tuple[object, object]:
-    return column.min(), column.max()
-
-
-def _float(value: object) -> float:
-    return float(value) if isinstance(value, int | float | Decimal) else nan
 
 
 def _codes(readings: NDArray[np.float64]) -> Iterator[tuple[float, int]]:

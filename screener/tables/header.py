@@ -156,7 +156,7 @@ def _names_above(table: Sequence[HeadRow], start: int, width: int) -> int | None
         bare = [at for at in block if not _is_reading(table[at])] or block[:1]
         if width <= _FEW_COLUMNS and len(bare) > 1:
             return bare[-2] if _all_known_units(table[bare[-1]]) else bare[-1]
-        return bare[0]
+        return next((at for at in bare if _is_filled(table[at])), bare[0])
     if start + 1 >= len(table) and start > 0:
         return start - 1
     return start if not _only_readings(table, start) else None
@@ -174,6 +174,11 @@ def _block_above(table: Sequence[HeadRow], start: int, widths: set[int]) -> list
 
 def _may_head(row: HeadRow) -> bool:
     return any(cell.strip() and not _reads_as_number(cell) for cell in row.cells)
+
+
+def _is_filled(row: HeadRow) -> bool:
+    """Whether half of the cells hold something; a title padded with empty cells to the width of the table does not."""
+    return 2 * sum(bool(cell.strip()) for cell in row.cells) >= len(row.cells)
 
 
 def _all_known_units(row: HeadRow) -> bool:

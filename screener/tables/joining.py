@@ -43,6 +43,7 @@ def join(tables: Sequence[RawTable], files: Sequence[str]) -> tuple[RawTable, tu
         held=held,
         loaded=held and all(table.loaded for table in tables),
         remarks=tuple(remarks),
+        whole=None,
     )
     return whole, made
 

@@ -26,5 +26,7 @@ class RawTable:
     """The unit of each column where the format keeps it apart from the name; empty where it has none."""
     dialect: str = ""
     """How the table is written, on one line."""
+    whole: pl.DataFrame | None = None
+    """What `frame` gives, where it stands in memory: collecting thousands of columns again is not free."""
     spool: Spool | None = None
     """What keeps the file that the frame reads, when it is a temporary one."""

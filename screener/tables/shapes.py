@@ -81,6 +81,7 @@ def _turned(raw: RawTable, *, asked: bool) -> RawTable:
     return replace(
         raw,
         frame=turned.lazy(),
+        whole=None,
         names=tuple(_texts(frame[name])) if name else ("",) * len(frame),
         rows=len(turned),
         units=tuple(_texts(frame[unit])) if unit else (),
@@ -141,6 +142,7 @@ def _widened(raw: RawTable, *, asked: bool) -> RawTable:
     return replace(
         raw,
         frame=wide.lazy(),
+        whole=None,
         names=tuple(_texts(channels)),
         rows=len(wide),
         units=tuple(units.get(channel) or "" for channel in channels) if unit else (),

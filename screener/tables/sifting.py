@@ -64,14 +64,15 @@ def sift(raw: RawTable, shown: Mapping[str, str], choice: Choice, missing: Seque
             reasons[column] = reason
     wanted = [column for column in schema if column not in reasons]
     kept = raw.frame if len(wanted) == len(schema) else raw.frame.select(pl.col(wanted))
-    raw = replace(raw, frame=_settled(kept, held=raw.held and not raw.loaded))
+    loaded = raw.whole if kept is raw.frame else None
+    raw = replace(raw, frame=_settled(kept, held=raw.held and not raw.loaded), whole=loaded)
     texts = [token for token in missing if not is_number(token)]
     mixed = any(not schema[column].is_numeric() for column in wanted)
     text = _text_as_numbers(raw, shown, texts) if mixed else _Text(raw.frame, {})
     reasons |= text.reasons
     numeric = [column for column in schema if column not in reasons]
     frame, codes = _without_codes(text.frame, numeric, missing, held=raw.held)
-    whole = frame.collect() if raw.held else None
+    whole = _whole(raw, frame)
     unfit_reasons = unfit(
         frame if whole is None else whole, [column for column in schema if column not in reasons], raw.rows, shown
     )
@@ -88,6 +89,13 @@ def sift(raw: RawTable, shown: Mapping[str, str], choice: Choice, missing: Seque
     return Sifted(
         _only(frame, columns), columns, reasons, remarks, proposals, text.forms.below, text.forms.above, units
     )
+
+
+def _whole(raw: RawTable, frame: pl.LazyFrame) -> pl.DataFrame | None:
+    """What the frame gives when it is to be held; as it was loaded where nothing has changed since."""
+    if not raw.held:
+        return None
+    return raw.whole if raw.whole is not None and frame is raw.frame else frame.collect()
 
 
 def _settled(frame: pl.LazyFrame, *, held: bool) -> pl.LazyFrame:

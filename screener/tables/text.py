@@ -47,6 +47,7 @@ class _Parsed:
     rows: int
     words: tuple[str, ...] = ()
     remarks: tuple[str, ...] = ()
+    whole: pl.DataFrame | None = None
 
 
 def read_text(path: Path, recognised: Recognised, plan: Plan | None = None, *, held_bytes: int = 1 << 31) -> RawTable:
@@ -97,6 +98,7 @@ def _read(path: Path, recognised: Recognised, plan: Plan, text: Text, spool: Spo
         decimal_comma=layout.decimal_comma,
         units=layout.header.units,
         dialect=", ".join((*layout.words_of(), *text.words, *parsed.words)),
+        whole=parsed.whole,
         spool=spool,
     )
 
@@ -236,7 +238,7 @@ def _without_sums(frame: pl.DataFrame, said: _Remarked) -> _Parsed:
         count = int(np.count_nonzero(sums))
         remark = f"{count} last row{'s' if count > 1 else ''} ({named}) sum up the others: left out."
         frame, said = frame.filter(pl.Series(~sums)), replace(said, remarks=(*said.remarks, remark))
-    return _Parsed(frame.lazy(), len(frame), said.words, said.remarks)
+    return _Parsed(frame.lazy(), len(frame), said.words, said.remarks, frame)
 
 
 def _layout_remarks(layout: Layout) -> Iterator[str]:

@@ -18,7 +18,7 @@ from screener.ui.filters import AsciiOnly, Colourless, Harmless
 from screener.ui.numbers import p_text, r_text
 from screener.ui.palette import CURSOR, FLAGGED, HEADER, PLAIN, STRONG, THEME
 from screener.ui.shown import fitted, fitted_name, shown
-from screener.ui.terminal import NoScreenError
+from screener.ui.terminal import NoScreenError, end_with_terminal
 from screener.ui.widgets.key_line import KeyLine
 from screener.ui.widgets.lines import Line, Lines, plain
 from screener.ui.widgets.prompt import Prompt
@@ -63,6 +63,7 @@ def compare_on_screen(rows: pl.DataFrame, title: str) -> int:
     impossible = refusal(os.environ)
     if impossible:
         raise NoScreenError(impossible)
+    end_with_terminal()
     return ComparisonApp(rows, title).run() or 0
 
 
@@ -77,6 +78,7 @@ class ComparisonApp(App[int]):
     Prompt Input { width: 1fr; height: 1; }
     #question { width: auto; height: 1; }
     """
+    AUTO_FOCUS = ""
     ENABLE_COMMAND_PALETTE = False
     BINDINGS: ClassVar[list[BindingType]] = [
         Binding("q,ctrl+c", "quit", "Quit", priority=True),
@@ -194,7 +196,7 @@ class ComparisonApp(App[int]):
         path = Path(event.text.strip()).expanduser()
         self.query_one(Prompt).close()
         if path.exists():
-            self._notice = f"{str(path)!r} exists: give another name."
+            self._notice = "That file exists: give another name."
         else:
             try:
                 export_comparison(self._rows, path)

@@ -284,10 +284,14 @@ class Reader:
         self._post(messages.ChannelDrawn(drawing(run, run.facts, run.plan, wanted, charset=charset)))
 
     def _export(self, run: RunFile, rows: pl.DataFrame, path: Path) -> None:
-        from screener.runs import export
+        from screener.runs import REPORTS, export
+        from screener.ui.report import write_report
 
         try:
-            export(rows, run.facts, run.plan, path)
+            if path.suffix.lower() in REPORTS:
+                write_report(run, rows, path)
+            else:
+                export(rows, run.facts, run.plan, path)
         except ScreenerError as error:
             self._post(messages.Exported(str(error)))
         else:

@@ -3,9 +3,11 @@
 from __future__ import annotations
 
 import os
+import select
 import signal
 import sys
 import termios
+from threading import Thread
 from types import FrameType
 from typing import Any
 
@@ -36,7 +38,7 @@ def run_screen(source: Source) -> int:
         raise NoScreenError(impossible)
     from screener.ui.app import ScreenerApp
 
-    _end_on_signals()
+    end_with_terminal()
     app = ScreenerApp(source)
     code = app.run() or 0
     stopped = app.feed.stopped_within(PATIENCE)
@@ -55,8 +57,12 @@ def run_screen(source: Source) -> int:
     return code
 
 
-def _end_on_signals() -> None:
-    """On SIGHUP and SIGTERM end at once; the run file needs no farewell, the terminal does."""
+def end_with_terminal() -> None:
+    """On SIGHUP and SIGTERM, or when the terminal is gone, end at once.
+
+    The run file needs no farewell, the terminal does. A terminal that hangs up without a signal, as one that is not the
+    controlling terminal does, would otherwise keep the reader of its keys busy for ever.
+    """
     terminal = sys.__stdin__.fileno() if sys.__stdin__ is not None and sys.__stdin__.isatty() else None
     attributes = termios.tcgetattr(terminal) if terminal is not None else None
 
@@ -66,6 +72,16 @@ def _end_on_signals() -> None:
 
     signal.signal(signal.SIGHUP, end)
     signal.signal(signal.SIGTERM, end)
+    if terminal is not None:
+        Thread(target=_end_on_hang_up, args=(terminal,), daemon=True).start()
+
+
+def _end_on_hang_up(terminal: int) -> None:
+    """Sleep until the terminal hangs up, which is reported without being asked for."""
+    hang_up = select.poll()
+    hang_up.register(terminal, 0)
+    hang_up.poll()
+    os._exit(128 + signal.SIGHUP)
 
 
 def _restore(terminal: int | None, attributes: list[Any] | None) -> None:

@@ -58,7 +58,8 @@ def main() -> None:
             for matched, plain, unscored in cells:
                 bad = unscored < 0.5 and not low <= matched <= high
                 missed += bad
-                text += f"{f'{100 * matched:.1f}{chr(33) if bad else chr(32)}({100 * plain:.0f}; {100 * unscored:.0f})':>22}"
+                cell = f"{100 * matched:.1f}{'!' if bad else ' '}({100 * plain:.0f}; {100 * unscored:.0f})"
+                text += f"{cell:>22}"
             print(f"{n:>7,} {step:>5g}{text}", flush=True)
     print(f"cells outside {100 * low:g} to {100 * high:g} %: {missed}")
 

@@ -1,7 +1,7 @@
 """Key to last byte, and bytes on the wire, of the screen in a pseudo-terminal.
 
     python tests/bench/bench_screen.py             hand-made run files of 240, 2,000 and 20,000 channels, idle
-    python tests/bench/bench_screen.py --scoring   also while a table of 20,000 x 1,000 random readings is scored
+    python tests/bench/bench_screen.py --scoring   also while 20 million random readings of as many channels are scored
 
 Idle, an answer is taken as complete when nothing came for QUIET seconds; its time is that of its last byte. In the
 wide layout that includes the plot of the channel, which is drawn by another thread and follows the cursor. While
@@ -24,6 +24,8 @@ from made_run import made_run
 from pseudo_terminal import PseudoTerminal
 
 QUIET = 0.15
+READINGS = 20_000_000
+"""Of the table that is scored."""
 ENVIRONMENT = {**os.environ, "TERM": "xterm-256color", "LANG": "C.UTF-8", "LC_ALL": "C.UTF-8"}
 PROGRAM = [sys.executable, "-m", "screener"]
 SIZES = ((80, 24), (140, 45))
@@ -36,6 +38,9 @@ ACTIONS: tuple[tuple[str, tuple[str, ...]], ...] = (
     ("sort by p, r", ("6", "4")),
     ("reverse", ("S",)),
     ("flagged only, all", ("f", "f")),
+    ("condition, all", ("wr < 0.98\r", "w" + "\x15" + "\r")),
+    ("decide, undo", ("x", "z")),
+    ("next view", ("v",)),
     ("next family", ("]",)),
     ("open, close plot", ("\r", "\r")),
 )
@@ -54,12 +59,12 @@ def main() -> None:
             made_run(folder / f"{channels}.run", channels).close()
             for size in SIZES:
                 measure(folder, f"{channels}.run", size, f"{channels:,} channels, idle", repeats)
-        if scoring:
-            table = pl.DataFrame(np.random.default_rng(1).normal(size=(1_000, 20_000)))
+        for channels in (240, 2_000, 20_000) if scoring else ():
+            table = pl.DataFrame(np.random.default_rng(1).normal(size=(READINGS // channels, channels)))
             table.write_parquet(folder / "table.parquet", compression="uncompressed")
             for size in SIZES:
                 (folder / "table.run").unlink(missing_ok=True)
-                measure_scoring(folder, "table.parquet", size)
+                measure_scoring(folder, "table.parquet", size, channels)
 
 
 def measure(folder: Path, path: str, size: tuple[int, int], title: str, repeats: int) -> None:
@@ -81,20 +86,23 @@ def measure(folder: Path, path: str, size: tuple[int, int], title: str, repeats:
         print(f"{'quit':20} {1e3 * (time.perf_counter() - began):8.0f}")
 
 
-def measure_scoring(folder: Path, path: str, size: tuple[int, int]) -> None:
+def measure_scoring(folder: Path, path: str, size: tuple[int, int], channels: int) -> None:
     """Cursor steps, one after the other, as long as scoring lasts."""
     began = time.perf_counter()
     with PseudoTerminal([*PROGRAM, path], columns=size[0], rows=size[1], environment=ENVIRONMENT, folder=folder) as run:
-        run.wait_for("1 of ")
-        print(f"\n20,000 x 1,000, scoring, {size[0]} x {size[1]}: first rows {time.perf_counter() - began:.2f} s")
+        run.wait_for(lambda text: "1 of " in text or "Scored in" in text)
+        print(
+            f"\n{channels:,} channels, scoring, {size[0]} x {size[1]}: first rows {time.perf_counter() - began:.2f} s"
+        )
         print(HEADER)
         steps: list[tuple[float, int]] = []
-        run.send("\x1b[B")
-        run.wait_for("2 of ")
         while " a second" in run.text:
             steps.append(effect(run, "\x1b[B" if len(steps) % 2 == 0 else "\x1b[A"))
             time.sleep(0.05)
-        report("cursor down, up", steps)
+        if steps:
+            report("cursor down, up", steps)
+        else:
+            print("scored before the first key")
 
 
 def effect(run: PseudoTerminal, key: str) -> tuple[float, int]:

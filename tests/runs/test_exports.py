@@ -115,7 +115,7 @@ def test_names_with_separators_quotes_and_line_breaks_survive_in_csv(tmp_path: P
 
 @pytest.mark.parametrize("name", ["a.xls", "a", "a.csv.gz", ".json"])
 def test_an_unknown_extension_lists_the_known_ones(tmp_path: Path, results: pl.DataFrame, name: str) -> None:
-    with pytest.raises(RunFileError, match=r"Use one of \.csv, \.parquet, \.json\.$") as caught:
+    with pytest.raises(RunFileError, match=r"Use one of \.csv, \.parquet, \.json, \.md, \.html\.$") as caught:
         export(results, facts(8), PLAN, tmp_path / name)
     assert caught.value.exit_code == 4
     assert files_in(tmp_path) == []

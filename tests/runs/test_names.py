@@ -23,3 +23,23 @@ from screener.runs import default_run_path
 )
 def test_a_run_file_stands_beside_its_table_with_the_ending_changed(table: str, run: str) -> None:
     assert default_run_path(Path(table)) == Path(run)
+
+
+@pytest.mark.parametrize(
+    ("pattern", "run"),
+    [
+        ("run_*.csv", "run.run"),
+        ("data/lot-7_[0-9][0-9].csv.gz", "data/lot-7.run"),
+        ("*_pump.parquet", "pump.run"),
+        ("2024-0?.csv", "2024-0.run"),
+        ("*.csv", "tables.run"),
+        ("run_*", "run.run"),
+    ],
+)
+def test_the_run_file_of_several_tables_is_named_by_what_their_names_have_in_common(pattern: str, run: str) -> None:
+    assert default_run_path(Path(pattern)) == Path(run)
+
+
+def test_a_table_whose_name_only_looks_like_a_pattern_keeps_its_name(tmp_path: Path) -> None:
+    (tmp_path / "force [N].csv").touch()
+    assert default_run_path(tmp_path / "force [N].csv") == tmp_path / "force [N].run"

@@ -11,12 +11,8 @@ from screener.stats.positions import plotting_positions
 from screener.stats.r_error import change_p, r_error
 
 PAIRS = 400
-LAWS: dict[str, Any] = {
-    "normal": stats.norm,
-    "uniform": stats.uniform,
-    "exponential": stats.expon,
-    "gamma": stats.gamma(9),
-}
+LAWS: dict[str, Any] = {"normal": stats.norm, "uniform": stats.uniform, "exponential": stats.expon}
+LAWS |= {"gamma": stats.gamma(9)}
 CRITICAL = {200: 0.9932, 5000: 0.99966}
 """At alpha .05, from NIST/SEMATECH at n = 200 and its continuation."""
 

@@ -208,7 +208,7 @@ async def test_the_page_on_the_table_says_what_was_set_aside_and_remarked(review
 
 
 async def test_the_help_has_the_keys_the_method_and_the_cautions(reviewed: ScreenerApp) -> None:
-    async with reviewed.run_test(size=(100, 70)) as pilot:
+    async with reviewed.run_test(size=(100, 100)) as pilot:
         await shows(pilot, "1 of 60 channels")
         await pilot.press("question_mark")
         text = " ".join((await shows(pilot, "Cautions")).split())

@@ -59,7 +59,7 @@ async def test_the_rows_are_exported_and_an_existing_file_is_kept(rows: pl.DataF
             await pilot.press("e")
             pilot.app.query_one("#answer").value = str(target)  # type: ignore[attr-defined]
             await pilot.press("enter")
-            await shows(pilot, lambda text: "Wrote 4 channels" in text or "exists: give another name" in text)
+            await shows(pilot, lambda text: "Wrote 4 channels" in text or "That file exists: give" in text)
     assert pl.read_csv(target).height == 4
 
 

@@ -9,7 +9,7 @@ from made_run import made_facts, made_scores
 from screen_text import screen_lines, screen_text, shows
 
 from screener.errors import ScreenerError, TableError
-from screener.records import BlockFailed, BlockScored, Event, Plan, RunFinished, Span, TableOpened
+from screener.records import BlockFailed, BlockScored, Event, NullsPrepared, Plan, RunFinished, Span, TableOpened
 from screener.runs import RunFile
 from screener.ui.abilities import Abilities
 from screener.ui.app import ScreenerApp
@@ -94,6 +94,40 @@ async def test_progress_is_shown_while_scoring_and_gone_afterwards(tmp_path: Pat
         run.step(7)
         await shows(pilot, "Scored in")
         assert "channels a second" not in screen_text(pilot.app)
+
+
+async def test_null_distributions_that_are_simulated_first_are_told_of(tmp_path: Path) -> None:
+    run, ready = SteppedRun(tmp_path), threading.Event()
+
+    def start(cancelled: Callable[[], bool]) -> Iterator[Event]:
+        events = run.start(cancelled)
+        yield next(events)
+        yield NullsPrepared("blom", 0.25)
+        ready.wait()
+        yield from events
+
+    app = ScreenerApp(Source("stepped.csv", start, None), can=Abilities(unicode=True))
+    async with app.run_test(size=SIZE) as pilot:
+        await shows(pilot, "25% of simulating the null distributions for blom positions")
+        ready.set()
+        run.step(10)
+        await shows(pilot, "Scored in")
+        assert "simulating" not in screen_text(app)
+
+
+async def test_decisions_are_made_while_blocks_come_in(tmp_path: Path) -> None:
+    run = SteppedRun(tmp_path)
+    app = screen_of(run)
+    async with app.run_test(size=SIZE) as pilot:
+        run.step(2)
+        await shows(pilot, "of 20 channels")
+        await pilot.press("down", "x")
+        await shows(pilot, "leave out: 1 channel")
+        run.step(8)
+        await shows(pilot, "\n100 channels: ")
+        assert under_cursor(app)[2] == "x"
+    with RunFile.open(run.path, read_only=True) as stored:
+        assert stored.results()["decision"].to_list()[:3] == [None, "leave out", None]
 
 
 async def test_a_block_that_fails_is_named_and_the_rest_goes_on(tmp_path: Path) -> None:

@@ -28,8 +28,9 @@ SURE_AT_ONE, SURE = 3.3, 4.2
 """Standard errors from 0 beyond which rho_1, or rho_k at another lag to 16, is no chance."""
 SLIGHT = 0.1
 """A rho below this leaves the null of r as it is, however sure."""
-NARROW, SMOOTH = 0.3, 0.5
-"""|rho| that lasts to lag 9-16 calls for every lag when the coarser resolution sees less than a share of it."""
+NARROW, SURE_OF_LASTING, SMOOTH = 0.2, 3.0, 0.85
+"""|rho| that lasts to the far half of a resolution's lags, and so many standard errors, calls for every lag when the
+next resolution sees less than a share of it. The Fourier transform costs several sorts; few channels swing so."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -58,14 +59,15 @@ def serial_dependence(resolutions: tuple[Resolution, ...], n: IntArray, readings
     back = _lost_with_the_mean(rho[0][:, 1], n)[:, None]
     restored = [each + back * (1.0 - each) for each in rho]
     limit = longest_lag(readings.shape[1])
+    most = 2.0 * np.sum(np.nan_to_num(rho[0]) ** 2, axis=1) - 1.0
     tau_3, tau_4 = np.ones(n.size), np.ones(n.size)
     for i, (each, width) in enumerate(zip(restored, (one.width for one in resolutions), strict=True)):
         if i == 0 or 3 * width <= limit:
             weights = _weights(width, limit, finest=i == 0)
-            third, fourth = powers(each, width, n, weights)
+            third, fourth = powers(each, width, n, weights, most)
             tau_3 += 2.0 * third
             tau_4 += 2.0 * fourth
-    narrow = _narrow(restored, limit)
+    narrow = _narrow(restored, [one.width for one in resolutions], n, limit)
     for channel in np.flatnonzero(narrow):
         tau_3[channel], tau_4[channel] = _from_every_lag(readings[channel], limit)
     tau_3, tau_4 = np.clip(tau_3, 0.0, None), np.maximum(tau_4, 1.0)
@@ -100,12 +102,17 @@ def _weights(width: int, limit: int, *, finest: bool) -> FloatArray:
     return weights
 
 
-def powers(rho: FloatArray, width: int, n: IntArray, weights: FloatArray) -> tuple[FloatArray, FloatArray]:
-    """Sums of rho^3 and of rho^4 over lags, each [C], without what chance adds to them."""
+def powers(
+    rho: FloatArray, width: int, n: IntArray, weights: FloatArray, most: FloatArray
+) -> tuple[FloatArray, FloatArray]:
+    """Sums of rho^3 and of rho^4 over lags, each [C], without what chance adds to them.
+
+    The variance of an estimated rho is taken to be at most most[C] / n, lest a swing that lasts be taken for chance.
+    """
     known = np.where(np.isnan(rho), 0.0, rho)
     # Plain products: a power is taken by logarithms, which costs more than all the rest.
     squares = known * known
-    total = width * (squares[:, 0] + 2.0 * squares[:, 1:].sum(axis=1))
+    total = np.minimum(width * (squares[:, 0] + 2.0 * squares[:, 1:].sum(axis=1)), most)
     free = 1.0 - np.minimum(squares, 1.0)
     variance = (total / np.maximum(n, 1))[:, None] * (free * free * free)
     weighed = np.where(np.isnan(rho), 0.0, weights)
@@ -114,18 +121,22 @@ def powers(rho: FloatArray, width: int, n: IntArray, weights: FloatArray) -> tup
     return third, fourth
 
 
-def _narrow(rho: list[FloatArray], limit: int) -> BoolArray:
-    """Channels whose dependence lasts beyond the single lags but swings too fast for sums of rows."""
-    fine = np.nan_to_num(rho[0][:, LAGS // 2 + 1 :])
+def _narrow(rho: list[FloatArray], wide: list[int], n: IntArray, limit: int) -> BoolArray:
+    """Channels whose dependence lasts beyond the lags of some resolution, but swings too fast for the next one."""
+    found = np.zeros(n.size, dtype=np.bool_)
     if limit <= LAGS:
-        return np.zeros(fine.shape[0], dtype=np.bool_)
-    lasting = np.max(np.abs(fine), axis=1)
-    if len(rho) == 1:
-        alone: BoolArray = lasting >= NARROW
-        return alone
-    seen = np.max(np.abs(np.nan_to_num(rho[1][:, 1:3])), axis=1)
-    narrow: BoolArray = (lasting >= NARROW) & (seen < SMOOTH * lasting)
-    return narrow
+        return found
+    for i, each in enumerate(rho):
+        known = np.abs(np.nan_to_num(each))
+        lasting = np.max(known[:, LAGS // 2 + 1 :], axis=1)
+        variance = wide[i] * (2.0 * np.sum(known * known, axis=1) - known[:, 0] ** 2) / np.maximum(n, 1)
+        least = np.maximum(NARROW, SURE_OF_LASTING * np.sqrt(variance))
+        if i + 1 < len(rho):
+            seen = np.max(np.abs(np.nan_to_num(rho[i + 1][:, 1:3])), axis=1)
+            found |= (lasting >= least) & (seen < SMOOTH * lasting)
+        elif i == 0:
+            found |= lasting >= least
+    return found
 
 
 def _from_every_lag(readings: FloatArray, limit: int) -> tuple[float, float]:
@@ -134,7 +145,8 @@ def _from_every_lag(readings: FloatArray, limit: int) -> tuple[float, float]:
     n = np.array([np.isfinite(readings).sum()])
     weights = np.ones(limit + 1)
     weights[0] = 0.0
-    third, fourth = powers(rho, 1, n, weights)
+    most = np.array([2.0 * float(np.nansum(rho[0, : LAGS + 1] ** 2)) - 1.0])
+    third, fourth = powers(rho, 1, n, weights, most)
     return 1.0 + 2.0 * float(third[0]), 1.0 + 2.0 * float(fourth[0])
 
 

@@ -13,9 +13,18 @@ KEYS = """\
   [ ]           the plot against the previous or next family; also Left and Right
   /  n          find a channel by a part of its name; the next one
   f             only the flagged channels, or all
+  w             only channels where a word is found (not scored, leave out, ...) or a condition holds, in SQL over the
+                export columns: r < 0.98 AND n > 100; an empty one shows all
   s  S          sort by the next column; reverse the order
-  0 to 8        sort in table order, or by the 1st to 8th column; the same again reverses
-  e             export the rows as filtered and sorted here
+  0 to 9        sort in table order, or by verdict, channel, n, r, critical r, p, off, closest, decision; again reverses
+  c             choose the columns
+  v  V          the next or previous view of the channel: quantile plot, actual minus expected, low tail, high tail,
+                run order, lag, histogram, all families
+  Space  m      mark the channel; mark all rows shown, or none. What is decided or noted then is so for all marked
+  u t x l       decide: use as it is, use transformed, leave out, look again; the letter stands beside the verdict
+  d  a          take the decision back; add a note
+  z  y          undo, and do again; every act is in the run file at once, with its time and user
+  e             export the rows as filtered and sorted here; .md and .html are reports with plots
   i             how the table was read: columns set aside, remarks
   Ctrl+P        all actions by name
   Ctrl+Z        put in the background (fg brings it back)
@@ -28,6 +37,7 @@ COLUMNS = """\
   r             correlation of the sorted readings with the values that the family expects; 1 is a straight plot
   critical r    a channel truly of that family has a smaller r with probability alpha
   p             probability of so small an r, or a smaller one, for a channel truly of that family
+  low-high      actual minus expected, from the low to the high tail: half height is on the line, up is above it
   off (sd)      rms distance of the readings from the line in standard deviations: how much, where p says how sure
   closest       the family closest to the channel, where that was looked for"""
 
@@ -38,6 +48,14 @@ METHOD = (
     "The plot shows actual readings against expected ones, location + scale x G(u), with the line on which they are "
     "equal; lognormal, Weibull and log-logistic are plotted in ln x. Bends at both ends mean heavy or light tails, a "
     "bow means skew."
+)
+
+BAND = (
+    "The band around the line is the 95 % simultaneous band with equal local levels (Aldor-Noiman et al. 2013), "
+    "simulated for fitted location and scale: of channels truly of the family, 95 in 100 lie wholly within it. It is "
+    "drawn for normal, lognormal, logistic, log-logistic, double exponential, both extreme value families and "
+    "Weibull; the others' fits scatter too much for one. Run order and lag show all rows up to 512; of longer records "
+    "the lowest and highest reading of each of 256 stretches, and 128 readings with their followers."
 )
 
 CAUTIONS = (
@@ -54,6 +72,11 @@ CAUTIONS = (
 TERMINAL = "Plain ASCII is used when the locale does not declare UTF-8, or NO_COLOR is set; LANG=C.UTF-8 declares it."
 
 
+def cautions() -> tuple[str, ...]:
+    """What must be known before anything is concluded from a screen."""
+    return CAUTIONS
+
+
 def help_page() -> Page:
     """The page of help."""
     paragraphs: list[Line] = [
@@ -65,6 +88,9 @@ def help_page() -> Page:
         plain(""),
         plain("Method", STRONG),
         plain(METHOD),
+        plain(""),
+        plain("Plots", STRONG),
+        plain(BAND),
         plain(""),
         plain("Cautions", STRONG),
         *(plain(f"* {caution}") for caution in CAUTIONS),

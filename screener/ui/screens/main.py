@@ -161,7 +161,7 @@ class MainScreen(Board):
         if self._opened is not None and self._rows is not None:
             self._to_replace = None
             proposed = self._opened.run_path.with_suffix(".csv").name
-            self._ask(EXPORT, "Export these rows to (.csv .parquet .json):", proposed)
+            self._ask(EXPORT, "Export these rows to (.csv .parquet .json .md .html):", proposed)
 
     def action_reading(self) -> None:
         """What was read and what was set aside."""

@@ -1,7 +1,7 @@
 """Bits of rows, held against plain loops."""
 
 import numpy as np
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 from hypothesis.extra.numpy import array_shapes, arrays
 from numpy.typing import NDArray
@@ -26,12 +26,14 @@ def longest(flags: NDArray[np.bool_]) -> int:
     return most
 
 
+@settings(deadline=None, max_examples=50)
 @given(FLAGS, st.integers(0, 8))
 def test_longest_runs_are_those_of_a_loop(flags: NDArray[np.bool_], dense: int) -> None:
     denser = flags | (np.arange(flags.shape[1]) % 9 < dense)
     assert bits.longest_run(put(denser)).tolist() == [longest(channel) for channel in denser]
 
 
+@settings(deadline=None, max_examples=50)
 @given(FLAGS, st.integers(0, 200))
 def test_pairs_are_those_of_shifted_flags(flags: NDArray[np.bool_], lag: int) -> None:
     rows = flags.shape[1]
@@ -39,6 +41,7 @@ def test_pairs_are_those_of_shifted_flags(flags: NDArray[np.bool_], lag: int) ->
     assert bits.pairs(put(flags), min(lag, rows - 1)).tolist() == wanted
 
 
+@settings(deadline=None, max_examples=50)
 @given(FLAGS)
 def test_bits_are_unpacked_as_they_were_put(flags: NDArray[np.bool_]) -> None:
     assert np.array_equal(bits.unpacked(put(flags), flags.shape[1]), flags)

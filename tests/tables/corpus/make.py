@@ -96,6 +96,12 @@ CASES = {
         dialect="semicolon, 2 preamble lines, names in line 4, units in line 5",
         aside=("time",),
     ),
+    "padded_title.csv": Case(
+        "Rig 7;;\np;q;when\nbar;l;\n" + "".join(f"{row};2024-03-0{k}\n" for k, row in enumerate(rows(";").split(), 1)),
+        units={"p": "bar", "q": "l"},
+        dialect="semicolon, 1 preamble line, names in line 2, units in line 3",
+        aside=("when",),
+    ),
     "quotes_in_preamble.csv": Case('"Rig 7, "left" side\nvalve 5" open\np,q\n' + rows()),
     "units_in_brackets.csv": Case("p,q\n[bar],[l/min]\n" + rows(), units={"p": "bar", "q": "l/min"}),
     "no_units_as_said.csv": Case(
