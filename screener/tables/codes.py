@@ -19,8 +19,8 @@ _FAR = 3.0
 _FEWEST_CELLS = 2
 _FEWEST_OTHERS = 3
 _BATCH_READINGS = 8_000_000
-_HELD_READINGS = 24_000_000
-"""A table in memory of so many readings is looked at as a whole: cutting thousands of columns apart costs as much."""
+_HELD_READINGS = 1_000_000
+"""Of a table in memory: so few that their copy reuses the memory of the one before."""
 
 
 def proposed_codes(frame: pl.DataFrame | pl.LazyFrame, columns: Sequence[str], rows: int) -> tuple[Proposal, ...]:
@@ -38,12 +38,11 @@ def proposed_codes(frame: pl.DataFrame | pl.LazyFrame, columns: Sequence[str], r
 
 def _parts(frame: pl.DataFrame | pl.LazyFrame, columns: Sequence[str], rows: int) -> Iterator[pl.DataFrame]:
     """The columns, so many at a time."""
-    if isinstance(frame, pl.DataFrame) and frame.width == len(columns) and frame.width * rows <= _HELD_READINGS:
-        yield frame
-        return
-    width = max(1, _BATCH_READINGS // rows)
+    held = frame if isinstance(frame, pl.DataFrame) and frame.width == len(columns) else None
+    width = max(1, (_BATCH_READINGS if held is None else _HELD_READINGS) // rows)
     for start in range(0, len(columns), width):
-        yield frame.lazy().select(columns[start : start + width]).collect()
+        stop = start + width
+        yield frame.lazy().select(columns[start:stop]).collect() if held is None else held[:, start:stop]
 
 
 def _far_reaching(frame: pl.DataFrame) -> list[pl.Series]:

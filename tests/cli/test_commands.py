@@ -129,6 +129,12 @@ def test_show_finds_a_channel_by_the_part_of_its_name_that_no_other_has(run_file
     assert screener("show", run_file, "WAIT").out == screener("show", run_file, "wait [s]").out
 
 
+def plot_in(text: str, view: str) -> str:
+    """The plot under the heading of that view."""
+    parts = text.split("\n\n")
+    return parts[next(k for k, part in enumerate(parts) if part.startswith(f"{view}: ")) + 1].rstrip("\n")
+
+
 def test_show_draws_against_another_family_in_ascii_and_at_the_size_asked_for(run_file: Path) -> None:
     outcome = screener(
         "show", run_file, "wait", "--against", "exponential", "--ascii", "--width", "60", "--height", "12"
@@ -136,7 +142,7 @@ def test_show_draws_against_another_family_in_ascii_and_at_the_size_asked_for(ru
     assert outcome.code == 0
     assert outcome.out.isascii()
     assert "expected if exponential" in outcome.out
-    plot = outcome.out.rsplit("\n\n", 1)[1].splitlines()
+    plot = plot_in(outcome.out, "quantile").splitlines()
     assert len(plot) == 12
     assert max(map(len, plot)) <= 60
 
@@ -155,8 +161,7 @@ def test_show_draws_against_another_family_in_ascii_and_at_the_size_asked_for(ru
 def test_show_prints_every_view_of_a_channel(run_file: Path, view: str, label: str) -> None:
     outcome = screener("show", run_file, "wait", "--view", view)
     assert outcome.code == 0
-    assert label in outcome.out.rsplit("\n\n", 1)[1]
-    assert f"{view.replace('-', ' ')}: " in outcome.out
+    assert label in plot_in(outcome.out, view.replace("-", " "))
 
 
 def test_show_says_which_families_come_closest(run_file: Path) -> None:

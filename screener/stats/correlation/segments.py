@@ -9,6 +9,7 @@ nodes. The first ranks are kept one by one.
 from dataclasses import dataclass
 from functools import lru_cache
 from itertools import pairwise
+from threading import Lock
 
 import numpy as np
 
@@ -26,6 +27,11 @@ NODES = 9
 CLASS_RATIO = 1.06
 """Channels whose n lies within this ratio share one set of segments."""
 
+LONG = 250_000
+"""Ranks of a half whose segments take 18 MB, too much to keep for every n that comes."""
+
+_MAKING = Lock()
+
 
 @dataclass(frozen=True, slots=True)
 class Segments:
@@ -37,9 +43,10 @@ class Segments:
     bounds: tuple[tuple[int, int], ...]
     """Ranks first + 1 ... stop of each polynomial segment."""
     bases: tuple[FloatArray, ...]
-    """[stop - first, NODES] cardinal polynomials of each segment at its ranks."""
-    mirrored: tuple[FloatArray, ...]
-    """The same bases with the ranks in falling order, for the upper half."""
+    """[stop - first, NODES] cardinal polynomials of each segment at its ranks.
+
+    Chebyshev nodes lie evenly about the middle: with ranks in falling order the same polynomials come in reverse.
+    """
     sums: FloatArray
     """[segments, NODES] their sums over the whole segment."""
 
@@ -58,9 +65,23 @@ def class_size(n: int) -> int:
     return max(size, n + n % 2)
 
 
-@lru_cache(maxsize=64)
 def segments(width: int) -> Segments:
-    """The segments of a half of that many ranks."""
+    """The segments of a half of that many ranks, made once for all threads; of long halves only a few are kept."""
+    with _MAKING:
+        return _of_long_half(width) if width > LONG else _of_half(width)
+
+
+@lru_cache(maxsize=2)
+def _of_long_half(width: int) -> Segments:
+    return _made(width)
+
+
+@lru_cache(maxsize=64)
+def _of_half(width: int) -> Segments:
+    return _made(width)
+
+
+def _made(width: int) -> Segments:
     edges = [min(KEPT, width)]
     while edges[-1] < width:
         edges.append(min(width, int(edges[-1] * GROWTH)))
@@ -68,8 +89,7 @@ def segments(width: int) -> Segments:
     pieces = [_chebyshev(first, stop) for first, stop in bounds]
     nodes = np.concatenate([np.arange(1.0, edges[0] + 1.0), *(node for node, _ in pieces)])
     bases = tuple(basis for _, basis in pieces)
-    mirrored = tuple(np.ascontiguousarray(basis[::-1]) for basis in bases)
-    return Segments(width, nodes, bounds, bases, mirrored, np.array([basis.sum(axis=0) for basis in bases]))
+    return Segments(width, nodes, bounds, bases, np.array([basis.sum(axis=0) for basis in bases]))
 
 
 def _chebyshev(first: int, stop: int) -> tuple[FloatArray, FloatArray]:
@@ -94,9 +114,9 @@ def compress(tile: FloatArray, cut: Segments) -> FloatArray:
     out[:, : cut.direct] = tile[:, : cut.direct]
     out[:, count : count + cut.direct] = tile[:, end - cut.direct :][:, ::-1]
     at = cut.direct
-    for (first, stop), basis, mirrored in zip(cut.bounds, cut.bases, cut.mirrored, strict=True):
+    for (first, stop), basis in zip(cut.bounds, cut.bases, strict=True):
         out[:, at : at + NODES] = tile[:, first:stop] @ basis
-        out[:, count + at : count + at + NODES] = tile[:, end - stop : end - first] @ mirrored
+        out[:, count + at : count + at + NODES] = (tile[:, end - stop : end - first] @ basis)[:, ::-1]
         at += NODES
     return out
 
