@@ -42,14 +42,15 @@ def leave(screen: PseudoTerminal) -> None:
 def test_from_a_table_to_an_exported_file(tmp_path: Path, size: tuple[int, int]) -> None:
     shutil.copy(SAMPLE, tmp_path)
     with terminal(tmp_path, "pump_rig.parquet", size=size) as screen:
-        screen.wait_for("outlet_pressure_01")
+        screen.wait_for("outlet_p")
         wait_until_all_are_scored(screen)
         screen.send("6" + HOME)
         screen.wait_for(lambda text: "1 of 240 channels, sorted by p" in text)
         with RunFile.open(tmp_path / "pump_rig.run", read_only=True) as run:
             results = run.results().sort("p", nulls_last=True)
         names = results["channel"].to_list()
-        assert names[0].split(" [")[0] in screen.lines[3]
+        # A name that is too long for its column keeps its beginning and its end.
+        assert names[0].split(" [")[0][:5] in screen.lines[3]
         if size == (80, 24):
             screen.send("\r")
         screen.wait_for("expected if normal")
@@ -78,7 +79,7 @@ def test_the_run_file_is_opened_again_without_its_table(tmp_path: Path) -> None:
     (tmp_path / "pump_rig.parquet").unlink()
     with terminal(tmp_path, "pump_rig.run") as screen:
         wait_until_all_are_scored(screen)
-        screen.wait_for("outlet_pressure_01")
+        screen.wait_for("outlet_p")
         leave(screen)
 
 

@@ -22,7 +22,8 @@ BoolArray = NDArray[np.bool_]
 ROUNDED_FROM = 1.0
 """A step matters from this many standard deviations over the square root of n."""
 FEWEST_EFFECTIVE = 20.0
-"""A record worth fewer independent readings does not define a marginal distribution."""
+"""A record worth fewer independent readings does not define a marginal distribution; one that has fewer readings is
+short, and is judged as it is."""
 SLOW = 2.0
 """tau_4 below which a short record is short, not drifting."""
 LASTING = 0.45
@@ -120,7 +121,7 @@ def find_conditions(readings: FloatArray, ordered: FloatArray, n: IntArray) -> C
         n_effective=n_effective,
         rise=trend.rise,
         slow=dependence.slow,
-        drifting=wandered | trend.sure,
+        drifting=(wandered | trend.sure) & (n >= FEWEST_EFFECTIVE),
         missing=readings.shape[1] - n,
         longest_gap=gaps.longest,
         gaps=gaps.longest > gaps.explained,
