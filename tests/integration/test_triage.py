@@ -97,8 +97,10 @@ def test_after_a_dropped_connection_the_screen_comes_back_to_row_sort_and_filter
         assert screen.exit_code() == 128 + signal.SIGHUP
         assert screen.attributes == screen.attributes_before
     with terminal(folder, "pump_rig_short.csv") as screen:
-        text = screen.wait_for("6 of 40 channels, sorted by p")
-        assert pointed(text) == name
+        # The line at the foot may tell that everything was scored before; a key brings the place back.
+        screen.wait_for(lambda text: f">!  {name[:4]}" in text)
+        screen.send(DOWN)
+        screen.wait_for("7 of 40 channels, sorted by p")
         screen.send("q")
         assert screen.exit_code() == 0
     with RunFile.open(folder / "pump_rig_short.run", read_only=True) as run:
@@ -146,7 +148,7 @@ def test_usual_terminals_are_served(folder: Path, term: str) -> None:
 
 def test_two_runs_are_compared_on_the_screen(folder: Path) -> None:
     table = pl.read_csv(SHORT, infer_schema_length=None)
-    numbers = [name for name, kind in table.schema.items() if kind.is_float()]
+    numbers = [name for name, kind in table.schema.items() if kind.is_float() and table[name].n_unique() > 1]
     bent = numbers[0]
     worn = table.with_columns(pl.Series(bent, np.random.default_rng(1).exponential(size=table.height)))
     worn.drop(numbers[1]).write_csv(folder / "after.csv")
