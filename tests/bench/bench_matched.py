@@ -56,7 +56,7 @@ def main() -> None:
             cells = [shares(n, step, coefficient, channels, alpha) for coefficient in COEFFICIENTS]
             text = ""
             for matched, plain, unscored in cells:
-                bad = unscored < 0.5 and not low <= matched <= high
+                bad = unscored < 1.0 and not low <= matched <= high
                 missed += bad
                 cell = f"{100 * matched:.1f}{'!' if bad else ' '}({100 * plain:.0f}; {100 * unscored:.0f})"
                 text += f"{cell:>22}"
