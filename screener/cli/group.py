@@ -21,6 +21,7 @@ COMMANDS = {
     "compare": "Compare two runs of the same channels.",
     "critical": "Print critical values of r.",
     "nulls": "Show or build the null tables.",
+    "plan": "Print a plan file to begin with.",
 }
 """Every command and its line in the help; each is the `command` of the module of its name."""
 

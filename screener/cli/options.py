@@ -84,9 +84,30 @@ TABLE_OPTIONS = (
 JOBS = click.option("--jobs", type=click.IntRange(min=1), default=None, help="Workers.  [default: usable cores]")
 
 
+def _use_plan(ctx: click.Context, _option: click.Parameter, path: Path | None) -> None:
+    """Let what the plan file sets be the defaults of the other options."""
+    if path is not None:
+        from screener.cli.plan_file import read_plan
+
+        # An empty shape means as found, which the option says by its absence.
+        found = {name: value for name, value in read_plan(path).items() if (name, value) != ("shape", "")}
+        ctx.default_map = {**(ctx.default_map or {}), **found}
+
+
+PLAN_FILE = click.option(
+    "--plan",
+    "plan_file",
+    type=click.Path(path_type=Path),
+    is_eager=True,
+    expose_value=False,
+    callback=_use_plan,
+    help="Settings from this file, as `screener plan` prints it; options given beside it override it.",
+)
+
+
 def plan_options(command: Command) -> Command:
     """Add the options that make a plan, and --jobs."""
-    for option in reversed((*PLAN_OPTIONS, *TABLE_OPTIONS, JOBS)):
+    for option in reversed((PLAN_FILE, *PLAN_OPTIONS, *TABLE_OPTIONS, JOBS)):
         command = option(command)
     return command
 
@@ -117,7 +138,9 @@ def plan_from(given: dict[str, Any]) -> Plan:
 
 def refuse_plan_for_run(ctx: click.Context, path: Path) -> None:
     """Raise UsageError when options for a table are given together with a run file, which has its own plan."""
-    options = [option for option in ctx.command.params if option.name in {*Plan.__dataclass_fields__, "run_path"}]
+    options = [
+        option for option in ctx.command.params if option.name in {*Plan.__dataclass_fields__, "plan_file", "run_path"}
+    ]
     given = [option for option in options if _was_given(ctx, option)]
     if given:
         raise click.UsageError(

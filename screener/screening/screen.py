@@ -67,7 +67,10 @@ def held_against(names: Sequence[str], plan: Plan) -> NDArray[np.int64]:
     """
     expected = [_expectation(text) for text in plan.expect]
     default = FAMILIES.index(family_named(plan.family))
-    places = (next((place for pattern, place in expected if fnmatchcase(name, pattern)), default) for name in names)
+    places = (
+        next((place for pattern, place in expected if name == pattern or fnmatchcase(name, pattern)), default)
+        for name in names
+    )
     return np.fromiter(places, dtype=np.int64, count=len(names))
 
 

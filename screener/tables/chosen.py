@@ -37,7 +37,9 @@ def choose(names: Sequence[str], plan: Plan) -> Choice:
     if len(reasons) == len(names):
         raise PlanError(f"Skipping {_quoted(plan.skip)} leaves no column. The table has {shortlist(names, 5)}.")
     by_name = frozenset(at for at, name in enumerate(names) if name in plan.channels)
-    unmatched = [pattern for pattern in (*plan.channels, *plan.skip) if not any(_fits(name, pattern) for name in names)]
+    expected = (text.rpartition("=")[0] for text in plan.expect)
+    asked = (*plan.channels, *plan.skip, *expected)
+    unmatched = [pattern for pattern in asked if not any(_fits(name, pattern) for name in names)]
     return Choice(reasons, by_name, tuple(f"No column matches {pattern!r}." for pattern in unmatched))
 
 

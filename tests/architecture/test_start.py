@@ -6,7 +6,7 @@ import sys
 import pytest
 
 HEAVY = {"numpy", "polars", "scipy", "textual", "rich", "plotext", "sqlite3", "concurrent"}
-COMMANDS = ["open", "score", "flagged", "export", "show", "critical", "nulls"]
+COMMANDS = ["open", "score", "flagged", "export", "show", "critical", "nulls", "plan", "compare"]
 
 
 def loaded_by(*arguments: str) -> tuple[str, set[str]]:
