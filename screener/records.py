@@ -168,6 +168,11 @@ class Block:
     span: Span
     readings: FloatArray
     """float64[stop - first, rows], owned by the receiver, who may sort it in place."""
+    below: IntArray | None = None
+    """[stop - first] how many of each channel's lowest readings are only known to lie below a detection limit; None
+    where the table has no such limit."""
+    above: IntArray | None = None
+    """The same of its highest readings, above a limit."""
 
 
 @dataclass(frozen=True, slots=True)

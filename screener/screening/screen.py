@@ -10,7 +10,18 @@ import numpy as np
 from numpy.typing import NDArray
 
 from screener.errors import PlanError, ScreenerError
-from screener.records import Block, BlockFailed, BlockScored, BlockScores, Event, Plan, RunFinished, Span, TableFacts
+from screener.records import (
+    Block,
+    BlockFailed,
+    BlockScored,
+    BlockScores,
+    Channel,
+    Event,
+    Plan,
+    RunFinished,
+    Span,
+    TableFacts,
+)
 from screener.stats.closest import closest
 from screener.stats.conditions import conditions_of
 from screener.stats.families import FAMILIES, family_named
@@ -85,7 +96,9 @@ def _expectation(text: str) -> tuple[str, int]:
 
 def score_span(table: ReadableTable, span: Span, plan: Plan, null: Nulls) -> BlockScores:
     """Read and score the channels of one span."""
-    scoring = score(table.read(span).readings, FAMILIES, null, plan.alpha, match=plan.match)
+    block = table.read(span)
+    channels = table.facts.channels[span.first : span.stop]
+    scoring = score(block.readings, FAMILIES, null, plan.alpha, match=plan.match)
     fits = scoring.fits
     notes = tuple(tuple("outside support" if outside else "" for outside in row) for row in fits.outside)
     return BlockScores(
@@ -103,14 +116,23 @@ def score_span(table: ReadableTable, span: Span, plan: Plan, null: Nulls) -> Blo
         scale=fits.scale,
         notes=notes,
         shapes=fits.shapes,
-        held=held_against([channel.name for channel in table.facts.channels[span.first : span.stop]], plan),
+        held=held_against([channel.name for channel in channels], plan),
         closest=closest(scoring.p, FAMILIES, plan.alpha),
-        conditions=tuple(conditions_of(scoring.conditions, channel) for channel in range(scoring.n.size)),
+        conditions=tuple(
+            _conditions(channel, conditions_of(scoring.conditions, at)) for at, channel in enumerate(channels)
+        ),
         step=scoring.conditions.step,
         n_effective=scoring.conditions.n_effective,
         points=scoring.points,
         in_order=tuple(scoring.in_order),
     )
+
+
+def _conditions(channel: Channel, found: str) -> str:
+    """The conditions of one channel in words, its cells beyond a detection limit first."""
+    counts = {"below": channel.below, "above": channel.above}
+    limited = (f"{count:,} {side} detection limit" for side, count in counts.items() if count)
+    return "; ".join(word for word in (*limited, found) if word)
 
 
 def _event(future: Future[BlockScores], span: Span, facts: TableFacts) -> BlockScored | BlockFailed:

@@ -6,6 +6,7 @@ from dataclasses import dataclass
 import polars as pl
 
 from screener.tables.cells import BLANKS
+from screener.tables.limits import Limit
 from screener.tables.names import shortlist, visible
 
 _WIDE = "０１２３４５６７８９．，－＋％Ｅｅ−\u00a0\u2007\u202f’\0"
@@ -66,8 +67,8 @@ class Forms:
     by_column: dict[str, Form]
     undefined: dict[str, int]
     """Cells of a column that mean an undefined number."""
-    below: dict[str, int]
-    above: dict[str, int]
+    below: dict[str, Limit]
+    above: dict[str, Limit]
     understood: pl.DataFrame
     """The cells that are numbers after all: `column`, `cell`, `cells`, `kind`."""
     words: pl.DataFrame
@@ -78,8 +79,8 @@ class Forms:
         return Forms(
             {column: form for column, form in self.by_column.items() if column not in columns},
             self.undefined,
-            {column: cells for column, cells in self.below.items() if column not in columns},
-            {column: cells for column, cells in self.above.items() if column not in columns},
+            {column: limit for column, limit in self.below.items() if column not in columns},
+            {column: limit for column, limit in self.above.items() if column not in columns},
             self.understood.filter(~pl.col("column").is_in(list(columns))),
             self.words.filter(~pl.col("column").is_in(list(columns))),
         )
@@ -117,12 +118,14 @@ def forms_of(refused: pl.DataFrame, numbers: Mapping[str, int], *, decimal_comma
     forms = _by_column(split.filter(pl.col("body").is_not_null()), numbers, decimal_comma=decimal_comma)
     frames = [_understood(split.filter(column=column), form) for column, form in forms.items()]
     known = pl.concat([split.clear().with_columns(value=pl.lit(0.0), kind=pl.lit("")), *frames]).select(
-        "column", "cell", "cells", "kind", "limit"
+        "column", "cell", "cells", "kind", "limit", "value"
     )
     words = rest.join(known, on=["column", "cell"], how="anti", maintain_order="left")
-    signs = {sign: known.filter(pl.col("limit").str.contains(f"[{sign}]")) for sign in ("<≤", ">≥")}
+    limited = known.filter(pl.col("value").is_finite())
+    below, above = (limited.filter(pl.col("limit").str.contains(signs)) for signs in ("[<≤]", "[>≥]"))
     used = {column: form for column, form in forms.items() if column in set(known["column"])}
-    return Forms(used, _counts(undefined), _counts(signs["<≤"]), _counts(signs[">≥"]), known.drop("limit"), words)
+    limits = _limits(below, pl.col("value").max()), _limits(above, pl.col("value").min())
+    return Forms(used, _counts(undefined), *limits, known.drop("limit", "value"), words)
 
 
 def unusual(cell: pl.Expr, form: Form) -> pl.Expr:
@@ -201,6 +204,14 @@ def _understood(split: pl.DataFrame, form: Form) -> pl.DataFrame:
         .otherwise(pl.lit("other"))
     )
     return split.with_columns(value=value, kind=kind).filter(pl.col("value").is_not_null() & body.is_not_null())
+
+
+def _limits(known: pl.DataFrame, innermost: pl.Expr) -> dict[str, Limit]:
+    """The limits of each column."""
+    cells = pl.col("cells")
+    at_it = cells.filter(pl.col("value") == innermost)
+    limits = known.group_by("column").agg(cells.sum(), innermost, at_it.sum().alias("at"))
+    return {row["column"]: Limit(row["cells"], row["value"], row["at"]) for row in limits.iter_rows(named=True)}
 
 
 def _counts(frame: pl.DataFrame) -> dict[str, int]:

@@ -21,6 +21,7 @@ from screener.tables.chosen import Choice
 from screener.tables.codes import proposed_codes
 from screener.tables.columns import reading, reason_for_type, unfit
 from screener.tables.forms import CELL, Form, Forms, forms_of, unusual
+from screener.tables.limits import Limit
 from screener.tables.raw import RawTable
 
 GUESSES = ("a row counter", "time stamps", "identifiers", "codes", "flags")
@@ -36,9 +37,9 @@ class Sifted:
     reasons: dict[str, str]
     remarks: tuple[str, ...]
     proposals: tuple[Proposal, ...] = ()
-    below: Mapping[str, int] = field(default_factory=dict)
-    """Readings of a column that are known only to lie below a detection limit."""
-    above: Mapping[str, int] = field(default_factory=dict)
+    below: Mapping[str, Limit] = field(default_factory=dict)
+    """The detection limits of a column that has readings known only to lie below one."""
+    above: Mapping[str, Limit] = field(default_factory=dict)
     units: Mapping[str, str] = field(default_factory=dict)
     """The unit that follows the numbers of a column."""
     whole: pl.DataFrame | None = None

@@ -2,7 +2,7 @@
 
 import os
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass, replace
+from dataclasses import dataclass, field, replace
 from pathlib import Path
 
 import numpy as np
@@ -16,6 +16,7 @@ from screener.tables.columns import reading
 from screener.tables.failures import readable
 from screener.tables.fingerprint import joined
 from screener.tables.joining import join
+from screener.tables.limits import Limit, known_beyond
 from screener.tables.loading import FileState, load_address, load_file
 from screener.tables.names import Label, labels, shortlist
 from screener.tables.raw import RawTable
@@ -40,6 +41,8 @@ class Table:
     """The files that are read block by block, as they were when the table was opened."""
     _kept: tuple[Spool | None, ...] = ()
     """Temporary files that go with the table."""
+    _below: Mapping[str, Limit] = field(default_factory=dict)
+    _above: Mapping[str, Limit] = field(default_factory=dict)
 
     def read(self, span: Span) -> Block:
         """The readings of a span of channels.
@@ -52,7 +55,10 @@ class Table:
         with readable(self.facts.path, self.facts.format):
             for state in self._states:
                 state.check()
-            return Block(span, _as_readings(self._part(span)))
+            readings = _as_readings(self._part(span))
+        columns = self._columns[span.first : span.stop]
+        limits = (known_beyond(readings, columns, self._below, -1), known_beyond(readings, columns, self._above, 1))
+        return Block(span, readings, *limits)
 
     def _part(self, span: Span) -> pl.DataFrame:
         if self._held is not None:
@@ -87,7 +93,8 @@ def open_table(path: Path, plan: Plan, *, held_bytes: int = HELD_BYTES, most_byt
         if raw.held:
             held = sifted.frame.collect() if sifted.whole is None else sifted.whole
     states = () if raw.held else tuple(one.state for one in loaded if one.state)
-    return Table(facts, sifted.columns, held, sifted.frame, states, (source.spool, *(one.raw.spool for one in loaded)))
+    kept = (source.spool, *(one.raw.spool for one in loaded))
+    return Table(facts, sifted.columns, held, sifted.frame, states, kept, sifted.below, sifted.above)
 
 
 def _check_size(path: Path, rows: int, most_bytes: int) -> None:
@@ -126,8 +133,8 @@ def _channels(sifted: Sifted, shown: Mapping[str, Label]) -> tuple[Channel, ...]
             position,
             shown[column].name,
             shown[column].unit or sifted.units.get(column, ""),
-            sifted.below.get(column, 0),
-            sifted.above.get(column, 0),
+            sifted.below[column].cells if column in sifted.below else 0,
+            sifted.above[column].cells if column in sifted.above else 0,
         )
         for position, column in enumerate(sifted.columns)
     )

@@ -3,6 +3,7 @@
 from pathlib import Path
 
 import numpy as np
+import polars as pl
 import pytest
 from command_line import screener
 from screen_text import shows
@@ -56,3 +57,12 @@ async def test_the_page_on_the_table_has_dialect_words_proposals_and_files(runs:
         assert "4 cells hold 'OVER' in force" in text
         assert text.count("--missing=-9999") == 1
         assert "run_2.csv  rows 61 to 120" in text
+
+
+def test_readings_beyond_a_detection_limit_are_a_condition_in_show_and_in_the_export(runs: str) -> None:
+    screener("score", runs)
+    assert "conditions: 2 below detection limit" in screener("show", "run.run", "heat").out
+    screener("export", "run.run", "out.csv")
+    conditions = dict(pl.read_csv("out.csv").select("channel", "conditions").iter_rows())
+    assert conditions["heat"].startswith("2 below detection limit")
+    assert "detection limit" not in (conditions["force"] or "")
