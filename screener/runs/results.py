@@ -41,26 +41,41 @@ _RESULT_FIELDS = {
     **{"conditions": str, "step": float, "n_effective": float},
 }
 _FITS = """
-SELECT family.name, r, critical_r, plain_critical_r, p, extrapolated, location, scale, shape_1, shape_2, note
+SELECT family.name, r, iif(reason IS NULL, critical_r, NULL), iif(reason IS NULL, plain_critical_r, NULL),
+    iif(reason IS NULL, p, NULL), extrapolated, location, scale, shape_1, shape_2, note
 FROM family JOIN fit ON fit.family = family.id AND fit.position = ?
+LEFT JOIN score USING (position)
 ORDER BY family.id
 """
+_OF_A_TEST = ("critical_r", "plain_critical_r", "p")
+_OF_A_SEARCH = ("closest", "closest_r", "closest_p")
+"""Columns that say nothing of a channel that is not scored."""
 
 
 def read_results(connection: sqlite3.Connection, plan: Plan) -> pl.DataFrame:
     """One row per channel tried, in table order: `position` and the RESULT_COLUMNS; absent values are null."""
     stored = _frame(connection.execute(_RESULTS).fetchall(), _RESULT_FIELDS)
     named = stored.with_columns(pl.col("family").fill_null(plan.family))
-    judged = _judged(named.with_columns(reason=_reason()), plan)
+    searched = named.with_columns(pl.when(pl.col("reason").is_null()).then(pl.col(c)).alias(c) for c in _OF_A_SEARCH)
+    judged = _judged(searched.with_columns(reason=_reason()), plan)
     judged = judged.join(read_decided(connection), on="position", how="left", maintain_order="left")
     absent = [pl.lit(None, DTYPES[kind]).alias(name) for name, kind in RESULT_COLUMNS.items() if name not in judged]
     return judged.with_columns(absent).select("position", *RESULT_COLUMNS)
 
 
 def read_fits(connection: sqlite3.Connection, position: int) -> pl.DataFrame:
-    """One row per family for one channel: the columns of FIT_COLUMNS, in the order of the registry."""
+    """One row per family for one channel: the columns of FIT_COLUMNS, in the order of the registry.
+
+    A channel that is not scored has neither critical values nor p.
+    """
     rows = connection.execute(_FITS, (position,)).fetchall()
     return _frame(rows, {**FIT_COLUMNS, "extrapolated": int}).cast({"extrapolated": pl.Boolean})
+
+
+def read_reason(connection: sqlite3.Connection, position: int) -> str:
+    """Why the channel is not scored, whatever the family; empty where it is."""
+    row = connection.execute("SELECT reason FROM score WHERE position = ?", (position,)).fetchone()
+    return visible(row[0]) if row and row[0] else ""
 
 
 def read_points(connection: sqlite3.Connection, position: int) -> FloatArray:
@@ -104,7 +119,8 @@ def _reason() -> pl.Expr:
 def _judged(stored: pl.DataFrame, plan: Plan) -> pl.DataFrame:
     """With q, verdict and departure_size; a channel that has a reason is neither tested nor counted."""
     scored = pl.col("reason").is_null()
-    tested = stored.select(pl.when(scored).then("p")).to_series().to_numpy()
+    stored = stored.with_columns(pl.when(scored).then(pl.col(column)).alias(column) for column in _OF_A_TEST)
+    tested = stored["p"].to_numpy()
     flagged = pl.col("q") < plan.alpha if plan.control is Control.FDR else pl.col("r") < pl.col("critical_r")
     judged = pl.when(flagged).then(pl.lit(str(Verdict.FLAGGED))).otherwise(pl.lit(str(Verdict.CLEAR)))
     unexplained = ((1 - pl.col("r")) * (1 + pl.col("r"))).clip(0.0)

@@ -20,7 +20,15 @@ from screener.runs import decisions
 from screener.runs.facts import read_origin, store_origin
 from screener.runs.failures import explained, explained_content, refusal
 from screener.runs.migrations import migrated
-from screener.runs.results import read_decided, read_fits, read_in_order, read_points, read_results, read_strips
+from screener.runs.results import (
+    read_decided,
+    read_fits,
+    read_in_order,
+    read_points,
+    read_reason,
+    read_results,
+    read_strips,
+)
 from screener.runs.scores import store_failure, store_scores
 from screener.runs.view import read_view, store_view
 
@@ -114,6 +122,11 @@ class RunFile:
         """One row per family for the channel at this position: FIT_COLUMNS, in the order of the registry."""
         with explained_content(self.path):
             return read_fits(self._connection, position)
+
+    def reason(self, position: int) -> str:
+        """Why the channel at this position is not scored, whatever the family; empty where it is."""
+        with explained_content(self.path):
+            return read_reason(self._connection, position)
 
     def points(self, position: int) -> FloatArray:
         """The sorted readings kept of the channel, at `stats.points.kept_ranks(n)`; empty when not scored."""

@@ -49,6 +49,8 @@ class Drawing:
     """All rows of FIT_COLUMNS of the channel."""
     closest: str = ""
     """What the families' p say of those that come closest, in a sentence."""
+    reason: str = ""
+    """Why the channel is not scored, whatever the family."""
 
     @property
     def place(self) -> int:
@@ -71,7 +73,9 @@ def drawing(run: RunFile, facts: TableFacts, plan: Plan, wanted: Wanted, *, char
     else:
         lines = _quantile_plot(run, plan, wanted, fit, charset)
     families = tuple(str(fit["family"]) for fit in fits)
-    return Drawing(wanted, channel.name, channel.unit, families, fit, tuple(lines), tuple(fits), said)
+    return Drawing(
+        wanted, channel.name, channel.unit, families, fit, tuple(lines), tuple(fits), said, run.reason(wanted.position)
+    )
 
 
 def view_of(run: RunFile, plan: Plan, wanted: Wanted, fit: dict[str, Any]) -> QuantileView:

@@ -52,6 +52,20 @@ def test_the_verdict_is_on_the_family_of_the_plan(tmp_path: Path) -> None:
         assert {"flagged", "clear"} == set(expected)
 
 
+def test_a_channel_that_is_not_scored_keeps_its_r_but_no_value_of_a_test(tmp_path: Path) -> None:
+    scores = replace(block(0, 8), reasons=("", "drifting") + ("",) * 6, closest=np.zeros(8, dtype=np.int64))
+    with stored_run(tmp_path / "a.run", scores) as run:
+        judged, drifting = run.results().head(2).iter_rows(named=True)
+        fits = run.fits(1)
+        assert (run.reason(0), run.reason(1)) == ("", "drifting")
+    assert (drifting["reason"], drifting["verdict"], drifting["r"]) == ("drifting", "not scored", scores.r[1, 0])
+    blank = ("critical_r", "plain_critical_r", "p", "q", "closest", "closest_r", "closest_p")
+    assert [drifting[name] for name in blank] == [None] * len(blank)
+    assert None not in [judged[name] for name in blank]
+    assert fits["r"].to_list() == scores.r[1].tolist()
+    assert fits.select("critical_r", "plain_critical_r", "p").null_count().row(0) == (fits.height,) * 3
+
+
 def test_q_agrees_with_scipy_over_the_channels_scored(tmp_path: Path) -> None:
     scores = unfitted(block(0, 8), 3, reason="all readings missing")
     with stored_run(tmp_path / "a.run", scores) as run:

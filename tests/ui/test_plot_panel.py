@@ -21,10 +21,10 @@ FIT: dict[str, Any] = {
 }
 
 
-def told(fit: dict[str, Any], *, unit: str = "bar", channel: str = "outlet_1") -> list[str]:
+def told(fit: dict[str, Any], *, unit: str = "bar", channel: str = "outlet_1", reason: str = "") -> list[str]:
     """The text of the lines."""
     wanted = Wanted(0, 4000, "gamma", 60, 20)
-    lines = head(Drawing(wanted, channel, unit, ("normal", "gamma"), fit, ()))
+    lines = head(Drawing(wanted, channel, unit, ("normal", "gamma"), fit, (), reason=reason))
     return ["".join(text for text, _ in line) for line in lines]
 
 
@@ -46,6 +46,11 @@ def test_a_channel_above_its_critical_value_carries_no_mark() -> None:
 def test_a_family_without_a_fit_says_why(note: str, said: str) -> None:
     absent = dict.fromkeys(("r", "critical_r", "p", "location", "scale", "shape_1"))
     assert told({**FIT, **absent, "note": note})[2:] == [said, "", ""]
+
+
+def test_a_channel_that_is_not_scored_says_why_instead_of_p() -> None:
+    lines = told({**FIT, "critical_r": None, "p": None}, reason="drifting: effective n 4")
+    assert lines[2:4] == ["r 0.9775", "- not scored: drifting: effective n 4"]
 
 
 def test_a_unit_that_the_name_already_has_is_not_repeated() -> None:

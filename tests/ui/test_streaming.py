@@ -5,7 +5,7 @@ from collections.abc import Callable, Iterator
 from pathlib import Path
 
 import pytest
-from made_run import made_facts, made_scores
+from made_run import made_facts, made_run, made_scores
 from screen_text import screen_lines, screen_text, shows
 
 from screener.errors import ScreenerError, TableError
@@ -94,6 +94,21 @@ async def test_progress_is_shown_while_scoring_and_gone_afterwards(tmp_path: Pat
         run.step(7)
         await shows(pilot, "Scored in")
         assert "channels a second" not in screen_text(pilot.app)
+
+
+async def test_a_run_that_was_finished_before_is_shown_without_a_word_about_scoring(tmp_path: Path) -> None:
+    made_run(tmp_path / "stepped.run", CHANNELS).close()
+
+    def start(_cancelled: Callable[[], bool]) -> Iterator[Event]:
+        yield TableOpened(made_facts(CHANNELS), Plan(), tmp_path / "stepped.run", CHANNELS)
+        yield RunFinished(False, 0.0)
+
+    app = ScreenerApp(Source("stepped.csv", start, None), can=Abilities(unicode=True))
+    async with app.run_test(size=SIZE) as pilot:
+        await shows(pilot, "1 of 100 channels, table order")
+        assert not app.feed.is_scoring
+        await pilot.pause()
+        assert "Scored in" not in screen_text(app)
 
 
 async def test_null_distributions_that_are_simulated_first_are_told_of(tmp_path: Path) -> None:

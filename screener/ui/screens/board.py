@@ -119,9 +119,13 @@ class Board(Screen[None]):
         bar.show([preparing_line(event.positions, event.share, self.size.width, unicode=self._unicode)])
 
     def scoring_ended(self, event: messages.ScoringEnded) -> None:
-        """No more progress to show."""
-        self.query_one("#progress").display = False
-        self._say("Stopped." if event.cancelled else f"Scored in {seconds_text(event.seconds)}.")
+        """No more progress to show; nothing is said of a run that was finished before."""
+        bar = self.query_one("#progress")
+        if event.cancelled:
+            self._say("Stopped.")
+        elif bar.display:
+            self._say(f"Scored in {seconds_text(event.seconds)}.")
+        bar.display = False
 
     def block_lost(self, event: messages.BlockLost) -> None:
         """Say so; the rest goes on."""

@@ -50,7 +50,8 @@ def head(drawing: Drawing) -> list[Line]:
     name: Line = [(shown(drawing.channel), STRONG), (unit, PLAIN), (f"   n {drawing.wanted.n:,}", PLAIN)]
     place = f" {drawing.place + 1}/{len(drawing.families)}" if drawing.families else ""
     family: Line = [(drawing.wanted.family, STRONG), (place, QUIET), (f"   {drawing.wanted.view}", PLAIN)]
-    return [name, family, _evidence(drawing), plain(_probability(drawing)), _parameters(drawing)]
+    said = f"- not scored: {shown(drawing.reason)}" if drawing.reason else _probability(drawing)
+    return [name, family, _evidence(drawing), plain(said), _parameters(drawing)]
 
 
 def _evidence(drawing: Drawing) -> Line:
