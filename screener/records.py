@@ -214,6 +214,8 @@ class BlockScores:
     """[C] the resolution step, 0 where none was found."""
     n_effective: FloatArray | None = None
     """[C] the number of independent readings that a serial channel is worth."""
+    by_file: FloatArray | None = None
+    """[C, files, 3] n, mean and standard deviation of the readings of each file, for a table of several."""
 
 
 @dataclass(frozen=True, slots=True)

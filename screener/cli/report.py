@@ -4,7 +4,7 @@ from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
 from screener.cli.output import path_text, safe
-from screener.records import TableFacts
+from screener.records import SourceFile, TableFacts
 from screener.ui.numbers import count_text, p_text, r_text
 
 if TYPE_CHECKING:
@@ -47,7 +47,7 @@ def reading_lines(facts: TableFacts) -> list[str]:
     """How the table was read: its dialect and files, the reader's remarks, the columns set aside."""
     lines = [f"read as: {safe(facts.dialect)}"] if facts.dialect else []
     if facts.files:
-        named = [f"{safe(file.name)} ({file.rows:,} rows)" for file in facts.files[:FILES_SHOWN]]
+        named = [f"{safe(file.name)} ({rows_of(file)})" for file in facts.files[:FILES_SHOWN]]
         more = [f"{len(facts.files) - FILES_SHOWN:,} more"] if len(facts.files) > FILES_SHOWN else []
         lines.append(f"files: {', '.join([*named, *more])}")
     lines += [safe(remark) for remark in facts.remarks]
@@ -55,6 +55,11 @@ def reading_lines(facts: TableFacts) -> list[str]:
     if len(facts.set_aside) > SET_ASIDE_SHOWN:
         lines.append(f"set aside: {len(facts.set_aside) - SET_ASIDE_SHOWN:,} more columns; key i of the screen has all")
     return lines
+
+
+def rows_of(file: SourceFile) -> str:
+    """Which rows of the table a file gave."""
+    return f"rows {file.first_row + 1:,} to {file.first_row + file.rows:,}" if file.rows else "no rows"
 
 
 def aligned(head: Sequence[str], rows: Sequence[Sequence[str]]) -> list[str]:

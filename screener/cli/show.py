@@ -29,6 +29,7 @@ VIEWS = [view.value.replace(" ", "-") for view in View if view is not View.FAMIL
 @click.option(
     "--view", type=click.Choice(VIEWS), multiple=True, help="Plot to print; may be repeated.  [default: quantile]"
 )
+@click.option("--by", type=click.Choice(["file"]), help="Readings, mean and sd of each file of several joined.")
 @click.option("--width", type=click.IntRange(20, 1000), help="Cells across.  [default: the terminal's, at most 100]")
 @click.option("--height", type=click.IntRange(6, 500), default=22, show_default=True, help="Lines of the plot.")
 @click.option("--ascii", "plain", is_flag=True, help="Draw with ASCII characters only.")
@@ -39,6 +40,7 @@ def command(ctx: click.Context, /, path: Path, channel: str, **given: Any) -> No
 
     A part of the name is enough when no other channel's name holds it.
     """
+    from screener.cli.by_file import file_lines
     from screener.cli.output import put
     from screener.cli.source import exit_code, finished_run
     from screener.stats.families import family_named
@@ -49,6 +51,8 @@ def command(ctx: click.Context, /, path: Path, channel: str, **given: Any) -> No
         results = run.results()
         row = next(results.filter(results["position"] == position).iter_rows(named=True), None)
         parts: list[Sequence[str]] = [_numbers(run, position, row)]
+        if given["by"]:
+            parts.append(file_lines(run, position))
         if row is not None and row["n"]:
             drawings = [
                 _drawn(run, position, row["n"], against or row["family"], View(view.replace("-", " ")), given)

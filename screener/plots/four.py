@@ -13,6 +13,8 @@ from screener.plots.canvas import LEAST_HEIGHT, LEAST_WIDTH, Axis, Charset, Laye
 from screener.stats.points import kept_ranks
 
 if TYPE_CHECKING:
+    from collections.abc import Sequence
+
     from screener.records import FloatArray
     from screener.stats.row_order import RowOrder
 
@@ -20,15 +22,30 @@ MARGIN = 0.03
 BAR_CELLS = 3
 """Cells of a histogram's bar, across."""
 FEWEST_BARS, MOST_BARS = 5, 60
+CELLS_A_FILE = 6
+"""Fewer cells across than this for a file, and lines between files would hide the readings."""
 
 
-def run_order_plot(order: RowOrder | None, unit: str, *, width: int, height: int, charset: Charset) -> list[str]:
-    """Readings against their rows; of a long record, the lowest and highest of every stretch of rows."""
+def run_order_plot(
+    order: RowOrder | None,
+    unit: str,
+    *,
+    width: int,
+    height: int,
+    charset: Charset,
+    starts: Sequence[int] = (),
+) -> list[str]:
+    """Readings against their rows; of a long record, the lowest and highest of every stretch of rows.
+
+    A line stands before each of the rows `starts`, from 1, where another file begins, unless they would crowd.
+    """
     if order is None or not np.isfinite(order.reading).any():
         return message("No readings in row order are kept in this run file.", width=width, height=height)
     there = np.isfinite(order.reading)
     label = "row" if order.stretch == 1 else f"row (lowest and highest of every {order.stretch:,})"
-    return _scatter(order.row[there], order.reading[there], label, f"reading{unit}", width, height, charset)
+    label, marked = _with_starts(label, starts, width)
+    row, reading = order.row[there], order.reading[there]
+    return _scatter(row, reading, label, f"reading{unit}", width, height, charset, marked)
 
 
 def lag_plot(order: RowOrder | None, unit: str, *, width: int, height: int, charset: Charset) -> list[str]:
@@ -79,14 +96,34 @@ def histogram(points: FloatArray, n: int, *, at_most: int) -> tuple[FloatArray, 
     return edges, np.histogram(points, edges, weights=stands_for)[0]
 
 
+def _with_starts(label: str, starts: Sequence[int], width: int) -> tuple[str, FloatArray]:
+    """What the axis of rows is called, and where lines stand on it."""
+    if not starts:
+        return label, np.empty(0)
+    if len(starts) > width // CELLS_A_FILE:
+        return f"{label}, {len(starts) + 1:,} files", np.empty(0)
+    return f"{label}; a line: the next file", np.array(starts) - 0.5
+
+
 def _scatter(
-    x: FloatArray, y: FloatArray, x_label: str, y_label: str, width: int, height: int, charset: Charset
+    x: FloatArray,
+    y: FloatArray,
+    x_label: str,
+    y_label: str,
+    width: int,
+    height: int,
+    charset: Charset,
+    lines_at: FloatArray | None = None,
 ) -> list[str]:
     if width < LEAST_WIDTH or height < LEAST_HEIGHT:
         return message("No room for the plot.", width=width, height=height)
     across, up = _axis(x, x_label), _axis(y, y_label)
     shown = thinned(x, y, x_axis=across, y_axis=up, width=width, height=height)
-    return draw([Layer(x[shown], y[shown], Mark.POINT)], x=across, y=up, width=width, height=height, charset=charset)
+    ends = np.array([up.low, up.high])
+    within = [] if lines_at is None else [at for at in lines_at.tolist() if across.low < at < across.high]
+    lines = [Layer(np.array([at, at]), ends, Mark.LINE) for at in within]
+    points = Layer(x[shown], y[shown], Mark.POINT)
+    return draw([*lines, points], x=across, y=up, width=width, height=height, charset=charset)
 
 
 def _axis(values: FloatArray, label: str) -> Axis:

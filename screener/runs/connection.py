@@ -13,7 +13,7 @@ from screener.errors import RunFileError
 from screener.runs.failures import refusal
 
 APPLICATION_ID = 0x5343524E
-SCHEMA = 2
+SCHEMA = 3
 PATIENCE = 5.0
 """Seconds to wait for another program's lock."""
 
@@ -21,8 +21,9 @@ Migrate = Callable[[sqlite3.Connection, int], None]
 """Brings a run file of that schema to the present one."""
 
 _TABLES = {
-    *("version", "run", "remark", "set_aside", "channel"),
-    *("span", "score", "family", "fit", "kept_readings", "readings_in_order", "strip", "act", "decided", "view"),
+    *("version", "run", "remark", "set_aside", "channel", "proposal", "source_file"),
+    *("span", "score", "family", "fit", "kept_readings", "readings_in_order", "by_file", "strip"),
+    *("act", "decided", "view"),
 }
 
 

@@ -90,6 +90,12 @@ def read_in_order(connection: sqlite3.Connection, position: int) -> FloatArray:
     return unpacked(row[0]) if row else np.empty(0)
 
 
+def read_by_file(connection: sqlite3.Connection, position: int, files: int) -> FloatArray:
+    """n, mean and standard deviation of one channel in each file, float64[files, 3]; empty when they are not kept."""
+    row = connection.execute("SELECT summaries FROM by_file WHERE position = ?", (position,)).fetchone()
+    return unpacked(row[0]).reshape(files, 3) if row else np.empty((0, 3))
+
+
 def read_decided(connection: sqlite3.Connection) -> pl.DataFrame:
     """One row per channel that has a decision or a note: `position`, `decision`, `note`."""
     rows = [(position, *words) for position, words in read_decisions(connection).items()]

@@ -21,6 +21,7 @@ from screener.runs.facts import read_origin, store_origin
 from screener.runs.failures import explained, explained_content, refusal
 from screener.runs.migrations import migrated
 from screener.runs.results import (
+    read_by_file,
     read_decided,
     read_fits,
     read_in_order,
@@ -137,6 +138,11 @@ class RunFile:
         """The readings kept of the channel in row order, for `stats.row_order.row_order`; empty when none are."""
         with explained_content(self.path):
             return read_in_order(self._connection, position)
+
+    def by_file(self, position: int) -> FloatArray:
+        """n, mean and standard deviation of the channel in each of `facts.files`; empty when they are not kept."""
+        with explained_content(self.path):
+            return read_by_file(self._connection, position, len(self.facts.files))
 
     def strips(self) -> pl.DataFrame:
         """One row per channel scored: `position` and `strip`, digits from the low to the high tail."""

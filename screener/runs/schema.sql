@@ -1,9 +1,9 @@
--- The run file, schema 2. Later schemas are reached by migrations, which add tables and columns and change none.
+-- The run file, schema 3. Later schemas are reached by migrations, which add tables and columns and change none.
 -- A missing number is NULL, never NaN. Names and sentences are stored safe to show.
 
 -- "SCRN" in ASCII: what tells a run file from any other SQLite file.
 PRAGMA application_id = 0x5343524E;
-PRAGMA user_version = 2;
+PRAGMA user_version = 3;
 
 BEGIN;
 
@@ -118,6 +118,13 @@ CREATE TABLE kept_readings (
 CREATE TABLE readings_in_order (
     position INTEGER PRIMARY KEY,
     readings BLOB NOT NULL
+);
+
+-- One row per channel scored of a table of several files: n, mean and standard deviation of the readings of each file,
+-- float64, little-endian, NaN where not defined.
+CREATE TABLE by_file (
+    position INTEGER PRIMARY KEY,
+    summaries BLOB NOT NULL
 );
 
 -- One row per channel scored: its departure from the line in a few digits, from the low to the high tail.

@@ -46,6 +46,11 @@ def store_scores(connection: sqlite3.Connection, scores: BlockScores, rule: str)
             "INSERT OR REPLACE INTO readings_in_order (position, readings) VALUES (?, ?)",
             zip(range(span.first, span.stop), map(packed, scores.in_order), strict=True),
         )
+    if scores.by_file is not None and scores.by_file.size:
+        connection.executemany(
+            "INSERT OR REPLACE INTO by_file (position, summaries) VALUES (?, ?)",
+            zip(range(span.first, span.stop), map(packed, scores.by_file), strict=True),
+        )
     connection.executemany(
         "INSERT OR REPLACE INTO strip (position, levels) VALUES (?, ?)",
         zip(range(span.first, span.stop), strips_of(scores, rule), strict=True),

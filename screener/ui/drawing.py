@@ -128,4 +128,6 @@ def _row_plot(run: RunFile, facts: TableFacts, wanted: Wanted, charset: Charset)
         return histogram_plot(run.points(wanted.position), wanted.n, unit, **size)
     kept = run.in_order(wanted.position)
     order = row_order(kept, facts.rows) if kept.size else None
-    return (run_order_plot if wanted.view is View.RUN_ORDER else lag_plot)(order, unit, **size)
+    if wanted.view is View.LAG:
+        return lag_plot(order, unit, **size)
+    return run_order_plot(order, unit, **size, starts=[file.first_row + 1 for file in facts.files[1:]])

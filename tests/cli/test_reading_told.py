@@ -30,7 +30,7 @@ def runs() -> str:
 def test_score_tells_how_the_table_was_read(runs: str) -> None:
     told = screener("score", runs).err
     assert "  read as: semicolon, decimal comma, units in line 2\n" in told
-    assert "  files: run_1.csv (60 rows), run_2.csv (60 rows)\n" in told
+    assert "  files: run_1.csv (rows 1 to 60), run_2.csv (rows 61 to 120)\n" in told
     assert "4 cells hold 'OVER' in force: read as missing." in told
     assert "--missing=-9999 leaves it out" in told
     assert "set aside: side (text" in told
@@ -44,7 +44,7 @@ def test_show_tells_it_too_and_counts_the_readings_beyond_a_limit(runs: str) -> 
     told = shown[shown.index("how the table was read") :]
     assert "read as: semicolon, decimal comma" in told
     assert "4 cells hold 'OVER' in force" in told
-    assert "run_2.csv (60 rows)" in told
+    assert "run_2.csv (rows 61 to 120)" in told
 
 
 async def test_the_page_on_the_table_has_dialect_words_proposals_and_files(runs: str) -> None:

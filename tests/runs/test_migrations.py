@@ -47,6 +47,17 @@ def test_a_run_of_schema_1_is_migrated_and_shows_what_it_held(tmp_path: Path, *,
     assert files_in(tmp_path) == ["old.run"]
 
 
+def test_a_run_of_schema_2_has_no_figures_by_file_and_is_else_the_same(tmp_path: Path) -> None:
+    with stored_run(tmp_path / "old.run", block(0, 5)) as run:
+        results = run.results()
+    with closing(sqlite3.connect(tmp_path / "old.run")) as connection:
+        connection.execute("DROP TABLE by_file")
+        connection.execute("PRAGMA user_version = 2")
+    with RunFile.open(tmp_path / "old.run", read_only=True) as run:
+        assert run.results().equals(results)
+        assert run.by_file(0).size == 0
+
+
 def test_a_migrated_file_has_the_layout_of_a_new_one(tmp_path: Path) -> None:
     old_run(tmp_path / "old.run")
     RunFile.open(tmp_path / "old.run").close()
