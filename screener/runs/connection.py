@@ -121,6 +121,8 @@ def _connect_readable(path: Path, mode: str, patience: float) -> sqlite3.Connect
         _header(connection)
     except sqlite3.OperationalError as error:
         connection.close()
+        if error.sqlite_errorcode == sqlite3.SQLITE_READONLY_ROLLBACK and _rolled_back(path, patience):
+            return _connect_readable(path, mode, patience)
         if not _needs_companions(error) or _has_companion(path):
             raise
         return connect(path, "ro&immutable=1", patience)
@@ -130,6 +132,18 @@ def _connect_readable(path: Path, mode: str, patience: float) -> sqlite3.Connect
             raise _not_a_run_file(path) from error
         raise
     return connection
+
+
+def _rolled_back(path: Path, patience: float) -> bool:
+    """Undo what a killed program left half done, as who may only read cannot; false where it may not be written to."""
+    connection = connect(path, "rw", patience)
+    try:
+        _header(connection)
+    except sqlite3.OperationalError:
+        return False
+    finally:
+        connection.close()
+    return True
 
 
 def _needs_companions(error: sqlite3.OperationalError) -> bool:

@@ -11,7 +11,7 @@ from pathlib import Path
 from polars.testing import assert_frame_equal
 
 from screener.records import Span
-from screener.runs import RunFile
+from screener.runs import RunFile, is_run_file
 from tests.runs.synthetic import block, files_in, new_run
 from tests.runs.writer import CHANNELS, SPANS, main
 
@@ -63,6 +63,28 @@ def test_a_writer_killed_at_any_moment_loses_nothing_that_it_acknowledged(tmp_pa
             assert killed.points(position).tobytes() == alone.points(position).tobytes()
             assert_frame_equal(killed.fits(position), alone.fits(position), check_exact=True)
     assert files_in(tmp_path) == ["alone.run", "killed.run"]
+
+
+def test_what_a_killed_writer_left_half_done_is_undone_also_for_who_only_reads(tmp_path: Path) -> None:
+    path = tmp_path / "a.run"
+    with new_run(path, CHANNELS) as run:
+        run.store(block(0, 4))
+        before = run.results()
+    half_done = """
+import os, sqlite3, sys
+connection = sqlite3.connect(sys.argv[1], isolation_level=None)
+connection.execute("PRAGMA cache_size = 1")
+connection.execute("BEGIN IMMEDIATE")
+connection.execute("UPDATE channel SET name = name || hex(randomblob(900))")
+connection.execute("DELETE FROM score")
+os.kill(os.getpid(), 9)
+"""
+    subprocess.run([sys.executable, "-c", half_done, str(path)], check=False)
+    assert files_in(tmp_path) == ["a.run", "a.run-journal"]
+    assert is_run_file(path)
+    with RunFile.open(path, read_only=True) as run:
+        assert_frame_equal(run.results(), before, check_exact=True)
+    assert files_in(tmp_path) == ["a.run"]
 
 
 def test_a_reader_sees_whole_blocks_and_only_ever_more_of_them(tmp_path: Path) -> None:
