@@ -50,14 +50,14 @@ class Products:
 
 def carried(projection: Projection) -> Iterator[OnGrid]:
     """Carry readings to the probability grid, channels of about the same n together."""
-    for start in sorted({group.start for group in projection.groups}):
-        groups = [group for group in projection.groups if group.start == start]
+    for start in sorted({group.carrier.start for group in projection.groups}):
+        groups = [group for group in projection.groups if group.carrier.start == start]
         members = np.concatenate([group.members for group in groups])
         yield OnGrid(
             start=start,
             members=members,
-            readings=np.concatenate([_carry(group, group.compressed) for group in groups]),
-            ones=np.concatenate([_carry(group, group.ones[None, :]) for group in groups]),
+            readings=np.concatenate([_carry(group) for group in groups]),
+            ones=np.stack([group.carrier.ones for group in groups]),
             which=np.repeat(np.arange(len(groups)), [group.members.size for group in groups]),
             sizes=np.array([float(group.n) for group in groups]),
             mean=projection.mean[members],
@@ -65,11 +65,11 @@ def carried(projection: Projection) -> Iterator[OnGrid]:
         )
 
 
-def _carry(group: SizeGroup, compressed: FloatArray) -> FloatArray:
-    """Node sums, float64[C, 2 M], carried to the grid from the group's start on, float64[C, 2 (grid - start)]."""
-    count, to_grid = group.to_grid.shape[0], group.to_grid[:, group.start :]
-    lower, upper = compressed[:, :count], compressed[:, count:]
-    return np.concatenate([tiled_product(lower, to_grid), tiled_product(upper, to_grid)], axis=1)
+def _carry(group: SizeGroup) -> FloatArray:
+    """A group's node sums carried to the grid, float64[members, 2 (grid - start)], both halves in one product."""
+    nodes = group.carrier.to_grid.shape[0]
+    both = tiled_product(group.compressed.reshape(-1, nodes), group.carrier.to_grid)
+    return both.reshape(group.members.size, -1)
 
 
 def products(x: OnGrid, columns: FloatArray) -> Products:

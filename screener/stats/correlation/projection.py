@@ -18,10 +18,26 @@ TILE = 8
 """Channels in one matrix product. Products always have this many rows, so that a channel's r does not depend, even in
 the last bit, on how many others are scored with it."""
 
-TILE_READINGS = 400_000
+TILE_READINGS, LONGEST_TILE = 330_000, 128
+"""Readings, and channels, compressed at a time."""
+
+SQUARED = 8192
+"""Readings squared and summed in one go: few enough that the linear algebra library does not share them out."""
 
 Deviations = Callable[[FloatArray, FloatArray, FloatArray], None]
 """Writes into the third array the deviations of readings, float64[C, k], from their middle one, float64[C, 1]."""
+
+
+@dataclass(frozen=True, slots=True)
+class Carrier:
+    """The way of n readings from the nodes to the probability grid."""
+
+    start: int
+    """Grid points before this one are not needed; the same for all n of about the same size."""
+    to_grid: FloatArray
+    """[M, grid - start] weights that carry node sums of either half to the grid from its start on."""
+    ones: FloatArray
+    """[2 (grid - start)] what readings that are all 1 come to there, lower half first."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -33,12 +49,7 @@ class SizeGroup:
     """Which of the projected channels."""
     compressed: FloatArray
     """[members, 2 M] sums of the deviations at the nodes of their segments, lower half first."""
-    ones: FloatArray
-    """[2 M] the same sums for readings that are all 1."""
-    to_grid: FloatArray
-    """[M, grid] weights that carry node sums of either half to the probability grid."""
-    start: int
-    """Grid points before this one are not needed; the same for all n of about the same size."""
+    carrier: Carrier
 
 
 @dataclass(frozen=True, slots=True)
@@ -53,14 +64,15 @@ class Projection:
 
 
 @lru_cache(maxsize=256)
-def _to_grid(n: int, rule: str) -> tuple[FloatArray, FloatArray, int]:
-    """For n readings: weights from nodes to the grid, [M, grid], the node sums of ones, [2 M], and the grid's start."""
+def carrier(n: int, rule: str) -> Carrier:
+    """The way to the grid for n readings at positions of that rule."""
     cut = segments(class_size(n) // 2)
     # Nodes of segments that reach beyond the median may lie anywhere beyond it; those without readings weigh nothing.
     u = np.minimum(positions_at(np.minimum(cut.nodes, 0.56 * n + 1.0), n, rule), 0.6)
-    ones = np.concatenate([counted(cut, n // 2), counted(cut, n - n // 2)])
     v = np.log(u) - np.log1p(-u)
-    return spread(v), ones, first_needed(float(v[0]))
+    start = first_needed(float(v[0]))
+    to_grid = np.ascontiguousarray(spread(v)[:, start:])
+    return Carrier(start, to_grid, np.concatenate([counted(cut, half) @ to_grid for half in (n // 2, n - n // 2)]))
 
 
 def project(ordered: FloatArray, n: IntArray, rows: IntArray, rule: str, deviations: Deviations) -> Projection:
@@ -73,25 +85,33 @@ def project(ordered: FloatArray, n: IntArray, rows: IntArray, rule: str, deviati
     total, squares = np.empty(rows.size), np.empty(rows.size)
     groups: list[SizeGroup] = []
     for members in _classes(counts):
-        compressed = []
         width = class_size(int(counts[members[0]]))
-        tile = np.zeros((tile_rows(width), width))
+        cut, tile = segments(width // 2), np.zeros((tile_rows(width), width))
+        compressed = np.empty((members.size, 2 * cut.nodes.size))
         for first in range(0, members.size, tile.shape[0]):
             at = members[first : first + tile.shape[0]]
             _align(ordered, counts[at], middle[at], rows[at], deviations, tile)
-            total[at] = tile.sum(axis=1)[: at.size]
-            squares[at] = np.einsum("ij,ij->i", tile, tile)[: at.size]
-            compressed.append(compress(tile, segments(tile.shape[1] // 2))[: at.size])
-        groups += _by_size(counts[members], members, np.concatenate(compressed), rule)
+            squares[at] = _squares(tile)[: at.size]
+            compressed[first : first + at.size] = compress(tile, cut)[: at.size]
+        # The cardinal polynomials of a segment add up to 1.
+        total[members] = compressed.sum(axis=1)
+        groups += _by_size(counts[members], members, compressed, rule)
     mean = total / counts
     varying = ordered[rows, counts - 1] > ordered[rows, 0]
     length = np.where(varying, np.sqrt(np.maximum(squares - mean * total, 0.0)), 0.0)
     return Projection(tuple(groups), mean, length)
 
 
+def _squares(tile: FloatArray) -> FloatArray:
+    """Sum of squares of each row."""
+    parts = (tile[:, first : first + SQUARED] for first in range(0, tile.shape[1], SQUARED))
+    return sum((np.vecdot(part, part) for part in parts), np.zeros(tile.shape[0]))
+
+
 def tile_rows(width: int) -> int:
-    """Channels compressed at a time: 32 where they fit in the cache, fewer when long, so that memory stays bounded."""
-    return max(2, min(32, TILE_READINGS // width))
+    """Channels compressed at a time: as many as fit in the cache when short, fewer when long, so that memory stays
+    bounded."""
+    return max(2, min(LONGEST_TILE, TILE_READINGS // width))
 
 
 def _classes(counts: IntArray) -> Iterator[IntArray]:
@@ -108,8 +128,7 @@ def _by_size(counts: IntArray, members: IntArray, compressed: FloatArray, rule: 
     """The members of a class, whose counts do not fall, split by n."""
     sizes, first = np.unique(counts, return_index=True)
     for size, start, stop in zip(sizes, first, [*first[1:], counts.size], strict=True):
-        table, ones, begin = _to_grid(int(size), rule)
-        yield SizeGroup(int(size), members[start:stop], compressed[start:stop], ones, table, begin)
+        yield SizeGroup(int(size), members[start:stop], compressed[start:stop], carrier(int(size), rule))
 
 
 def _align(
@@ -122,12 +141,24 @@ def _align(
 ) -> None:
     """Write deviations of the channels `rows` into tile: lower halves left, upper halves right, 0 between and below."""
     width = tile.shape[1]
-    tile[rows.size :] = 0.0
     starts = np.flatnonzero(np.diff(counts, prepend=-1))
+    tile[rows.size :] = 0.0
     for start, stop in zip(starts, [*starts[1:], rows.size], strict=True):
-        same, size = rows[start:stop], int(counts[start])
+        some, size = _taken(ordered, rows[start:stop]), int(counts[start])
         half = size // 2
-        centre, upper = middle[start:stop, None], width - (size - half)
-        deviations(ordered[same, :half], centre, tile[start:stop, :half])
-        tile[start:stop, half:upper] = 0.0
-        deviations(ordered[same, half:size], centre, tile[start:stop, upper:])
+        upper = width - (size - half)
+        if some.base is ordered and starts.size == 1:
+            deviations(some[:, :half], middle[:, None], tile[:stop, :half])
+            deviations(some[:, half:size], middle[:, None], tile[:stop, upper:])
+            tile[:stop, half:upper] = 0.0
+            return
+        tile[start:stop, :half] = some[:, :half]
+        tile[start:stop, half:upper] = middle[start:stop, None]
+        tile[start:stop, upper:] = some[:, half:size]
+    deviations(tile[: rows.size], middle[:, None], tile[: rows.size])
+
+
+def _taken(ordered: FloatArray, rows: IntArray) -> FloatArray:
+    """Some channels, in place where they lie side by side in rising order."""
+    first, last = int(rows[0]), int(rows[-1])
+    return ordered[first : last + 1] if last - first == rows.size - 1 else ordered[rows]

@@ -115,7 +115,7 @@ def compress(tile: FloatArray, cut: Segments) -> FloatArray:
     out[:, count : count + cut.direct] = tile[:, end - cut.direct :][:, ::-1]
     at = cut.direct
     for (first, stop), basis in zip(cut.bounds, cut.bases, strict=True):
-        out[:, at : at + NODES] = tile[:, first:stop] @ basis
+        np.matmul(tile[:, first:stop], basis, out=out[:, at : at + NODES])
         out[:, count + at : count + at + NODES] = (tile[:, end - stop : end - first] @ basis)[:, ::-1]
         at += NODES
     return out
