@@ -19,6 +19,7 @@ _LONGEST_ROW = 12
 """Lines; a quotation mark that opens and is not closed sooner is no quotation mark."""
 _FEWEST_REGULAR = 2
 _JUDGED_ROWS = 40
+_WIDTHS_TRIED = 3
 _JUDGED_CELLS = 60
 _BLANKS_COUNT = 0.6
 """Blanks separate cells only where nothing else does: they also stand within names and before units."""
@@ -86,11 +87,15 @@ def separator_of(lines: Sequence[str], *, prefer_tab: bool) -> str:
 
 
 def _agreement(lines: Sequence[str], separator: str) -> tuple[float, int]:
+    """How well the separator fits, and the cells of a row; of the commonest widths the one whose cells are values."""
     rows = [row.cells for row in head_rows(lines, separator)]
     widths = Counter(len(row) for row in rows if len(row) > 1)
-    if not widths:
-        return 0.0, 0
-    width = max(widths, key=lambda candidate: (widths[candidate] * candidate**0.5, candidate))
+    ranked = sorted(widths, key=lambda candidate: (widths[candidate] * candidate**0.5, candidate), reverse=True)
+    return max((_agreement_at(width, rows, separator) for width in ranked[:_WIDTHS_TRIED]), default=(0.0, 0))
+
+
+def _agreement_at(width: int, rows: Sequence[list[str]], separator: str) -> tuple[float, int]:
+    """How well rows of this width agree, 0 to 1, and the width."""
     regular = [row for row in rows if len(row) == width]
     if 2 * len(regular) < len(rows) and (separator == " " or len(regular) < _FEWEST_REGULAR):
         return 0.0, 0

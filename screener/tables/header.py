@@ -89,11 +89,16 @@ def _comment_prefix(rows: Sequence[HeadRow]) -> str:
 
 
 def _width(table: Sequence[HeadRow]) -> int:
-    """The usual number of cells in a row that holds a number."""
-    widths = Counter(len(row.cells) for row in table if any(map(_reads_as_number, row.cells[:_JUDGED_CELLS])))
+    """The usual number of cells in a row that holds a number; of equally usual ones that with more numbers."""
+    widths: Counter[int] = Counter()
+    numbers: Counter[int] = Counter()
+    for row in table:
+        if found := sum(map(_reads_as_number, row.cells[:_JUDGED_CELLS])):
+            widths[len(row.cells)] += 1
+            numbers[len(row.cells)] += found
     if not widths:
         return len(table[0].cells)
-    return max(widths, key=lambda width: (widths[width] * (width > 1), widths[width], width))
+    return max(widths, key=lambda width: (widths[width] * (width > 1), widths[width], numbers[width], width))
 
 
 def _numeric_columns(table: Sequence[HeadRow], width: int) -> list[int]:

@@ -1,7 +1,10 @@
 """Rows of a text table that are no readings, or have too few or too many cells, found in the lines of the text."""
 
-from collections.abc import Iterator
-from dataclasses import dataclass
+from collections import deque
+from collections.abc import Callable, Iterable, Iterator, Mapping, Sequence
+from dataclasses import dataclass, field
+from itertools import islice
+from pathlib import Path
 
 import numpy as np
 import polars as pl
@@ -11,9 +14,12 @@ from screener.tables.cells import BLANKS, is_missing, is_number
 from screener.tables.head import cell_rows
 from screener.tables.header import COMMENTS
 from screener.tables.layout import Layout
+from screener.tables.lines import each_line, measured_lines
 
-_QUOTED = r'"[^"]*"'
 _FOOTER_ROWS = 20
+_LAST_ROWS = 1_000
+_BEGIN = 200
+"""Characters kept of the beginning of a row."""
 _SUMMARY = (
     r"(?i)^(mean|average|avg\.?|total|sum|min(imum)?|max(imum)?|std\.?( ?dev\.?)?|stdev|median|count|rms|range)\s*:?$"
 )
@@ -62,24 +68,70 @@ class RowWidths:
         return f"1 row (line {first:,}) has" if count == 1 else f"{count:,} rows (first: line {first:,}) have"
 
 
-def row_widths(lines: pl.Series, layout: Layout, rows: int) -> RowWidths:
-    """The width of every row, from the physical lines of the whole text."""
-    body = lines.slice(layout.lines_before)
-    if len(body) == rows:
-        bare = body.str.replace_all(_QUOTED, "") if body.str.contains('"', literal=True).any() else body
-        blank = body.str.strip_chars(BLANKS) == ""
-        cells = bare.str.count_matches(layout.separator, literal=True).to_numpy().astype(np.int64) + 1
-        cells[blank.to_numpy()] = 0
-        ends = np.arange(1, rows + 1)
-        starts = body
-    else:
-        reader = cell_rows(body, layout.separator)
-        counted = [(len(row), reader.line_num, layout.separator.join(row)) for row in reader]
-        cells = np.array([width for width, _, _ in counted], dtype=np.int64)
-        ends = np.array([end for _, end, _ in counted], dtype=np.int64)
-        starts = pl.Series([text for _, _, text in counted], dtype=pl.String)
-    comments = _comments(starts, cells, layout)
-    return RowWidths(cells, ends + layout.lines_before, len(layout.names), comments, _footers(starts, cells, layout))
+def row_widths(source: Path | bytes, layout: Layout, rows: int) -> RowWidths:
+    """The width of every row, from the physical lines of the whole text, read a piece at a time."""
+    separator, expected = layout.separator, len(layout.names)
+    found = _Rows(expected, layout.lines_before, every=layout.drop_comments)
+    for lines in measured_lines(source, separator):
+        found.add(lines.cells, lines.text)
+    if found.total != rows:
+        # Rows over several lines, by quotation marks: the slower way.
+        found = _Rows(expected, layout.lines_before, every=layout.drop_comments, by_row=True)
+        reader = cell_rows(islice(each_line(source), layout.lines_before, None), separator)
+        for row in reader:
+            found.add_row(row, reader.line_num, separator)
+    return found.widths(layout)
+
+
+@dataclass(slots=True)
+class _Rows:
+    """What is known of the rows so far; texts are kept of those with too few cells only, for short."""
+
+    expected: int
+    lines_before: int
+    every: bool
+    """Whether the beginning of every row is kept."""
+    by_row: bool = False
+    cells: list[NDArray[np.int64]] = field(default_factory=list)
+    ends: list[int] = field(default_factory=list)
+    """The line of the file on which each row ends, where rows are no lines."""
+    begins: dict[int, str] = field(default_factory=dict)
+    last: deque[tuple[int, str]] = field(default_factory=lambda: deque(maxlen=_LAST_ROWS))
+    """The last rows with too few cells, whole."""
+    total: int = 0
+    _skipped: int = 0
+
+    def add(self, cells: NDArray[np.int64], text: Callable[[int], str]) -> None:
+        """Add lines; those before the first row are left out."""
+        skip = min(self.lines_before - self._skipped, len(cells))
+        self._skipped += skip
+        rows = cells[skip:]
+        kept = np.arange(len(rows)) if self.every else np.flatnonzero((rows > 0) & (rows < self.expected))
+        for at in kept.tolist():
+            self._keep(self.total + at, text(at + skip), short=bool(rows[at] < self.expected))
+        self.cells.append(rows)
+        self.total += len(rows)
+
+    def add_row(self, row: Sequence[str], line: int, separator: str) -> None:
+        """Add one row that ends on a line after those before."""
+        if self.every or 0 < len(row) < self.expected:
+            self._keep(self.total, separator.join(row), short=len(row) < self.expected)
+        self.cells.append(np.array([len(row)], dtype=np.int64))
+        self.ends.append(line)
+        self.total += 1
+
+    def _keep(self, at: int, text: str, *, short: bool) -> None:
+        self.begins[at] = text.lstrip(BLANKS)[:_BEGIN]
+        if short:
+            self.last.append((at, text))
+
+    def widths(self, layout: Layout) -> RowWidths:
+        """What they are."""
+        cells = np.concatenate([np.empty(0, dtype=np.int64), *self.cells])
+        ends = np.array(self.ends, dtype=np.int64) if self.by_row else np.arange(1, self.total + 1)
+        comments = _comments(self.begins, cells, layout)
+        footers = _footers(self.last, cells, layout)
+        return RowWidths(cells, ends + self.lines_before, self.expected, comments, footers)
 
 
 def last_rows_sum_up(first_cells: pl.Series) -> NDArray[np.bool_]:
@@ -90,27 +142,27 @@ def last_rows_sum_up(first_cells: pl.Series) -> NDArray[np.bool_]:
     return tail if tail.sum() == sums.sum() < len(sums) else np.zeros(len(sums), dtype=np.bool_)
 
 
-def _comments(starts: pl.Series, cells: NDArray[np.int64], layout: Layout) -> NDArray[np.bool_]:
+def _comments(begins: Mapping[int, str], cells: NDArray[np.int64], layout: Layout) -> NDArray[np.bool_]:
     """Rows that begin as a comment; where the plan does not say how comments begin, only those cut short."""
     sign = layout.header.comment
-    begin = starts.str.strip_chars_start(BLANKS)
-    if layout.drop_comments:
-        return begin.str.starts_with(sign).to_numpy()
-    short = (cells > 0) & (cells < len(layout.names))
     found = np.zeros(len(cells), dtype=np.bool_)
-    for at in np.flatnonzero(short):
-        first = begin[int(at)].split(layout.separator, 1)[0].strip()
-        found[at] = first.startswith((sign,) if sign else COMMENTS) and not is_missing(first)
+    for at, begin in begins.items():
+        first = begin.split(layout.separator, 1)[0].strip()
+        if layout.drop_comments:
+            found[at] = begin.startswith(sign)
+        else:
+            found[at] = first.startswith((sign,) if sign else COMMENTS) and not is_missing(first)
     return found
 
 
-def _footers(starts: pl.Series, cells: NDArray[np.int64], layout: Layout) -> NDArray[np.bool_]:
-    """The last rows, when they are short and hold no number."""
+def _footers(last: Iterable[tuple[int, str]], cells: NDArray[np.int64], layout: Layout) -> NDArray[np.bool_]:
+    """The last rows, when they are short and hold no number; `last` has the texts of short rows."""
     found = np.zeros(len(cells), dtype=np.bool_)
+    texts = dict(last)
     at = len(cells) - 1
-    while at > 0 and len(layout.names) > 1 and cells[at] < len(layout.names):
-        texts = [text.strip(BLANKS + '"') for text in starts[at].split(layout.separator)]
-        if any(is_number(text) or (is_missing(text) and text) for text in texts):
+    while at > 0 and len(layout.names) > 1 and (at in texts or not cells[at]):
+        words = [text.strip(BLANKS + '"') for text in texts.get(at, "").split(layout.separator)]
+        if any(is_number(word) or (is_missing(word) and word) for word in words):
             break
         found[at] = cells[at] > 0
         at -= 1

@@ -14,7 +14,7 @@ import polars as pl
 from screener.errors import TableError
 from screener.records import Plan
 from screener.tables.cells import is_blank, is_number
-from screener.tables.encoding import HEAD_LINES, Text, blanks_as_tabs, in_memory, text_lines, text_size, utf8_text
+from screener.tables.encoding import HEAD_LINES, Text, blanks_as_tabs, in_memory, text_size, utf8_text
 from screener.tables.formats import Recognised
 from screener.tables.head import SEPARATORS, head_rows
 from screener.tables.layout import Layout, layout_of
@@ -221,7 +221,7 @@ def _scan(
 
 def _without_other_rows(frame: pl.DataFrame, source: Path | bytes, layout: Layout) -> tuple[pl.DataFrame, _Remarked]:
     """The frame without blank lines, comments and footers."""
-    widths = row_widths(text_lines(source), layout, len(frame))
+    widths = row_widths(source, layout, len(frame))
     left_out = widths.left_out()
     if left_out.any() and len(left_out) == len(frame):
         frame = frame.filter(pl.Series(~left_out))

@@ -69,6 +69,10 @@ PLAIN = Dialect(",", comma=False, encoding="utf-8", end="\n", preamble=0, units=
 @given(table=TABLES, dialect=DIALECTS)
 @example(table=np.array([[5e-324, 1.7976931348623157e308], [2.2250738585072014e-308, 0.1]]), dialect=PLAIN)
 @example(table=np.array([[0.1 + 0.2, 9007199254740993.0], [1 / 3, -0.0]]), dialect=PLAIN)
+@example(
+    table=np.array([[0.0, 0.0], [0.0, 0.0], [0.0, 1.0]]),
+    dialect=Dialect(" ", comma=False, encoding="utf-8", end="\n", preamble=3, units=False, padding=""),
+)
 def test_finite_numbers_come_back_exactly(tmp_path: Path, table: NDArray[np.float64], dialect: Dialect) -> None:
     varying = [at for at in range(table.shape[1]) if table[:, at].min() < table[:, at].max()]
     assume(varying)
