@@ -57,7 +57,7 @@ def brought_near(ordered: FloatArray, n: IntArray) -> tuple[FloatArray, IntArray
 
 
 def differences(readings: FloatArray, middle: FloatArray, out: FloatArray) -> None:
-    """Write readings, float64[C, k], less the middle one, float64[C, 1], into out."""
+    """Write readings, float64[C, k], less the middle one, float64[C, 1], into out, which may be the readings."""
     np.subtract(readings, middle, out=out)
 
 
@@ -66,10 +66,16 @@ NARROW = 1e-4
 
 
 def log_differences(readings: FloatArray, middle: FloatArray, out: FloatArray) -> None:
-    """Write ln of positive readings, float64[C, k], less ln of the middle one, float64[C, 1], into out."""
+    """Write ln of positive readings, float64[C, k], less ln of the middle one, float64[C, 1], into out.
+
+    Readings rise along each channel; out may be the readings themselves.
+    """
+    if readings.shape[1] == 0:
+        return
+    ends = np.log(readings[:, [0, -1]]) - np.log(middle)
+    narrow = np.flatnonzero(np.max(np.abs(ends), axis=1) < NARROW)
+    mended = np.log1p((readings[narrow] - middle[narrow]) / middle[narrow])
     np.log(readings, out=out)
     out -= np.log(middle)
-    if out.shape[1]:
-        narrow = np.flatnonzero(np.maximum(np.abs(out[:, 0]), np.abs(out[:, -1])) < NARROW)
-        if narrow.size:
-            out[narrow] = np.log1p((readings[narrow] - middle[narrow]) / middle[narrow])
+    if narrow.size:
+        out[narrow] = mended

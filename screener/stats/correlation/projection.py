@@ -25,7 +25,8 @@ SQUARED = 8192
 """Readings squared and summed in one go: few enough that the linear algebra library does not share them out."""
 
 Deviations = Callable[[FloatArray, FloatArray, FloatArray], None]
-"""Writes into the third array the deviations of readings, float64[C, k], from their middle one, float64[C, 1]."""
+"""Writes into the third array, which may be the first, the deviations of readings, float64[C, k], that rise along each
+channel, from their middle one, float64[C, 1]."""
 
 
 @dataclass(frozen=True, slots=True)
