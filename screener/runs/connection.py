@@ -152,8 +152,13 @@ def _needs_companions(error: sqlite3.OperationalError) -> bool:
 
 def _has_companion(path: Path) -> bool:
     """Whether a part of the content stands beside the file, where an immutable connection would not look."""
-    companions = [path.with_name(path.name + ending) for ending in ("-wal", "-journal")]
-    return any(companion.exists() and companion.stat().st_size > 0 for companion in companions)
+    return any(companion.stat().st_size > 0 for companion in companions(path) if not companion.name.endswith("-shm"))
+
+
+def companions(path: Path) -> dict[Path, tuple[int, int]]:
+    """The files of SQLite that stand beside that one, each with what tells it from a later one of its name."""
+    beside = (path.with_name(path.name + ending) for ending in ("-wal", "-journal", "-shm"))
+    return {file: (file.stat().st_ino, file.stat().st_mtime_ns) for file in beside if file.is_file()}
 
 
 def _header(connection: sqlite3.Connection) -> tuple[int, int]:

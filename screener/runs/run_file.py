@@ -62,9 +62,11 @@ class RunFile:
         with explained("create", path):
             if os.path.lexists(path):
                 raise _taken(path)
+            orphans = sqlite.companions(path)
             draft = path.with_name(f".{secrets.token_hex(6)}.run-new")
             try:
                 _lay_out(draft, facts, plan, (version, null_version))
+                _remove_orphans(orphans, path)
                 _move_to_new_name(draft, path)
             finally:
                 draft.unlink(missing_ok=True)
@@ -223,6 +225,16 @@ def _lay_out(draft: Path, facts: TableFacts, plan: Plan, versions: tuple[str, st
             store_origin(connection, facts, plan, versions)
     finally:
         connection.close()
+
+
+def _remove_orphans(orphans: Mapping[Path, tuple[int, int]], path: Path) -> None:
+    """Remove what a killed program left beside a run file that was then removed: SQLite would put it into the new one.
+
+    Only what was there before the new file could have companions of its own.
+    """
+    for companion, identity in orphans.items():
+        if not os.path.lexists(path) and sqlite.companions(path).get(companion) == identity:
+            companion.unlink(missing_ok=True)
 
 
 def _move_to_new_name(draft: Path, path: Path) -> None:

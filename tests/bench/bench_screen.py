@@ -111,7 +111,7 @@ def effect(run: PseudoTerminal, key: str) -> tuple[float, int]:
     run.send(key)
     while pointed(run) in {"", before} and time.perf_counter() - began < 5.0:
         count += run.read(0.02)
-    return time.perf_counter() - began, count
+    return run.read_at - began, count
 
 
 def pointed(run: PseudoTerminal) -> str:
@@ -144,7 +144,7 @@ def answer(run: PseudoTerminal, key: str) -> tuple[float, int]:
         if not piece:
             break
         count += piece
-        last = time.perf_counter()
+        last = run.read_at
     return last - began, count
 
 

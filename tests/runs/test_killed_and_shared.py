@@ -8,6 +8,7 @@ from collections.abc import Iterator
 from contextlib import contextmanager
 from pathlib import Path
 
+import pytest
 from polars.testing import assert_frame_equal
 
 from screener.records import Span
@@ -85,6 +86,33 @@ os.kill(os.getpid(), 9)
     with RunFile.open(path, read_only=True) as run:
         assert_frame_equal(run.results(), before, check_exact=True)
     assert files_in(tmp_path) == ["a.run"]
+
+
+@pytest.mark.parametrize("journal", ["WAL", "DELETE"])
+def test_a_new_run_file_takes_nothing_from_one_that_was_killed_and_removed(tmp_path: Path, journal: str) -> None:
+    path = tmp_path / "a.run"
+    with new_run(path, CHANNELS) as run:
+        run.store(block(0, 4))
+    killed = """
+import os, sqlite3, sys
+connection = sqlite3.connect(sys.argv[1], isolation_level=None)
+connection.execute(f"PRAGMA journal_mode = {sys.argv[2]}")
+connection.execute("PRAGMA cache_size = 1")
+connection.execute("BEGIN IMMEDIATE")
+connection.execute("UPDATE channel SET name = name || hex(randomblob(900))")
+if sys.argv[2] == "WAL":
+    connection.execute("COMMIT")
+os.kill(os.getpid(), 9)
+"""
+    subprocess.run([sys.executable, "-c", killed, str(path), journal], check=False)
+    path.unlink()
+    assert files_in(tmp_path)
+    with new_run(path, CHANNELS) as run, new_run(tmp_path / "alone.run", CHANNELS) as alone:
+        run.store(block(0, 8))
+        alone.store(block(0, 8))
+        assert_frame_equal(run.results(), alone.results(), check_exact=True)
+        assert run.facts == alone.facts
+    assert files_in(tmp_path) == ["a.run", "alone.run"]
 
 
 def test_a_reader_sees_whole_blocks_and_only_ever_more_of_them(tmp_path: Path) -> None:

@@ -28,6 +28,8 @@ class PseudoTerminal:
         self._screen = pyte.Screen(columns, rows)
         self._stream = pyte.ByteStream(self._screen)
         self.raw = b""
+        self.read_at = 0.0
+        """When the last piece was taken in, by `time.perf_counter`, before the emulator had looked at it."""
         self._master, slave = pty.openpty()
         self.attributes_before = termios.tcgetattr(self._master)
         self._set_size(columns, rows)
@@ -78,6 +80,7 @@ class PseudoTerminal:
         if not ready:
             return 0
         piece = os.read(self._master, 1 << 16)
+        self.read_at = time.perf_counter()
         self.raw += piece
         self._stream.feed(piece)
         return len(piece)
