@@ -13,11 +13,11 @@ from screener.records import BlockFailed, BlockScored, Event, Plan, RunFinished,
 from screener.runs import RunFile, default_run_path, is_run_file
 from screener.screening.null_source import nulls_for
 from screener.screening.screen import held_against, screen
-from screener.screening.workers import thread_workers
+from screener.screening.workers import blocks_at_once, thread_workers
 from screener.stats.correlation import table_ahead
 from screener.stats.null.packing import NULL_VERSION
 from screener.stats.positions import rule_key
-from screener.tables import Table, open_table, spans
+from screener.tables import Table, block_bytes, machine_memory, open_table, spans
 
 
 def start(
@@ -50,7 +50,8 @@ def _scored(
             yield RunFinished(cancelled=True, seconds=0.0)
             return
         todo = [span for span in spans(table.facts) if span not in done]
-        for event in screen(table, plan, nulls, spans=todo, executor=executor, ahead=jobs + 2, cancelled=cancelled):
+        ahead = blocks_at_once(jobs, block_bytes(table.facts), machine_memory())
+        for event in screen(table, plan, nulls, spans=todo, executor=executor, ahead=ahead, cancelled=cancelled):
             if isinstance(event, BlockScored):
                 run.store(event.scores)
             elif isinstance(event, BlockFailed):

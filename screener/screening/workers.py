@@ -10,6 +10,11 @@ from threadpoolctl import threadpool_limits
 
 NICENESS = 10
 """Workers yield to the thread that draws the screen."""
+WAITING = 2
+"""Blocks handed out beyond one for each worker, so that none waits for the next."""
+AT_WORK_BYTES = 80 << 20
+AT_WORK_SHARE = 1_000
+"""Readings of all blocks at work: so many bytes, or this part of the machine's memory where that is more."""
 
 
 @contextmanager
@@ -21,6 +26,15 @@ def thread_workers(jobs: int) -> Iterator[Executor]:
             yield pool
         finally:
             pool.shutdown(wait=False, cancel_futures=True)
+
+
+def blocks_at_once(jobs: int, block_bytes: int, memory_bytes: int) -> int:
+    """How many blocks may be handed out: enough for every worker, as long as their readings keep within a budget.
+
+    Scoring takes some four to five times the readings of a block, so the budget bounds what the workers take together.
+    """
+    budget = max(AT_WORK_BYTES, memory_bytes // AT_WORK_SHARE)
+    return max(1, min(jobs + WAITING, budget // max(1, block_bytes)))
 
 
 def usable_cores() -> int:

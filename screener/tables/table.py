@@ -1,6 +1,5 @@
 """Opening a measurement table and reading its channels block by block."""
 
-import os
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field, replace
 from pathlib import Path
@@ -11,6 +10,7 @@ from numpy.typing import NDArray
 
 from screener.errors import PlanError, TableError
 from screener.records import Block, Channel, Plan, SetAside, Span, TableFacts
+from screener.tables.blocks import machine_memory
 from screener.tables.chosen import NOT_ASKED, Choice, choose
 from screener.tables.columns import reading
 from screener.tables.failures import readable
@@ -85,7 +85,7 @@ def open_table(path: Path, plan: Plan, *, held_bytes: int = HELD_BYTES, most_byt
     raw, files = join([one.raw for one in loaded], names)
     if not raw.rows:
         raise TableError(f"Couldn't read {str(path)!r}: it has columns but no readings.")
-    _check_size(path, raw.rows, most_bytes or _memory() // 2)
+    _check_size(path, raw.rows, most_bytes or machine_memory() // 2)
     with readable(path, raw.format):
         facts, sifted = _sifted(source.path, plan, raw)
         facts = replace(facts, fingerprint=joined([one.content for one in loaded]), files=files)
@@ -105,11 +105,6 @@ def _check_size(path: Path, rows: int, most_bytes: int) -> None:
             f"Couldn't read {str(path)!r}: one channel of {rows:,} readings takes {needed:,} bytes, more than this "
             f"machine can spare ({most_bytes:,}). Take fewer rows."
         )
-
-
-def _memory() -> int:
-    """Bytes of memory in this machine."""
-    return os.sysconf("SC_PAGE_SIZE") * os.sysconf("SC_PHYS_PAGES")
 
 
 def _sifted(path: Path, plan: Plan, raw: RawTable) -> tuple[TableFacts, Sifted]:

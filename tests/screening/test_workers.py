@@ -4,9 +4,10 @@ import os
 import threading
 import time
 
+import pytest
 from threadpoolctl import threadpool_info
 
-from screener.screening.workers import NICENESS, thread_workers, usable_cores
+from screener.screening.workers import NICENESS, blocks_at_once, thread_workers, usable_cores
 
 
 def test_matrix_products_get_one_thread_while_blocks_are_scored() -> None:
@@ -57,3 +58,20 @@ def test_only_the_cores_of_this_process_count() -> None:
             assert usable_cores() == 1
         finally:
             os.sched_setaffinity(0, allowed)
+
+
+@pytest.mark.parametrize(
+    ("jobs", "block_bytes", "memory_bytes", "blocks"),
+    [
+        (2, 4_000_000, 8 << 30, 4),
+        (8, 4_000_000, 8 << 30, 10),
+        (8, 40_000_000, 8 << 30, 2),
+        (8, 400_000_000, 8 << 30, 1),
+        (64, 4_000_000, 8 << 30, 20),
+        (64, 4_000_000, 512 << 30, 66),
+    ],
+)
+def test_so_many_blocks_are_handed_out_as_workers_need_and_memory_allows(
+    jobs: int, block_bytes: int, memory_bytes: int, blocks: int
+) -> None:
+    assert blocks_at_once(jobs, block_bytes, memory_bytes) == blocks
