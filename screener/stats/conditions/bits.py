@@ -33,11 +33,14 @@ def unpacked(bits: Bits, rows: int) -> BoolArray:
 def later(bits: Bits, rows: int) -> Bits:
     """Bit i is bit i + rows of the given ones."""
     whole, part = divmod(rows, 64)
-    moved = np.zeros_like(bits)
-    kept = max(bits.shape[1] - whole, 0)
-    moved[:, :kept] = bits[:, whole:] >> np.uint64(part)
+    if whole:
+        moved = np.zeros_like(bits)
+        kept = max(bits.shape[1] - whole, 0)
+        moved[:, :kept] = bits[:, whole:]
+        return later(moved, part) if part else moved
+    moved = bits >> np.uint64(part)
     if part:
-        moved[:, : max(kept - 1, 0)] |= bits[:, whole + 1 :] << np.uint64(64 - part)
+        moved[:, :-1] |= bits[:, 1:] << np.uint64(64 - part)
     return moved
 
 
@@ -62,6 +65,13 @@ def pairs(bits: Bits, lags: int) -> IntArray:
         for k in range(lags + 1):
             found[first : first + TOGETHER, k] = count(some & later(some, k))
     return found
+
+
+def run_of_eight(bits: Bits) -> BoolArray:
+    """Whether eight bits of a channel or more are set side by side, bool[C]."""
+    for length in (1, 2, 4):
+        bits = bits & later(bits, length)
+    return np.asarray(np.any(bits != 0, axis=1), dtype=np.bool_)
 
 
 def longest_run(bits: Bits) -> IntArray:

@@ -29,9 +29,18 @@ def apart_from_rails(
         for first in range(0, railed.size, TOGETHER):
             some = railed[first : first + TOGETHER]
             rail = bits.empty(some.size, readings.shape[1])
-            bits.put(beyond(readings[some], end[some, None]), rail)
-            longest = bits.longest_run(rail & same[some]) + 1
-            held = longest >= np.maximum(HELD * counted[some], LONG)
+            bits.put(beyond(_taken(readings, some), end[some, None]), rail)
+            held = np.zeros(some.size, dtype=np.bool_)
+            at_rail = rail & same[some]
+            long = np.flatnonzero(bits.run_of_eight(at_rail))
+            longest = bits.longest_run(at_rail[long]) + 1
+            held[long] = longest >= np.maximum(HELD * counted[some[long]], LONG)
             kept[some] &= ~np.where(held[:, None], np.uint64(0), rail)
             counted[some[held]] = 0
     return kept, replace(clipping, low=low, high=high)
+
+
+def _taken(readings: FloatArray, rows: IntArray) -> FloatArray:
+    """Some channels, in place where they lie side by side."""
+    first, last = int(rows[0]), int(rows[-1])
+    return readings[first : last + 1] if last - first == rows.size - 1 else readings[rows]

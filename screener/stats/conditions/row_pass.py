@@ -53,12 +53,10 @@ class _Scratch:
     """Room for one tile, used again and again: fresh memory would cost more than the arithmetic."""
 
     def __init__(self, channels: int, rows: int) -> None:
-        self.differences = np.empty((channels, rows))
-        self.buffers: list[SmallFloats] = []
-        for width in widths(rows):
-            self.buffers.append(np.zeros((channels, padded(-(-rows // width))), dtype=np.float32))
+        self.buffer = np.zeros((channels, padded(rows)), dtype=np.float32)
         self.ones = np.ones(rows, dtype=np.float32)
-        self.flags = np.empty((channels, rows), dtype=np.bool_)
+        self.finite = np.empty((channels, rows), dtype=np.bool_)
+        self.mask = np.empty((channels, rows), dtype=np.int32)
         self.equal = np.empty((channels, max(rows - 1, 0)), dtype=np.bool_)
 
 
@@ -75,15 +73,18 @@ def pass_over(readings: FloatArray, ordered: FloatArray, n: IntArray) -> RowPass
     channels, rows = readings.shape
     wide = widths(rows)
     products = np.zeros((channels, len(wide), LAGS + 1))
-    sums = np.zeros((channels, -(-rows // wide[-1])))
     same, absent = bits.empty(channels, rows), bits.empty(channels, rows)
     pivot, exponent = _pivot(ordered, n)
     size = max(1, min(channels, TILE // max(rows, 1)))
     room = _Scratch(size, rows)
+    coarse = np.empty((channels, -(-rows // COARSER) if len(wide) > 1 else rows), dtype=np.float32)
     for first in range(0, channels, size):
         tile = slice(first, min(first + size, channels))
         _centre(readings[tile], pivot[tile], exponent[tile], n[tile], room, same[tile], absent[tile])
-        sums[tile] = _through(room, tile.stop - first, rows, products[tile])
+        buffer = room.buffer[: tile.stop - first]
+        products[tile, 0] = lag_products(buffer, rows)
+        coarse[tile] = _summed(buffer, coarse.shape[1]) if len(wide) > 1 else buffer[:, :rows]
+    products[:, 1:], sums = _coarser(coarse, wide)
     pairs, counts = _finite(absent, n, rows, wide)
     found = tuple(Resolution(width, products[:, i], pairs[:, i]) for i, width in enumerate(wide))
     return RowPass(found, same, absent, sums, counts, exponent)
@@ -103,39 +104,44 @@ def _pivot(ordered: FloatArray, n: IntArray) -> tuple[FloatArray, IntArray]:
 def _centre(
     readings: FloatArray, pivot: FloatArray, exponent: IntArray, n: IntArray, room: _Scratch, same: Bits, absent: Bits
 ) -> None:
-    """Write readings less their mean, 0 where missing, into the first buffer, and the bits of a tile."""
+    """Write readings less their mean, 0 where missing, into the buffer, and the bits of a tile."""
     channels, rows = readings.shape
-    inside = room.buffers[0][:channels, :rows]
-    differences, equal = room.differences[:channels], room.equal[:channels]
+    inside, equal = room.buffer[:channels, :rows], room.equal[:channels]
     with np.errstate(over="ignore", invalid="ignore"):
-        np.subtract(readings, pivot[:, None], out=differences)
         if np.any(exponent):
-            np.ldexp(differences, -exponent[:, None], out=differences)
-        inside[...] = differences
+            inside[...] = np.ldexp(readings - pivot[:, None], -exponent[:, None])
+        else:
+            np.subtract(readings, pivot[:, None], out=inside)
     np.equal(inside[:, 1:], inside[:, :-1], out=equal)
     complete = bool(np.all(n == rows))
     if not complete:
-        flags = np.isfinite(inside, out=room.flags[:channels])
-        equal &= flags[:, 1:]
-        np.logical_not(flags, out=flags)
-        bits.put(flags, absent)
-        np.copyto(inside, np.float32(0.0), where=flags)
+        finite = np.isfinite(inside, out=room.finite[:channels])
+        equal &= finite[:, 1:]
+        # All bits of a word set where a reading is: to blank the others bit by bit costs no branch.
+        words, mask = inside.view(np.int32), room.mask[:channels]
+        np.negative(finite.view(np.int8), out=mask)
+        words &= mask
+        bits.put(np.logical_not(finite, out=finite), absent)
     bits.put(equal, same)
     inside -= (np.vecdot(inside, room.ones) / np.maximum(n, 1).astype(np.float32))[:, None]
     if not complete:
-        np.copyto(inside, np.float32(0.0), where=flags)
+        words &= mask
 
 
-def _through(room: _Scratch, channels: int, rows: int, products: FloatArray) -> FloatArray:
-    """Write the lag products at every resolution into products; the sums over the widest stretches."""
-    buffer = room.buffers[0][:channels]
-    products[:, 0] = lag_products(buffer)
-    for i, coarse in enumerate(room.buffers[1:], 1):
-        rows = -(-rows // COARSER)
-        coarse[:channels, :rows] = _summed(buffer, rows)
-        buffer = coarse[:channels]
-        products[:, i] = lag_products(buffer)
-    return buffer[:, :rows].astype(np.float64)
+def _coarser(sums: SmallFloats, wide: list[int]) -> tuple[FloatArray, FloatArray]:
+    """Lag products of all resolutions but the finest, [C, resolutions - 1, LAGS + 1], and the widest sums.
+
+    `sums` are those of the second resolution, or of the only one.
+    """
+    products = np.zeros((len(sums), len(wide) - 1, LAGS + 1))
+    for i in range(len(wide) - 1):
+        rows = sums.shape[1]
+        buffer = np.zeros((len(sums), padded(rows)), dtype=np.float32)
+        buffer[:, :rows] = sums
+        products[:, i] = lag_products(buffer, rows)
+        if i + 2 < len(wide):
+            sums = _summed(buffer, -(-rows // COARSER))
+    return products, sums.astype(np.float64)
 
 
 def _finite(absent: Bits, n: IntArray, rows: int, wide: list[int]) -> tuple[FloatArray, FloatArray]:
@@ -159,16 +165,9 @@ def _pairs(present: Bits, rows: int, wide: list[int]) -> tuple[FloatArray, Float
     products[:, 0] = bits.pairs(present, LAGS)
     if len(wide) == 1:
         return products, bits.unpacked(present, rows).astype(np.float64)
-    rows = -(-rows // COARSER)
-    sums = np.bitwise_count(present.view(np.uint8))[:, :rows].astype(np.float32)
-    for i in range(1, len(wide)):
-        buffer = np.zeros((len(sums), padded(rows)), dtype=np.float32)
-        buffer[:, :rows] = sums
-        products[:, i] = lag_products(buffer)
-        if i + 1 < len(wide):
-            rows = -(-rows // COARSER)
-            sums = _summed(buffer, rows)
-    return products, sums.astype(np.float64)
+    eight = np.bitwise_count(present.view(np.uint8))[:, : -(-rows // COARSER)]
+    products[:, 1:], sums = _coarser(eight.astype(np.float32), wide)
+    return products, sums
 
 
 def _summed(buffer: SmallFloats, rows: int) -> SmallFloats:
