@@ -68,7 +68,7 @@ def load_file(path: Path, plan: Plan, held_bytes: int) -> Loaded:
     with readable(path, str(recognised.kind)), ThreadPoolExecutor(1) as aside:
         before = FileState.of(path)
         content = aside.submit(fingerprint, path, size=before.size)
-        raw = as_columns(_read(path, recognised, plan, held_bytes), plan.shape)
+        raw = as_columns(_read(path, recognised, plan, held_bytes), plan.shape, path)
         after = FileState.of(path)
         if after == before:
             return Loaded(raw, content.result(), before)
@@ -81,7 +81,7 @@ def _as_it_was(path: Path, recognised: Recognised, plan: Plan, size: int, held_b
     """The table in the whole lines among the first bytes of a file that grows."""
     spool = Spool()
     copy = spool.keep(_whole_lines(path, size))
-    raw = as_columns(_read(copy, recognised, plan, held_bytes), plan.shape)
+    raw = as_columns(_read(copy, recognised, plan, held_bytes), plan.shape, path)
     remark = f"The file grew while it was read: its first {copy.stat().st_size:,} bytes were read."
     kept = replace(raw, remarks=(*raw.remarks, remark), spool=raw.spool or spool)
     return Loaded(kept, fingerprint(copy))
@@ -120,7 +120,7 @@ def load_address(address: str, plan: Plan, held_bytes: int) -> Loaded:
             raw = read_frame(frame, Recognised(kind), held_bytes=held_bytes)
             ends = pl.concat([frame.head(1), frame.tail(1)]).collect()
             rows = ends.hash_rows(0).to_list()
-            return Loaded(as_columns(raw, plan.shape), f"address:{raw.rows}:{len(raw.names)}:{rows}")
+            return Loaded(as_columns(raw, plan.shape, Path(address)), f"address:{raw.rows}:{len(raw.names)}:{rows}")
         spool = Spool()
         lines = pl.scan_lines(address, glob=False).collect().to_series()
         loaded = load_file(spool.keep(f"{line}\n".encode() for line in lines), plan, held_bytes)

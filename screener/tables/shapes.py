@@ -3,10 +3,13 @@
 import re
 from collections.abc import Iterator, Sequence
 from dataclasses import replace
+from pathlib import Path
 
+import numpy as np
 import polars as pl
+from numpy.typing import NDArray
 
-from screener.errors import PlanError
+from screener.errors import PlanError, TableError
 from screener.tables.cells import BLANKS, is_number
 from screener.tables.names import visible
 from screener.tables.raw import RawTable
@@ -20,23 +23,38 @@ _VALUES = frozenset(("value", "values", "reading", "readings", "result", "measur
 _UNITS = frozenset(("unit", "units", "uom", "eu"))
 _FEWEST_READINGS = 3
 _MOST_CHANNELS = 100_000
+MOST_CELLS = 60_000_000
+"""Cells of a table that is turned into columns, which takes some 45 bytes for each."""
 
 
-def as_columns(raw: RawTable, shape: str) -> RawTable:
+def as_columns(raw: RawTable, shape: str, path: Path, *, most_cells: int = MOST_CELLS) -> RawTable:
     """The same table with a column for every channel.
 
     Raises:
         PlanError: the shape is none that is known, or not that of this table.
+        TableError: it is not one of columns, and too large to be turned into one.
     """
     if shape not in ("", *SHAPES):
         raise PlanError(f"Couldn't use shape {shape!r}: known are {', '.join(SHAPES)}.")
-    if shape == "columns" or not raw.held:
+    if shape == "columns":
         return raw
     if shape == "rows" or (not shape and _has_channels_in_rows(raw)):
+        _check_size(raw, path, "it has a channel in each row", most_cells)
         return _turned(raw, asked=bool(shape))
     if shape == "long" or (not shape and _is_long(raw)):
+        _check_size(raw, path, "it names a channel in each row", most_cells)
         return _widened(raw, asked=bool(shape))
     return raw
+
+
+def _check_size(raw: RawTable, path: Path, what: str, most_cells: int) -> None:
+    cells = raw.rows * len(raw.names)
+    if cells > most_cells or not raw.held:
+        raise TableError(
+            f"Couldn't read {str(path)!r}: {what}, and such a table is turned into columns only up to {most_cells:,} "
+            f"cells (it has {cells:,}) and 2 GB of text. Write a column for each channel, or split it by time into "
+            "files that a pattern such as 'part_*.csv' joins; --shape=columns reads its columns as they are."
+        )
 
 
 def names_a_channel(word: str) -> bool:
@@ -119,21 +137,19 @@ def _widened(raw: RawTable, *, asked: bool) -> RawTable:
             "and one called value, reading or result."
         )
     name, value = found
-    frame = raw.frame.collect().filter(pl.col(name).is_not_null())
+    frame = raw.frame.collect()
+    if frame[name].null_count():
+        frame = frame.filter(pl.col(name).is_not_null())
     by_place = dict(zip(frame.columns, raw.names, strict=True))
     unit = next((column for column, word in by_place.items() if word.strip().lower() in _UNITS), "")
-    keys = [column for column in frame.columns if column not in {name, value, unit}]
-    aligned = bool(keys) and not frame.select(pl.struct(*keys, name).is_duplicated().any()).item()
-    place = pl.struct(keys).rank("dense") if aligned else pl.int_range(pl.len()).over(name)
     channels = frame[name].unique(maintain_order=True)
     if len(channels) > _MOST_CHANNELS:
         raise PlanError(f"Couldn't read the table as long: column {by_place[name]!r} has {len(channels):,} names.")
-    numbered = frame.select(name, value, place=place)
-    if aligned:
-        first_seen = pl.col("row").min().over("place")
-        numbered = numbered.with_row_index("row").with_columns(place=first_seen).drop("row")
-    wide = numbered.pivot(on=name, index="place", values=value, maintain_order=True).sort("place").drop("place")
-    wide = wide.select(pl.col(list(channels))).rename({old: f"c{at}" for at, old in enumerate(channels)})
+    of_channel = _first_seen(frame[name])
+    keys = [column for column in frame.columns if column not in {name, value, unit}]
+    place = _side_by_side(frame, keys, of_channel)
+    aligned = place is not None
+    wide = _placed(frame[value], of_channel, _in_turn(of_channel) if place is None else place)
     units = dict(frame.select(name, unit).unique(name, keep="first").rows()) if unit else {}
     left = [f"column {visible(by_place[key])!r}" for key in keys]
     said = f"Each row names its channel: {len(channels):,} channels were read from column {visible(by_place[value])!r}"
@@ -149,6 +165,53 @@ def _widened(raw: RawTable, *, asked: bool) -> RawTable:
         remarks=(*raw.remarks, *remark),
         dialect=_with(raw.dialect, "a channel name in each row"),
     )
+
+
+def _first_seen(column: pl.Series) -> NDArray[np.int64]:
+    """[rows] the number of each cell's value, in the order in which they are first seen."""
+    if column.dtype.is_nested() or column.dtype == pl.Boolean:
+        column = column.to_frame().to_struct()
+    code = column.rank("dense").fill_null(0).to_numpy().astype(np.int64)
+    first = np.full(int(code.max(initial=-1)) + 1, len(code))
+    first[code[::-1]] = np.arange(len(code))[::-1]
+    number = np.empty_like(first)
+    number[np.argsort(first)] = np.arange(len(first))
+    seen: NDArray[np.int64] = number[code]
+    return seen
+
+
+def _side_by_side(frame: pl.DataFrame, keys: Sequence[str], of_channel: NDArray[np.int64]) -> NDArray[np.int64] | None:
+    """[rows] the row of the wide table, one for each key; None without keys or where a channel has one twice."""
+    if not keys:
+        return None
+    place = _first_seen(frame[keys[0]])
+    for key in keys[1:]:
+        more = _first_seen(frame[key])
+        place = _first_seen(pl.Series(place * (int(more.max(initial=0)) + 1) + more))
+    taken = np.sort(place * (int(of_channel.max(initial=0)) + 1) + of_channel)
+    return place if (taken[1:] > taken[:-1]).all() else None
+
+
+def _in_turn(of_channel: NDArray[np.int64]) -> NDArray[np.int64]:
+    """[rows] how many readings the channel had before."""
+    ordered = np.argsort(of_channel, kind="stable")
+    starts = np.searchsorted(of_channel[ordered], of_channel[ordered], side="left")
+    place = np.empty_like(ordered)
+    place[ordered] = np.arange(len(ordered)) - starts
+    return place
+
+
+def _placed(values: pl.Series, of_channel: NDArray[np.int64], place: NDArray[np.int64]) -> pl.DataFrame:
+    """The values as columns c0, c1, ..., null where there is none."""
+    rows = int(place.max(initial=-1)) + 1
+    columns = []
+    ends = np.cumsum(np.bincount(of_channel))
+    ordered = np.argsort(of_channel, kind="stable")
+    for channel, at in enumerate(np.split(ordered, ends[:-1])):
+        filled = np.full(rows, -1)
+        filled[place[at]] = at
+        columns.append(values.gather(pl.Series(filled).replace(-1, None)).alias(f"c{channel}"))
+    return pl.DataFrame(columns)
 
 
 def _texts(column: pl.Series) -> Iterator[str]:

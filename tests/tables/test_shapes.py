@@ -4,6 +4,7 @@ import io
 import sys
 import threading
 from collections.abc import Iterator
+from datetime import date
 from functools import partial
 from http.server import SimpleHTTPRequestHandler, ThreadingHTTPServer
 from pathlib import Path
@@ -16,6 +17,9 @@ from numpy.testing import assert_array_equal
 from screener.errors import PlanError, TableError
 from screener.records import Plan, SourceFile
 from screener.tables import open_table, spans
+from screener.tables.formats import recognise
+from screener.tables.shapes import as_columns
+from screener.tables.text import read_text
 from tests.tables.conftest import Opened, OpenText, opened
 
 P = [1.5, 2.25, -3.0, 40.0, 2.5]
@@ -71,6 +75,42 @@ def test_a_long_table_with_gaps_and_words_keeps_its_rows(open_text: OpenText) ->
 
 def test_a_long_table_without_a_key_keeps_the_order_of_each_channel(open_text: OpenText) -> None:
     is_p_and_q(open_text("name,reading\n" + "".join(f"p1,{p}\n" for p in P) + "".join(f"q1,{q}\n" for q in Q)))
+
+
+@pytest.mark.parametrize(
+    "key", [[True, False], [[1, 2], [3]], ["b", "a"], [2.5, None], [date(2024, 5, 2), date(2023, 1, 1)]]
+)
+def test_rows_of_one_key_of_any_kind_stand_side_by_side_as_first_seen(tmp_path: Path, key: list[object]) -> None:
+    frame = pl.DataFrame({"at": pl.Series([key[0]] * 3 + [key[1]] * 3 + [key[0]]), "lot": [1] * 6 + [2]})
+    frame = frame.with_columns(tag=pl.Series([*"pqr", *"rqp", "p"]), value=pl.Series([1.5, 7, 3, 4, 0.25, 2.5, 9]))
+    frame.write_parquet(tmp_path / "t.parquet")
+    table = opened(tmp_path / "t.parquet", Plan(shape="long"))
+    assert table.names == ["p", "q", "r"]
+    assert_array_equal(table.readings, [[1.5, 2.5, 9], [7, 0.25, np.nan], [3, 4, np.nan]])
+
+
+LARGE = {
+    "long": "at,tag,value\n" + "".join(f"{at},{tag},{at % 7}.5\n" for at in range(60) for tag in "pqrs"),
+    "rows": "".join(f"p{at},{at}.5,{at % 7},3.25,{at % 5}.5\n" for at in range(200)),
+}
+
+
+@pytest.mark.parametrize("asked", [False, True])
+@pytest.mark.parametrize("shape", LARGE)
+def test_what_is_too_large_to_be_turned_into_columns_is_one_sentence(
+    tmp_path: Path, shape: str, *, asked: bool
+) -> None:
+    path = tmp_path / "t.csv"
+    path.write_text(LARGE[shape])
+    plan = Plan(shape=shape if asked else "")
+    with pytest.raises(
+        TableError, match=r"t\.csv.: it (names|has) a channel .* only up to [\d,]+ cells .* Write a column"
+    ):
+        open_table(path, plan, held_bytes=1_000)
+    raw = read_text(path, recognise(path))
+    with pytest.raises(TableError, match=r"only up to 700 cells \(it has (720|1,000)\)"):
+        as_columns(raw, plan.shape, path, most_cells=700)
+    assert open_table(path, Plan(shape="columns"), held_bytes=1_000).facts.channels
 
 
 def test_a_table_that_is_not_long_is_refused_as_long(open_text: OpenText) -> None:
