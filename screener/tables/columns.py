@@ -83,7 +83,7 @@ def readings_of(frame: pl.LazyFrame) -> NDArray[np.float64]:
 def glance(frame: pl.DataFrame | pl.LazyFrame, columns: Sequence[str], rows: int) -> NDArray[np.float64]:
     """float64[columns, rows], the first rows of the columns."""
     part = frame.head(rows).lazy().collect() if isinstance(frame, pl.LazyFrame) else frame.head(rows)
-    if part.width != len(columns):
+    if part.columns != list(columns):
         part = part.select(columns)
     if any(dtype != pl.Float64 for dtype in part.dtypes):
         part = part.cast(pl.Float64)

@@ -93,7 +93,7 @@ def _width(table: Sequence[HeadRow]) -> int:
     widths: Counter[int] = Counter()
     numbers: Counter[int] = Counter()
     for row in table:
-        if found := sum(map(_reads_as_number, row.cells[:_JUDGED_CELLS])):
+        if found := sum(map(reads_as_number, row.cells[:_JUDGED_CELLS])):
             widths[len(row.cells)] += 1
             numbers[len(row.cells)] += found
     if not widths:
@@ -107,7 +107,7 @@ def _numeric_columns(table: Sequence[HeadRow], width: int) -> list[int]:
     later = later[len(later) // 2 :]
     columns = range(0, width, max(1, width // _JUDGED_CELLS))
     filled = {at: [row[at] for row in later if not is_missing(row[at].strip())] for at in columns}
-    return [at for at, cells in filled.items() if cells and 2 * sum(map(_reads_as_number, cells)) >= len(cells)]
+    return [at for at, cells in filled.items() if cells and 2 * sum(map(reads_as_number, cells)) >= len(cells)]
 
 
 def _first_reading(table: Sequence[HeadRow], width: int) -> int:
@@ -139,7 +139,7 @@ def _holds_numbers(row: HeadRow, numeric: Sequence[int]) -> bool:
     """Whether more than half of the number columns hold a number here, or nothing."""
     cells = [row.cells[at].strip() for at in numeric if at < len(row.cells)]
     filled = [cell for cell in cells if not is_missing(cell)]
-    numbers = sum(map(_reads_as_number, filled))
+    numbers = sum(map(reads_as_number, filled))
     return numbers > 0 and 2 * (numbers + len(cells) - len(filled)) > len(numeric)
 
 
@@ -147,7 +147,7 @@ def _is_naming(row: HeadRow, numeric: Sequence[int]) -> bool:
     """Whether a row has words, all of them, where the table has numbers."""
     cells = [row.cells[at].strip() for at in numeric if at < len(row.cells)]
     return len(cells) == len(numeric) and all(
-        cell and not _reads_as_number(cell) and cell.upper() not in LOGGER_WORDS for cell in cells
+        cell and not reads_as_number(cell) and cell.upper() not in LOGGER_WORDS for cell in cells
     )
 
 
@@ -178,7 +178,7 @@ def _block_above(table: Sequence[HeadRow], start: int, widths: set[int]) -> list
 
 
 def _may_head(row: HeadRow) -> bool:
-    return any(cell.strip() and not _reads_as_number(cell) for cell in row.cells)
+    return any(cell.strip() and not reads_as_number(cell) for cell in row.cells)
 
 
 def _is_filled(row: HeadRow) -> bool:
@@ -195,7 +195,7 @@ def _all_known_units(row: HeadRow) -> bool:
 def _only_readings(table: Sequence[HeadRow], start: int) -> bool:
     """Whether a first row that holds numbers is readings, not names such as wavelengths beside a word in the corner."""
     row = [cell.strip() for cell in table[start].cells]
-    words = [(at, cell) for at, cell in enumerate(row) if cell and not is_missing(cell) and not _reads_as_number(cell)]
+    words = [(at, cell) for at, cell in enumerate(row) if cell and not is_missing(cell) and not reads_as_number(cell)]
     if not words:
         return any(row)
     later = [other.cells for other in table[start + 1 :]]
@@ -219,7 +219,7 @@ def _pattern(cell: str) -> str:
 def _is_reading(row: HeadRow) -> bool:
     """Whether a row between the names and the first numbers holds one, or what a logger writes in place of readings."""
     cells = [cell.strip() for cell in row.cells[:_JUDGED_CELLS]]
-    return any((is_missing(cell) and cell) or cell.upper() in LOGGER_WORDS or _reads_as_number(cell) for cell in cells)
+    return any((is_missing(cell) and cell) or cell.upper() in LOGGER_WORDS or reads_as_number(cell) for cell in cells)
 
 
 def _units(below: Sequence[HeadRow], named: HeadRow, *, start_line: int, asked: int) -> HeadRow | None:
@@ -236,7 +236,7 @@ def _units(below: Sequence[HeadRow], named: HeadRow, *, start_line: int, asked: 
 def _may_be_units(row: HeadRow, width: int) -> bool:
     cells = [cell.strip() for cell in row.cells]
     short = all(len(cell) <= _LONGEST_UNIT for cell in cells)
-    return short and len(cells) >= width - 1 and any(cells) and not any(map(_reads_as_number, cells))
+    return short and len(cells) >= width - 1 and any(cells) and not any(map(reads_as_number, cells))
 
 
 def _commented_names(rows: Sequence[HeadRow], first: HeadRow, prefix: str) -> HeadRow | None:
@@ -245,7 +245,7 @@ def _commented_names(rows: Sequence[HeadRow], first: HeadRow, prefix: str) -> He
     if not prefix or not above or not above[-1].cells[0].lstrip().startswith(prefix):
         return None
     words = _without_prefix(above[-1], prefix)
-    named = len(words) == len(first.cells) and not any(map(_reads_as_number, words))
+    named = len(words) == len(first.cells) and not any(map(reads_as_number, words))
     return HeadRow(list(words), above[-1].first, above[-1].last) if named else None
 
 
@@ -263,6 +263,6 @@ def _row_of_line(rows: Sequence[HeadRow], line: int) -> HeadRow:
     return next((row for row in rows if row.last >= line), rows[-1])
 
 
-def _reads_as_number(cell: str) -> bool:
+def reads_as_number(cell: str) -> bool:
     cell = cell.strip("\0 \t\r\n\u00a0")
     return (is_number(cell) and not is_missing(cell)) or _BARE_NUMBER.fullmatch(cell) is not None

@@ -10,9 +10,9 @@ import numpy as np
 import polars as pl
 from numpy.typing import NDArray
 
-from screener.tables.cells import BLANKS, is_missing, is_number
+from screener.tables.cells import BLANKS, is_missing
 from screener.tables.head import cell_rows
-from screener.tables.header import COMMENTS
+from screener.tables.header import COMMENTS, reads_as_number
 from screener.tables.layout import Layout
 from screener.tables.lines import each_line, measured_lines
 
@@ -21,8 +21,12 @@ _LAST_ROWS = 1_000
 _BEGIN = 200
 """Characters kept of the beginning of a row."""
 _SUMMARY = (
-    r"(?i)^(mean|average|avg\.?|total|sum|min(imum)?|max(imum)?|std\.?( ?dev\.?)?|stdev|median|count|rms|range)\s*:?$"
+    r"(?i)^(mean|average|avg\.?|total|sum|min(imum)?|max(imum)?|std\.?( ?dev\.?)?|stdev|median|count|rms|range|sigma"
+    r"|mittel(wert)?|summe|anzahl|standardabweichung|streuung|stabw|spannweite"
+    r"|moyenne|somme|écart[ -]type|médiane|étendue|media|promedio|suma|somma|mediana|desviación (típica|estándar)"
+    r"|deviazione standard|média|soma|desvio padrão)\s*[.:=]?$"
 )
+"""What stands before figures that sum up a column, in languages that instruments write."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -134,12 +138,15 @@ class _Rows:
         return RowWidths(cells, ends + self.lines_before, self.expected, comments, footers)
 
 
-def last_rows_sum_up(first_cells: pl.Series) -> NDArray[np.bool_]:
-    """[rows] true for last rows whose first cell says that they sum up the rows above, where no other row's does."""
-    sums = first_cells.str.strip_chars(BLANKS).str.contains(_SUMMARY).fill_null(value=False).to_numpy()
-    tail = np.zeros(len(sums), dtype=np.bool_)
-    tail[-_FOOTER_ROWS:] = sums[-_FOOTER_ROWS:]
-    return tail if tail.sum() == sums.sum() < len(sums) else np.zeros(len(sums), dtype=np.bool_)
+def sums_at_end(frame: pl.LazyFrame, rows: int) -> dict[int, str]:
+    """The last rows whose first cell says that they sum up the rows above, with that cell; none where others say so."""
+    first = pl.nth(0).alias("cell")
+    sums = pl.col("cell").str.strip_chars(BLANKS).str.contains(_SUMMARY)
+    found = frame.select(first).with_row_index("row").filter(sums).collect(engine="streaming")
+    at_end = found["row"].min()
+    if at_end is None or int(str(at_end)) < rows - _FOOTER_ROWS or len(found) == rows:
+        return {}
+    return dict(found.rows())
 
 
 def _comments(begins: Mapping[int, str], cells: NDArray[np.int64], layout: Layout) -> NDArray[np.bool_]:
@@ -162,7 +169,7 @@ def _footers(last: Iterable[tuple[int, str]], cells: NDArray[np.int64], layout: 
     at = len(cells) - 1
     while at > 0 and len(layout.names) > 1 and (at in texts or not cells[at]):
         words = [text.strip(BLANKS + '"') for text in texts.get(at, "").split(layout.separator)]
-        if any(is_number(word) or (is_missing(word) and word) for word in words):
+        if any(reads_as_number(word) or (is_missing(word) and word) for word in words):
             break
         found[at] = cells[at] > 0
         at -= 1

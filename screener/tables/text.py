@@ -6,9 +6,7 @@ from dataclasses import dataclass, replace
 from itertools import count
 from os import SEEK_END
 from pathlib import Path
-from typing import TypeVar
 
-import numpy as np
 import polars as pl
 
 from screener.errors import TableError
@@ -18,14 +16,13 @@ from screener.tables.encoding import HEAD_LINES, Text, blanks_as_tabs, in_memory
 from screener.tables.formats import Recognised
 from screener.tables.head import SEPARATORS, head_rows
 from screener.tables.layout import Layout, layout_of
+from screener.tables.left_out import Frame, Told, only_readings
 from screener.tables.names import visible
-from screener.tables.ragged import last_rows_sum_up, row_widths
 from screener.tables.raw import RawTable
 from screener.tables.shapes import names_a_channel
 from screener.tables.spool import Spool, roomy
 from screener.tables.spreadsheet import sheet_as_text
 
-Frame = TypeVar("Frame", pl.DataFrame, pl.LazyFrame)
 _FEWEST_BATCH_ROWS = 256
 _BATCH_CELLS = 4_000_000
 _PARSE_ERRORS = (pl.exceptions.ComputeError, pl.exceptions.SchemaError)
@@ -36,17 +33,10 @@ _TRIES = 3
 
 
 @dataclass(frozen=True, slots=True)
-class _Remarked:
-    words: tuple[str, ...] = ()
-    remarks: tuple[str, ...] = ()
-
-
-@dataclass(frozen=True, slots=True)
 class _Parsed:
     frame: pl.LazyFrame
     rows: int
-    words: tuple[str, ...] = ()
-    remarks: tuple[str, ...] = ()
+    told: Told
     whole: pl.DataFrame | None = None
 
 
@@ -94,10 +84,10 @@ def _read(path: Path, recognised: Recognised, plan: Plan, text: Text, spool: Spo
         rows=parsed.rows,
         held=spool is None,
         loaded=spool is None,
-        remarks=(*text.remarks, *_layout_remarks(layout), *parsed.remarks),
+        remarks=(*text.remarks, *_layout_remarks(layout), *parsed.told.remarks),
         decimal_comma=layout.decimal_comma,
         units=layout.header.units,
-        dialect=", ".join((*layout.words_of(), *text.words, *parsed.words)),
+        dialect=", ".join((*layout.words_of(), *text.words, *parsed.told.words)),
         whole=parsed.whole,
         spool=spool,
     )
@@ -125,9 +115,8 @@ def _parse(source: Path | bytes, layout: Layout, spool: Spool | None) -> _Parsed
         return _spooled(source, layout, columns, spool)
     frame, long_rows = _frame(source, layout, columns, pl.LazyFrame.collect)
     irregular = long_rows or layout.drop_comments or frame.to_series(-1).null_count() > 0
-    if irregular:
-        return _without_sums(*_without_other_rows(frame, source, layout))
-    return _without_sums(frame, _Remarked())
+    frame, rows, told = only_readings(frame, len(frame), source, layout, irregular=irregular)
+    return _Parsed(frame.lazy(), rows, told, frame)
 
 
 def _spooled(source: Path | bytes, layout: Layout, columns: Sequence[str], spool: Spool) -> _Parsed:
@@ -145,19 +134,10 @@ def _spooled(source: Path | bytes, layout: Layout, columns: Sequence[str], spool
         return pl.scan_ipc(kept, glob=False)
 
     frame, long_rows = _frame(source, layout, columns, write)
-    blank = pl.all_horizontal(pl.all().is_null())
-    last = pl.col(columns[-1]).is_null()
-    rows, blanks, short = (
-        frame.select(pl.len(), blank.sum().alias("b"), (last & ~blank).sum().alias("s")).collect().row(0)
-    )
-    remarks = (
-        [f"{blanks:,} blank line{'s were' if blanks > 1 else ' was'} left out."] if blanks and len(columns) > 1 else []
-    )
-    remarks += [f"{short:,} rows have no last cell: absent cells are missing readings."] if short else []
-    remarks += ["Some rows have more cells than the header: the extra cells were ignored."] if long_rows else []
-    if blanks and len(columns) > 1:
-        frame, rows = frame.filter(~blank), rows - blanks
-    return _Parsed(frame, rows, (), tuple(remarks))
+    rows, absent = frame.select(pl.len(), pl.col(columns[-1]).null_count().alias("absent")).collect().row(0)
+    irregular = long_rows or layout.drop_comments or absent > 0
+    frame, rows, told = only_readings(frame, rows, source, layout, irregular=irregular)
+    return _Parsed(frame, rows, told)
 
 
 def _frame(
@@ -217,28 +197,6 @@ def _scan(
         missing_columns="insert",
         glob=False,
     )
-
-
-def _without_other_rows(frame: pl.DataFrame, source: Path | bytes, layout: Layout) -> tuple[pl.DataFrame, _Remarked]:
-    """The frame without blank lines, comments and footers."""
-    widths = row_widths(source, layout, len(frame))
-    left_out = widths.left_out()
-    if left_out.any() and len(left_out) == len(frame):
-        frame = frame.filter(pl.Series(~left_out))
-    count = int(widths.footers.sum())
-    words = [f"{count} footer line{'s' if count > 1 else ''}"] if count else []
-    return frame, _Remarked(tuple(words), tuple(widths.remarks()))
-
-
-def _without_sums(frame: pl.DataFrame, said: _Remarked) -> _Parsed:
-    """The frame without last rows that sum up the ones above, which are no readings."""
-    first = frame.to_series(0)
-    if first.dtype == pl.String and frame.width > 1 and (sums := last_rows_sum_up(first)).any():
-        named = ", ".join(repr(visible(cell)) for cell in first.filter(pl.Series(sums)).head(3))
-        count = int(np.count_nonzero(sums))
-        remark = f"{count} last row{'s' if count > 1 else ''} ({named}) sum up the others: left out."
-        frame, said = frame.filter(pl.Series(~sums)), replace(said, remarks=(*said.remarks, remark))
-    return _Parsed(frame.lazy(), len(frame), said.words, said.remarks, frame)
 
 
 def _layout_remarks(layout: Layout) -> Iterator[str]:

@@ -37,22 +37,34 @@ def readings_of(table: Table) -> list[list[float]]:
     return rows
 
 
-@pytest.mark.parametrize("change", ["none", "words", "gzip", "zstd", "utf-16", "decimal comma", "blanks"])
+LAST = {
+    "footer": "\nrun ended,by hand\n",
+    "sums": "\nMean,1,2,3,4,5\nMittelwert:,1,2,3,4,5\n",
+    "ragged": "\n1,2\n\n4,5,6,7,8,9,10\n",
+    "comments": "# stopped\n1,2,3,4,5,6\n",
+}
+
+
+@pytest.mark.parametrize("change", ["none", "words", "gzip", "zstd", "utf-16", "decimal comma", "blanks", *LAST])
 def test_a_text_too_large_for_memory_reads_as_one_that_is_held(tmp_path: Path, temporary: Path, change: str) -> None:
     path = tmp_path / ("t.csv.gz" if change == "gzip" else "t.csv")
     text = FRAME.write_csv(separator={"decimal comma": ";", "blanks": " "}.get(change, ","))
     if change == "words":
         text = text.replace("\n", "\nOVER,1,2,3,4,5\n", 3000).replace("OVER,1,2,3,4,5\n", "", 2990) + "1,2,<3,4,5,6\n"
     text = text.replace(".", ",") if change == "decimal comma" else text
+    text += LAST.get(change, "")
+    text = "# rig 3\n" + text if change == "comments" else text
     content = text.encode("utf-16" if change == "utf-16" else "utf-8")
     path.write_bytes(gzip.compress(content) if change == "gzip" else content)
     if change == "zstd":
         FRAME.write_csv(path, compression="zstd", check_extension=False)
-    held = open_table(path, Plan())
-    spooled = open_table(path, Plan(), held_bytes=0)
+    plan = Plan(comment="#" if change == "comments" else "")
+    held = open_table(path, plan)
+    spooled = open_table(path, plan, held_bytes=0)
     assert_array_equal(readings_of(spooled), readings_of(held))
     assert (spooled.facts.channels, spooled.facts.rows) == (held.facts.channels, held.facts.rows)
-    assert spooled.facts.remarks == held.facts.remarks
+    assert (spooled.facts.remarks, spooled.facts.dialect) == (held.facts.remarks, held.facts.dialect)
+    assert held.facts.rows == len(FRAME) + {"words": 11, "ragged": 2, "comments": 1}.get(change, 0)
     assert list(temporary.glob("screener-*/*"))
     del spooled
     assert not list(temporary.glob("screener-*/*"))

@@ -149,6 +149,24 @@ CASES = {
     "blank_lines.csv": Case("\n\np,q\n\n" + rows().replace("\n", "\n\n")),
     "ragged.csv": Case("p,q\n1.5,7\n2.25\n-3,12,5\n40,7.5\n2.5,9\n", {"p": [*P], "q": [7, None, 12, 7.5, 9]}),
     "footer.csv": Case(TEXT + "\nEnd of record\nchecked by MW\n", dialect="comma, 2 footer lines"),
+    "last_cell_never_written.txt": Case(
+        "p\tq\tnotes\n" + rows("\t", comma=True), dialect="tab, decimal comma", aside=("notes",)
+    ),
+    "sums_below_in_german.csv": Case(
+        "Zeit;p;q;\ns;bar;N;\n"
+        + "".join(f"{k**2},5;{row};\n" for k, row in enumerate(rows(";", comma=True).split()))
+        + "\nMittelwert;8,65;7,125;\nSumme:;43,25;35,625;\nEnde der Messung\n",
+        {"Zeit": [0.5, 1.5, 4.5, 9.5, 16.5], **CHANNELS},
+        units={"p": "bar"},
+        dialect="semicolon, decimal comma, units in line 2, 1 footer line",
+        aside=("column 4",),
+        remark="2 last rows ('Mittelwert', 'Summe:') sum up the others",
+    ),
+    "empty_column_beside_words.csv": Case(
+        "p,q,r\n1.5,7,\nOVER,0.125,\n-3,12,\n40,7.5,\n2.5,9,\n",
+        {"p": [1.5, None, -3.0, 40.0, 2.5], "q": [*Q]},
+        aside=("r",),
+    ),
     "sums_below.csv": Case(
         "sample,p,q\n"
         + "".join(f"s{k},{row}\n" for k, row in enumerate(rows().split()))
