@@ -43,13 +43,14 @@ def _scored(
     table: Table, plan: Plan, run_path: Path | None, executor: Executor, jobs: int, cancelled: Callable[[], bool]
 ) -> Iterator[Event]:
     with run_for(table.facts, plan, run_path) as run:
-        done = run.done()
-        yield TableOpened(table.facts, plan, run.path, sum(span.stop - span.first for span in done))
+        done = {position for span in run.done() for position in range(span.first, span.stop)}
+        yield TableOpened(table.facts, plan, run.path, len(done))
         nulls = yield from nulls_for(plan.positions, table.facts.rows, jobs, cancelled)
         if nulls is None:
             yield RunFinished(cancelled=True, seconds=0.0)
             return
-        todo = [span for span in spans(table.facts) if span not in done]
+        # Another version may have cut the channels elsewhere.
+        todo = [span for span in spans(table.facts) if not done.issuperset(range(span.first, span.stop))]
         ahead = blocks_at_once(jobs, block_bytes(table.facts), machine_memory())
         for event in screen(table, plan, nulls, spans=todo, executor=executor, ahead=ahead, cancelled=cancelled):
             if isinstance(event, BlockScored):

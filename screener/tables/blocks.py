@@ -4,18 +4,30 @@ import os
 
 from screener.records import Span, TableFacts
 
-BLOCK_BYTES = 4_000_000
+FIRST_BYTES = 4_000_000
+"""The first blocks are small, so that the first rows come soon, and the last ones, so that no thread waits long."""
+GROWN = 4
+"""Times the first block that others may hold: what scoring costs a block is shared by more channels."""
+SHARE = 4
+"""Blocks that what is left is cut into at the least."""
 _READING_BYTES = 8
 
 
-def spans(facts: TableFacts, block_bytes: int = BLOCK_BYTES) -> list[Span]:
+def spans(facts: TableFacts, first_bytes: int = FIRST_BYTES) -> list[Span]:
     """Spans that cover every channel once, in order; the same table shape always gives the same spans.
 
-    A span holds at least one channel, so with many rows a block is larger than `block_bytes`.
+    A span holds at least one channel, so with many rows a block is larger than `first_bytes`.
     """
-    count = len(facts.channels)
-    width = max(1, block_bytes // (_READING_BYTES * max(1, facts.rows)))
-    return [Span(first, min(first + width, count)) for first in range(0, count, width)]
+    count, channel_bytes = len(facts.channels), _READING_BYTES * max(1, facts.rows)
+    least, most = (max(1, size // channel_bytes) for size in (first_bytes, GROWN * first_bytes))
+    width = least
+    cut: list[Span] = []
+    first = 0
+    while first < count:
+        cut.append(Span(first, min(first + width, count)))
+        first += width
+        width = max(least, min(2 * width, most, (count - first) // SHARE))
+    return cut
 
 
 def machine_memory() -> int:

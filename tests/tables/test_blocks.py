@@ -1,5 +1,6 @@
 """How channels are cut into blocks."""
 
+from itertools import pairwise
 from pathlib import Path
 
 import pytest
@@ -23,5 +24,15 @@ def test_spans_cover_every_channel_once_and_in_order(rows: int, channels: int, b
 
 
 @pytest.mark.parametrize(("rows", "width"), [(4_000, 125), (10_000, 50), (500_000, 1), (5_000_000, 1)])
-def test_a_block_holds_about_four_megabytes_and_at_least_one_channel(rows: int, width: int) -> None:
+def test_the_first_block_holds_about_four_megabytes_and_at_least_one_channel(rows: int, width: int) -> None:
     assert spans(facts(rows, 240))[0] == Span(0, width)
+
+
+@given(rows=st.integers(0, 10**7), channels=st.integers(0, 3000))
+def test_blocks_grow_to_sixteen_megabytes_and_shrink_towards_the_end(rows: int, channels: int) -> None:
+    cut = spans(facts(rows, channels))
+    widths = [span.stop - span.first for span in cut]
+    assert all(width <= 2 * before for before, width in pairwise(widths))
+    assert max(widths, default=0) * rows * 8 <= max(16_000_000, 8 * rows)
+    # Behind any block but the last ones there is work for three more threads.
+    assert all(span.stop - span.first <= max(widths[0], (channels - span.first) // 4) for span in cut)
