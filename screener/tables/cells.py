@@ -1,7 +1,7 @@
 """What a text cell means: a number, a missing reading, or a word."""
 
 import re
-from collections.abc import Iterator, Mapping, Sequence
+from collections.abc import Callable, Iterator, Mapping, Sequence
 from dataclasses import dataclass
 
 import polars as pl
@@ -125,12 +125,14 @@ def refused_cells(
     return pl.concat(counted)
 
 
-def may_hold_numbers(frame: pl.LazyFrame, columns: Sequence[str], missing: Sequence[str], pattern: str) -> list[str]:
-    """The columns in which half of the first cells that mean something fit the pattern."""
+def may_hold_numbers(
+    frame: pl.LazyFrame, columns: Sequence[str], missing: Sequence[str], fits: Callable[[pl.Expr], pl.Expr]
+) -> list[str]:
+    """The columns in which half of the first cells that mean something may be numbers, as `fits` says."""
     if not columns:
         return []
     first = frame.select(meaningful(column, missing) for column in columns).head(_GLANCED_ROWS)
-    fitting = pl.all().str.contains(pattern)
+    fitting = fits(pl.all())
     shares = pl.collect_all([first.select(fitting.sum()), first.select(pl.all().count())])
     return [column for column in columns if 2 * shares[0][column].item() >= max(1, shares[1][column].item())]
 

@@ -59,7 +59,8 @@ def utf8_text(path: Path, packing: Packing, *, given: str = "", keep: Sink = in_
         head = list(_first_lines(file))
         sample = b"".join(head)
         encoding = _known(given, sample) if given else _encoding(sample)
-        returns = _LONE_RETURN.search(sample) is not None
+        text = sample.decode(encoding, errors="replace") if encoding.startswith("utf-") else ""
+        returns = _LONE_RETURN.search(text.encode(errors="replace") if text else sample) is not None
         words = [*((_NAMES.get(encoding, encoding),) if encoding != "utf-8" else ())]
         words += ["lines end in carriage returns"] if returns else []
         if encoding == "utf-8" and not returns:

@@ -128,6 +128,11 @@ def forms_of(refused: pl.DataFrame, numbers: Mapping[str, int], *, decimal_comma
     return Forms(used, _counts(undefined), *limits, known.drop("limit", "value"), words)
 
 
+def may_be_number(cell: pl.Expr) -> pl.Expr:
+    """Whether text cells look like numbers in some form."""
+    return _cleaned(cell).str.contains(CELL)
+
+
 def unusual(cell: pl.Expr, form: Form) -> pl.Expr:
     """The text cells as numbers, null where they are none even in this form."""
     bare = _cleaned(cell).str.replace(r"^[<>≤≥]=?\s*", "")

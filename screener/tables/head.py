@@ -24,7 +24,8 @@ _JUDGED_CELLS = 60
 _BLANKS_COUNT = 0.6
 """Blanks separate cells only where nothing else does: they also stand within names and before units."""
 _VALUE = re.compile(
-    r"""[<>≤≥]?=?\s*[+-]?(?:\d[\d.,'’]*|[.,]\d+)(?:[eEdD][+-]?\d+)?\s*(?:%|[°µΩ]?[A-Za-z]{1,3})?
+    r"""[<>≤≥]?=?\s*[+−－＋-]?(?:\d[\d.,．，'’\u00a0\u2007\u202f]*(?:[ ]\d{3})*(?:[.,]\d+)?|[.,]\d+)
+    (?:[eEdD][+-]?\d+)?\s*(?:%|[°µΩ]?[A-Za-z]{1,3})?
     |\d{1,4}[-/.]\d{1,2}[-/.]\d{1,4}(?:[ T]+\d{1,2}:\d{2}.*)?|\d{1,2}:\d{2}(?::\d{2}.*)?""",
     re.VERBOSE,
 )

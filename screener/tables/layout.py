@@ -1,5 +1,6 @@
 """How a text table is laid out: its separator, its header and what its first rows hold."""
 
+import re
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass
 
@@ -14,6 +15,8 @@ _SAMPLED_ROWS = 20
 _SAMPLED_CELLS = 10_000
 _FEWEST_ROWS = 4
 _VOTING_CELLS = 200
+_TOLD_SEPARATOR = re.compile(r"""["']?sep=(?P<sign>[^\w\s"']|\t)["']?[,;\t]*\s*""", re.IGNORECASE)
+"""A first line for spreadsheets that says what separates the cells."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -61,7 +64,10 @@ def layout_of(lines: Sequence[str], plan: Plan | None = None, *, prefer_tab: boo
     What the plan says about it is taken as said. Raises PlanError when the plan says something impossible.
     """
     plan = plan or Plan()
-    separator = _given_separator(plan.separator) or separator_of(lines, prefer_tab=prefer_tab)
+    told = _TOLD_SEPARATOR.fullmatch(lines[0])
+    lines = ["", *lines[1:]] if told else lines
+    said = plan.separator or (told["sign"] if told else "")
+    separator = _given_separator(said) or separator_of(lines, prefer_tab=prefer_tab)
     rows = list(head_rows(lines, separator))
     header = header_of(rows, header_line=plan.header_line, units_line=plan.units_line, comment=plan.comment)
     sampled = list(_sample(rows, header))

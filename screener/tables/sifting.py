@@ -20,7 +20,7 @@ from screener.tables.cells import (
 from screener.tables.chosen import Choice
 from screener.tables.codes import proposed_codes
 from screener.tables.columns import reading, reason_for_type, unfit
-from screener.tables.forms import CELL, Form, Forms, forms_of, unusual
+from screener.tables.forms import Form, Forms, forms_of, may_be_number, unusual
 from screener.tables.limits import Limit
 from screener.tables.raw import RawTable
 
@@ -149,7 +149,7 @@ def _mixed(frame: pl.LazyFrame, counts: Mapping[str, TextColumn], missing: Seque
     """The columns with cells that are no plain number, but may be one in another form, or words among numbers."""
     unclear = {column: count for column, count in counts.items() if count.numbers < count.cells}
     few = [column for column, count in unclear.items() if 2 * count.numbers < count.cells and not count.dates]
-    odd = set(may_hold_numbers(frame, few, missing, CELL))
+    odd = set(may_hold_numbers(frame, few, missing, may_be_number))
     return [c for c, count in unclear.items() if 2 * count.numbers >= count.cells or c in odd]
 
 

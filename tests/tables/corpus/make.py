@@ -50,8 +50,17 @@ CASES = {
     "one_blank.dat": Case("p q\n" + rows(" "), dialect="blanks"),
     "aligned_blanks.dat": Case("   p      q\n" + "".join(f"{p:8} {q:9}\n" for p, q in zip(P, Q, strict=True))),
     "blanks_and_quotes.dat": Case('"p in" q\n' + rows("  "), {"p in": [*P], "q": [*Q]}),
+    "separator_told.csv": Case("sep=;\np;q\n" + rows(";"), dialect="semicolon, names in line 2"),
+    "separator_told_quoted.csv": Case('"sep=|"\np,x|q\n' + rows("|"), {"p,x": [*P], "q": [*Q]}),
     "tabs_as_said.txt": Case("a,b\tq\n" + rows("\t"), {"a,b": [*P], "q": [*Q]}, plan={"separator": "tab"}),
     # decimals and thousands
+    "thousands_and_signs.csv": Case(
+        "p;q\n−1 234.5;+1\n−12 000.0;+3\n−1 234 567.0;+2\n", {"p": [-1234.5, -12000, -1234567], "q": [1, 3, 2]}
+    ),
+    "full_width.csv": Case(
+        "p;q\n１．５;７\n２．２５;０．１２５\n－３;１２\n４０;７．５\n２．５;９\n",
+        remark="'１．５' in p, q: an unusual form",
+    ),
     "decimal_comma.csv": Case(GERMAN, dialect="semicolon, decimal comma"),
     "decimal_comma_tab.txt": Case("p\tq\n" + rows("\t", comma=True), dialect="tab, decimal comma"),
     "decimal_comma_quoted.csv": Case('p,q\n"1,5","7,0"\n"2,25","0,125"\n"-3","12"\n"40","7,5"\n"2,5","9"\n'),
