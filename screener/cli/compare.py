@@ -35,7 +35,7 @@ def command(
 
     Channels are matched by name. A channel has changed when its r differs by more than chance explains: the difference
     against its standard error in both runs, adjusted for the number of channels (Benjamini-Hochberg), below the alpha
-    of NEW. Readings are taken to be independent: of channels that follow themselves in time, too many have changed.
+    of NEW. The error of a channel that follows itself in time is that of its effective number of readings.
     """
     from screener.cli.output import on_terminal, path_text, put, tell
     from screener.runs import RunFile, compared, export_comparison

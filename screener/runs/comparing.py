@@ -2,7 +2,8 @@
 
 A channel has changed when its r differs by more than chance explains: the difference is held against its standard error
 (`stats.r_error`) in both runs, and the p of all channels are adjusted by Benjamini and Hochberg; changed means q below
-the alpha of the new run. Readings are taken to be independent of each other and of the other run.
+the alpha of the new run. A channel that follows itself in time scatters as its effective number of readings says; the
+readings of the two runs are taken to be independent of each other.
 """
 
 from __future__ import annotations
@@ -18,7 +19,7 @@ from screener.stats.families import Axis, family_named
 from screener.stats.many import adjusted_p
 from screener.stats.points import kept_ranks
 from screener.stats.positions import plotting_positions
-from screener.stats.r_error import change_p, r_error
+from screener.stats.r_error import change_p, r_error, worth
 
 if TYPE_CHECKING:
     from screener.records import FloatArray
@@ -59,7 +60,19 @@ COMPARED: dict[str, type[int] | type[float] | type[str]] = {
 }
 """The columns of a comparison; new ones are appended."""
 
-_TAKEN = ("channel", "verdict", "family", "n", "r", "critical_r", "p", "decision", "position")
+_TAKEN = (
+    "channel",
+    "verdict",
+    "family",
+    "n",
+    "r",
+    "critical_r",
+    "plain_critical_r",
+    "n_effective",
+    "p",
+    "decision",
+    "position",
+)
 
 
 def compared(before: RunFile, now: RunFile) -> pl.DataFrame:
@@ -130,7 +143,12 @@ def _error(run: RunFile, row: dict[str, Any]) -> float:
     family = family_named(row["family"])
     readings = np.log(points) if family.axis is Axis.LOG else points
     standard = family.quantile(plotting_positions(n, run.plan.positions)[ranks], *_shapes(run, row, family.shape_count))
-    return r_error(readings, ranks, n, standard, row["critical_r"])
+    effective = row["n_effective"] or n
+    off = 1.0 - row["critical_r"]
+    if row["critical_r"] == row["plain_critical_r"]:
+        # Not matched: under dependence r scatters as if there were as few readings as are effective.
+        off *= n / effective
+    return r_error(readings, ranks, n, standard, 1.0 - off, worth(n, effective))
 
 
 def _shapes(run: RunFile, row: dict[str, Any], count: int) -> tuple[float, ...]:
