@@ -58,7 +58,7 @@ def command(
 def lines(rows: Any) -> list[str]:
     """The rows as columns of text; nothing when there are none."""
     from screener.cli.report import aligned
-    from screener.ui.comparison import CELLS
+    from screener.ui.screens.comparison import CELLS
 
     cells = [tuple(text(row) for _, _, text in CELLS) for row in rows]
     return [line.rstrip() for line in aligned([title for title, _, _ in CELLS], cells)] if cells else []

@@ -6,11 +6,13 @@ import polars as pl
 import pytest
 from made_run import made_facts, made_run, made_scores
 from screen_text import screen_lines, screen_text, shows
+from textual.binding import Binding
 
 from screener.records import Plan
 from screener.runs import RunFile, compared
 from screener.ui.abilities import Abilities
 from screener.ui.comparison import ComparisonApp
+from screener.ui.screens.comparison import ComparisonScreen
 
 
 @pytest.fixture
@@ -71,3 +73,30 @@ async def test_names_are_shown_and_never_acted_upon(rows: pl.DataFrame, *, unico
         assert all(line.isprintable() for line in screen_lines(pilot.app))
         await pilot.press("q")
     assert pilot.app.return_value == 0
+
+
+async def test_every_action_is_in_the_palette_and_runs_from_there(rows: pl.DataFrame) -> None:
+    app = app_on(rows)
+    async with app.run_test(size=(80, 24)) as pilot:
+        await shows(pilot, "heaviest")
+        offered = {command.title for command in app.get_system_commands(app.screen)}
+        bound = {binding.description for binding in ComparisonScreen.BINDINGS if isinstance(binding, Binding)}
+        assert bound <= offered
+        await pilot.press("ctrl+p")
+        # Letters that are keys of the screen are typed here.
+        await pilot.press(*"all channels")
+        await shows(pilot, "All channels, or only changes")
+        await pilot.press("enter", "enter")
+        await shows(pilot, "1 of 53 channels")
+
+
+async def test_help_names_every_key_and_says_how_a_change_is_judged(rows: pl.DataFrame) -> None:
+    async with app_on(rows).run_test(size=(80, 40)) as pilot:
+        await shows(pilot, "heaviest")
+        await pilot.press("question_mark")
+        text = await shows(pilot, "How a change is judged")
+        assert "standard error" in " ".join(text.split())
+        for keys in ("1 to 6", "S  ", "f  ", "a  ", "e  ", "Ctrl+P", "Ctrl+Z", "q  Ctrl+C"):
+            assert f"\n   {keys}" in text
+        await pilot.press("escape")
+        await shows(pilot, "heaviest changes first")
