@@ -27,6 +27,8 @@ RUN_SUFFIX = ".run"
 def is_run(path: Path) -> bool:
     """Whether the path holds a run file, of any schema."""
     try:
+        if not path.is_file():  # opening a pipe would wait, and take from it
+            return False
         with path.open("rb") as file:
             if file.read(len(STORE_HEAD)) != STORE_HEAD:
                 return False

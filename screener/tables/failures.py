@@ -8,7 +8,7 @@ from pathlib import Path
 
 import polars as pl
 
-from screener.errors import TableError
+from screener.errors import PlanError, TableError
 from screener.tables.formats import Kind
 from screener.tables.names import visible
 
@@ -26,6 +26,19 @@ def readable(path: Path, what: str) -> Iterator[None]:
         raise TableError(f"Couldn't read {str(path)!r}: the file is damaged or cut off.") from error
     except (OSError, csv.Error, pl.exceptions.PolarsError, pl.exceptions.PanicException) as error:
         raise TableError(f"Couldn't read {str(path)!r} as {what}: {_said(error, what)}") from error
+
+
+@contextmanager
+def named(copy: Path, shown: str) -> Iterator[None]:
+    """Turns the name of a temporary copy, in sentences about it, into that of what was copied.
+
+    Raises:
+        TableError, PlanError: something inside did, about the copy.
+    """
+    try:
+        yield
+    except (TableError, PlanError) as error:
+        raise type(error)(str(error).replace(repr(str(copy)), shown).replace(repr(copy.name), shown)) from error
 
 
 def _said(error: BaseException, what: str) -> str:

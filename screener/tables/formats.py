@@ -119,7 +119,8 @@ def _opened_head(path: Path) -> bytes:
     try:
         if path.exists() and not path.is_file():
             kind = "a directory" if path.is_dir() else "not a regular file"
-            raise TableError(f"Couldn't read {shown}: it is {kind}. Name one table file.")
+            way_out = "Name one table file, or send it to standard input, as in `... | screener -`."
+            raise TableError(f"Couldn't read {shown}: it is {kind}. {way_out}")
         with path.open("rb") as file:
             return file.read(_HEAD_BYTES)
     except FileNotFoundError as error:

@@ -10,7 +10,7 @@ import polars as pl
 
 from screener.errors import TableError
 from screener.records import Plan
-from screener.tables.failures import readable
+from screener.tables.failures import named, readable
 from screener.tables.fingerprint import fingerprint
 from screener.tables.formats import Kind, Recognised, recognise
 from screener.tables.instruments import read_hdf5, read_matlab, read_mdf, read_tdms
@@ -123,5 +123,7 @@ def load_address(address: str, plan: Plan, held_bytes: int) -> Loaded:
             return Loaded(as_columns(raw, plan.shape, Path(address)), f"address:{raw.rows}:{len(raw.names)}:{rows}")
         spool = Spool()
         lines = pl.scan_lines(address, glob=False).collect().to_series()
-        loaded = load_file(spool.keep(f"{line}\n".encode() for line in lines), plan, held_bytes)
+        copy = spool.keep(f"{line}\n".encode() for line in lines)
+        with named(copy, repr(address)):
+            loaded = load_file(copy, plan, held_bytes)
         return replace(loaded, raw=replace(loaded.raw, spool=loaded.raw.spool or spool))

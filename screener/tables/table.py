@@ -1,6 +1,7 @@
 """Opening a measurement table and reading its channels block by block."""
 
 from collections.abc import Mapping, Sequence
+from contextlib import nullcontext
 from dataclasses import dataclass, field, replace
 from pathlib import Path
 
@@ -13,15 +14,15 @@ from screener.records import Block, Channel, Plan, SetAside, Span, TableFacts
 from screener.tables.blocks import machine_memory
 from screener.tables.chosen import NOT_ASKED, Choice, choose
 from screener.tables.columns import reading
-from screener.tables.failures import readable
+from screener.tables.failures import named, readable
 from screener.tables.fingerprint import joined
 from screener.tables.joining import join
 from screener.tables.limits import Limit, known_beyond
-from screener.tables.loading import FileState, load_address, load_file
+from screener.tables.loading import FileState, Loaded, load_address, load_file
 from screener.tables.names import Label, labels, shortlist
 from screener.tables.raw import RawTable
 from screener.tables.sifting import Sifted, sift
-from screener.tables.sources import source_named
+from screener.tables.sources import Source, source_named
 from screener.tables.spool import Spool
 
 HELD_BYTES = 2 << 30
@@ -80,7 +81,7 @@ def open_table(path: Path, plan: Plan, *, held_bytes: int = HELD_BYTES, most_byt
     if source.address:
         loaded = [load_address(source.address, plan, held_bytes)]
     else:
-        loaded = [load_file(file, plan, held_bytes // len(source.files)) for file in source.files]
+        loaded = [_loaded(file, source, plan, held_bytes // len(source.files)) for file in source.files]
     names = [file.name for file in source.files]
     raw, files = join([one.raw for one in loaded], names)
     if not raw.rows:
@@ -95,6 +96,11 @@ def open_table(path: Path, plan: Plan, *, held_bytes: int = HELD_BYTES, most_byt
     states = () if raw.held else tuple(one.state for one in loaded if one.state)
     kept = (source.spool, *(one.raw.spool for one in loaded))
     return Table(facts, sifted.columns, held, sifted.frame, states, kept, sifted.below, sifted.above)
+
+
+def _loaded(file: Path, source: Source, plan: Plan, held_bytes: int) -> Loaded:
+    with named(file, "standard input") if source.spool else nullcontext():
+        return load_file(file, plan, held_bytes)
 
 
 def _check_size(path: Path, rows: int, most_bytes: int) -> None:

@@ -1,5 +1,6 @@
 """Whatever a user gets wrong ends in one sentence and the documented exit code."""
 
+import os
 import shutil
 import sqlite3
 from collections.abc import Callable
@@ -191,3 +192,8 @@ def test_control_characters_of_names_and_paths_never_reach_the_terminal(command:
     assert set(outcome.out + outcome.err) & {"\x1b", "\x9b", "\x07"} == set()
     again = screener("score", path, "--\x1b[31m")
     assert (again.code, "\x1b" in again.err) == (2, False)
+
+
+def test_a_pipe_is_refused_without_waiting_for_what_it_brings() -> None:
+    os.mkfifo("pipe")
+    assert "send it to standard input" in assert_refused(screener("score", "pipe"), 3)

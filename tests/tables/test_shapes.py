@@ -171,6 +171,20 @@ def test_standard_input_is_read_like_a_file(monkeypatch: pytest.MonkeyPatch) -> 
     assert table.facts.path == Path("stdin")
 
 
+@pytest.mark.parametrize("sent", ["", "p,q\n", "words only\n"])
+def test_what_is_wrong_with_standard_input_is_said_of_it(monkeypatch: pytest.MonkeyPatch, sent: str) -> None:
+    monkeypatch.setattr(sys, "stdin", io.TextIOWrapper(io.BytesIO(sent.encode())))
+    with pytest.raises(TableError, match=r"standard input|'stdin'") as raised:
+        open_table(Path("-"), Plan())
+    assert "screener-" not in str(raised.value)
+
+
+def test_what_is_wrong_with_a_table_at_an_address_is_said_of_the_address(tmp_path: Path, address: str) -> None:
+    (tmp_path / "t.csv").write_text("p,q\n")
+    with pytest.raises(TableError, match=rf"^Couldn't read '{address}/t.csv': it has a header but no readings"):
+        open_table(Path(f"{address}/t.csv"), Plan())
+
+
 def _columns() -> str:
     return "".join(f"{p},{q}\n" for p, q in zip(P, Q, strict=True))
 
