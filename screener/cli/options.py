@@ -42,7 +42,12 @@ PLAN_OPTIONS = (
         show_default=True,
         help="Plotting positions: a rule's name or a number.",
     ),
-    click.option("--channels", multiple=True, metavar="GLOB", help="Screen only the columns of these names."),
+    click.option(
+        "--channels",
+        multiple=True,
+        metavar="GLOB",
+        help="Screen only the columns of these names, also such as look like counters, times or codes.",
+    ),
     click.option("--skip", multiple=True, metavar="GLOB", help="Leave the columns of these names aside."),
     click.option("--missing", multiple=True, metavar="TOKEN", help="A cell text that means a missing reading."),
     click.option(

@@ -18,7 +18,7 @@ class Choice:
     reasons: dict[int, str]
     """Column position: why the plan leaves it aside."""
     by_name: frozenset[int]
-    """Columns asked for by their very name; no guess about their meaning sets them aside."""
+    """Columns asked for by a name, or a pattern with some of it; no guess about their meaning sets them aside."""
     remarks: tuple[str, ...]
 
 
@@ -36,7 +36,8 @@ def choose(names: Sequence[str], plan: Plan) -> Choice:
             reasons[at] = f"left aside as asked (skip {pattern!r})"
     if len(reasons) == len(names):
         raise PlanError(f"Skipping {_quoted(plan.skip)} leaves no column. The table has {shortlist(names, 5)}.")
-    by_name = frozenset(at for at, name in enumerate(names) if name in plan.channels)
+    named = [pattern for pattern in plan.channels if pattern.strip("*?")]
+    by_name = frozenset(at for at, name in enumerate(names) if _matched(name, named))
     expected = (text.rpartition("=")[0] for text in plan.expect)
     asked = (*plan.channels, *plan.skip, *expected)
     unmatched = [pattern for pattern in asked if not any(_fits(name, pattern) for name in names)]

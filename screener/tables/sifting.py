@@ -25,7 +25,7 @@ from screener.tables.limits import Limit
 from screener.tables.raw import RawTable
 
 GUESSES = ("a row counter", "time stamps", "identifiers", "codes", "flags")
-"""How the reasons begin that rest on a guess; a column asked for by its very name is kept all the same."""
+"""How the reasons begin that rest on a guess; a column asked for by a name or pattern is kept all the same."""
 
 
 @dataclass(frozen=True, slots=True)

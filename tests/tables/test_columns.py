@@ -102,10 +102,12 @@ def test_true_and_false_written_as_text(open_text: OpenText) -> None:
     assert open_text("ok,a\ntrue,1\nFalse,2.5\nNA,3\n").reasons == {"ok": "true or false, not a measurement"}
 
 
-def test_a_counter_or_a_time_asked_for_by_its_name_is_a_channel(tmp_path: Path) -> None:
+def test_a_counter_or_a_time_asked_for_by_a_name_or_pattern_is_a_channel(tmp_path: Path) -> None:
     counter = pl.Series("id", range(ROWS))
-    assert reason(tmp_path, counter, Plan(channels=("id", "beside"))) == ""
-    assert reason(tmp_path, counter, Plan(channels=("i*", "beside"))).startswith("a row counter")
+    for pattern in ("id", "i*", "?d"):
+        assert reason(tmp_path, counter, Plan(channels=(pattern, "beside"))) == ""
+    for every in ("*", "??", "**"):
+        assert reason(tmp_path, counter, Plan(channels=(every, "beside"))).startswith("a row counter")
 
 
 def test_patterns_that_match_only_columns_set_aside_are_refused_with_the_reason(tmp_path: Path) -> None:
