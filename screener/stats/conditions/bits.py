@@ -74,6 +74,17 @@ def run_of_eight(bits: Bits) -> BoolArray:
     return np.asarray(np.any(bits != 0, axis=1), dtype=np.bool_)
 
 
+def beginnings(bits: Bits, most: int) -> IntArray:
+    """From how many bits of each channel on 1, 2, ..., most bits are set, int64[C, most]."""
+    found = np.zeros((bits.shape[0], most), dtype=np.int64)
+    found[:, 0] = count(bits)
+    so_far = bits
+    for length in range(1, most):
+        so_far = so_far & later(bits, length)
+        found[:, length] = count(so_far)
+    return found
+
+
 def longest_run(bits: Bits) -> IntArray:
     """Length of the longest run of set bits of each channel.
 

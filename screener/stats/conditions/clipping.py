@@ -44,8 +44,7 @@ class Clipping:
 
 def find_clipping(ordered: FloatArray, n: IntArray, lattice: Lattice, inflation: FloatArray) -> Clipping:
     """Clipping of sorted readings; inflation[C] is by how much serial dependence widens the variance of counts."""
-    at_low, beside_low = _end_counts(ordered, n, lattice, high=False)
-    at_high, beside_high = _end_counts(ordered, n, lattice, high=True)
+    (at_low, beside_low), (at_high, beside_high) = _end_counts(ordered, n, lattice)
     rounded = lattice.step > 0
     low, high = (_repeated(at, n, lattice.ties) & ~rounded for at in (at_low, at_high))
     # Beyond a high level readings come in smaller clusters than the variance of the whole record says.
@@ -61,16 +60,14 @@ def find_clipping(ordered: FloatArray, n: IntArray, lattice: Lattice, inflation:
     return Clipping(np.where(low & varied, at_low, 0), np.where(high & varied, at_high, 0), at_low, at_high)
 
 
-def _end_counts(ordered: FloatArray, n: IntArray, lattice: Lattice, *, high: bool) -> tuple[IntArray, IntArray]:
-    """Readings at an end's value, [C], and at the two lattice values inside it, [C, 2]."""
-    end = at_rank(ordered, np.maximum(n - 1, 0)[:, None] if high else np.zeros((n.size, 1), dtype=np.int64))
-    half = np.maximum(lattice.step / 2.0, noise(ordered, n))[:, None]
-    sign = -1.0 if high else 1.0
-    some = n > 0
-    limits = np.where(some[:, None], end + sign * half * np.array([1.0, 3.0, 5.0]), 0.0)
-    below = count_below(ordered, n, limits)
-    inside = n[:, None] - below if high else below
-    return inside[:, 0], np.diff(inside, axis=1)
+def _end_counts(ordered: FloatArray, n: IntArray, lattice: Lattice) -> tuple[tuple[IntArray, IntArray], ...]:
+    """For either end: readings at its value, [C], and at the two lattice values inside it, [C, 2]."""
+    half = np.maximum(lattice.step / 2.0, noise(ordered, n))[:, None] * np.array([1.0, 3.0, 5.0])
+    greatest = at_rank(ordered, np.maximum(n - 1, 0)[:, None])
+    limits = np.concatenate([ordered[:, :1] + half, greatest - half], axis=1)
+    below = count_below(ordered, n, np.where((n > 0)[:, None], limits, 0.0))
+    from_low, from_high = below[:, :3], n[:, None] - below[:, 3:]
+    return tuple((inside[:, 0], np.diff(inside, axis=1)) for inside in (from_low, from_high))
 
 
 def _repeated(at: IntArray, n: IntArray, ties: FloatArray) -> BoolArray:

@@ -16,13 +16,15 @@ def count_below(ordered: FloatArray, n: IntArray, limit: FloatArray, where: IntA
     Of the channels at `where`, int64[c], or of all.
     """
     channels = (np.arange(n.size) if where is None else where)[:, None]
-    low = np.zeros(limit.shape, dtype=np.int64)
-    high = np.broadcast_to(n[channels], limit.shape).copy()
-    for _ in range(int(np.max(high, initial=0)).bit_length()):
-        middle = (low + high) // 2
-        inside = (low < high) & (ordered[channels, np.minimum(middle, ordered.shape[1] - 1)] < limit)
-        low, high = np.where(inside, middle + 1, low), np.where(inside, high, np.maximum(middle, low))
-    return low
+    most, rows = n[channels], ordered.shape[1]
+    readings, before = ordered.ravel(), channels * rows - 1
+    found: IntArray = np.zeros(limit.shape, dtype=np.int64)
+    for power in reversed(range(int(np.max(most, initial=0)).bit_length())):
+        tried = found + (1 << power)
+        below = readings.take(before + np.minimum(tried, rows)) < limit
+        below &= tried <= most
+        found += below.astype(np.int64) << power
+    return np.asarray(found, dtype=np.int64)
 
 
 def at_rank(ordered: FloatArray, rank: IntArray) -> FloatArray:

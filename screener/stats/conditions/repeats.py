@@ -5,7 +5,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from screener.stats.conditions.counting import FloatArray, IntArray, count_below
+from screener.stats.conditions.counting import FloatArray, IntArray, at_rank, count_below
 from screener.stats.conditions.resolution import TOGETHER, Lattice, Sample
 
 BoolArray = NDArray[np.bool_]
@@ -33,14 +33,14 @@ def find_repeats(ordered: FloatArray, n: IntArray, sample: Sample, lattice: Latt
     value, count = np.where(n > 0, sample.readings[:, 0], 0.0), np.minimum(n, 1)
     beyond = np.zeros(n.size, dtype=np.int64)
     tied = np.flatnonzero(np.any(sample.tied, axis=1))
+    half = np.maximum(lattice.step / 2.0, sample.same)
     for first in range(0, tied.size, TOGETHER):
         where = tied[first : first + TOGETHER]
-        half = np.maximum(lattice.step[where] / 2.0, sample.same[where])
-        value[where] = _commonest(sample.readings[where], sample.counted[where], half)
-        limits = value[where, None] + half[:, None] * np.array([-3.0, -1.0, 1.0, 3.0])
-        cells = np.diff(count_below(ordered, n, limits, where), axis=1)
-        count[where] = cells[:, 1]
-        beyond[where] = _beyond(cells, n[where], lattice.step[where], spread[where])
+        value[where] = _commonest(sample.readings[where], sample.counted[where], half[where])
+    limits = value[tied, None] + half[tied, None] * np.array([-3.0, -1.0, 1.0, 3.0])
+    cells = np.diff(count_below(ordered, n, limits, tied), axis=1)
+    count[tied] = cells[:, 1]
+    beyond[tied] = _beyond(cells, n[tied], lattice.step[tied], spread[tied])
     return Repeats(value, count, beyond)
 
 
@@ -51,7 +51,7 @@ def _commonest(readings: FloatArray, counted: BoolArray, alike: FloatArray) -> F
     start[:, 1:] = np.where(np.diff(readings, axis=1) <= alike[:, None], 0, place[1:])
     length = np.where(counted, place - np.maximum.accumulate(start, axis=1) + 1, 0)
     last = np.argmax(length, axis=1)[:, None]
-    return np.take_along_axis(readings, last, axis=1)[:, 0]
+    return at_rank(readings, last)[:, 0]
 
 
 def _beyond(cells: IntArray, n: IntArray, step: FloatArray, spread: FloatArray) -> IntArray:

@@ -24,6 +24,8 @@ PARTS = 12
 """The smallest spacing seen may be up to so many steps."""
 OFF = 0.06
 """A reading farther than this share of the step from the lattice is off it."""
+FEW_SPACINGS = 64
+"""Spacings of most channels on a lattice, at most: there are no more among readings at even steps of rank."""
 SPACINGS_ON = 0.95
 """Share of the spacings that must be multiples of the step; by chance 0.12 would be."""
 READINGS_OFF, FEW_OFF = 0.04, 3
@@ -97,58 +99,68 @@ def _lattice_of(
 ) -> tuple[FloatArray, FloatArray]:
     """Step (0 where there is none) and anchor, by the spacings of the kept ones of the readings."""
     spacing = _spacings(readings, kept)
-    spacing[~(spacing > same[:, None])] = np.nan
-    step = _common_step(spacing)
+    ascending = np.sort(np.where(spacing > same[:, None], spacing, np.nan), axis=1)
+    count = np.count_nonzero(~np.isnan(ascending), axis=1)
+    step = np.zeros(count.size)
+    few = count <= FEW_SPACINGS
+    for rows, width in ((np.flatnonzero(few), FEW_SPACINGS), (np.flatnonzero(~few), ascending.shape[1])):
+        if rows.size:
+            step[rows] = _common_step(ascending[rows, :width], count[rows])
     anchor = _middle_kept(readings, tied)
-    off = np.sum(sampled & ~(np.abs(_from_lattice(readings, anchor, step)) <= OFF), axis=1)
-    found = (step > 8.0 * same) & (off <= np.maximum(READINGS_OFF * sampled.sum(axis=1), FEW_OFF))
+    far = sampled & ~(np.abs(_from_lattice(readings, anchor, step)) <= OFF)
+    off = np.count_nonzero(far, axis=1)
+    found = (step > 8.0 * same) & (off <= np.maximum(READINGS_OFF * np.count_nonzero(sampled, axis=1), FEW_OFF))
     return np.where(found, step, 0.0), anchor
 
 
 def _spacings(readings: FloatArray, kept: BoolArray) -> FloatArray:
     """Each kept reading less the kept one before it, float64[C, k]; NaN elsewhere and for the first."""
+    spacing = np.full(readings.shape, np.nan)
+    if np.all(kept):
+        np.subtract(readings[:, 1:], readings[:, :-1], out=spacing[:, 1:])
+        return spacing
     place = np.where(kept, np.arange(kept.shape[1]), -1)
-    before = np.maximum.accumulate(place, axis=1)
-    before = np.concatenate([np.full((kept.shape[0], 1), -1), before[:, :-1]], axis=1)
-    spacing = readings - np.take_along_axis(readings, np.maximum(before, 0), axis=1)
-    return np.where(kept & (before >= 0), spacing, np.nan)
+    before = np.maximum.accumulate(place, axis=1)[:, :-1]
+    since = readings[:, 1:] - at_rank(readings, np.maximum(before, 0))
+    spacing[:, 1:] = np.where(kept[:, 1:] & (before >= 0), since, np.nan)
+    return spacing
 
 
-def _common_step(spacing: FloatArray) -> FloatArray:
-    """The largest step of which nearly all spacings are multiples, float64[C]; 0 where there is none."""
-    small, count = _small_spacing(spacing)
+def _common_step(ascending: FloatArray, count: IntArray) -> FloatArray:
+    """The largest step of which nearly all of count[C] rising spacings are multiples, float64[C]; 0 without one."""
+    small = _small_spacing(ascending, count)
     step = np.zeros(count.size)
     left = np.flatnonzero(count > 0)
     for parts in range(1, PARTS + 1):
-        tried = spacing[left] / (small[left, None] / parts)
+        spacing = ascending[left]
+        tried = spacing / (small[left, None] / parts)
         multiple = np.rint(tried)
         on = (np.abs(tried - multiple) <= OFF) & (multiple > 0)
-        fits = np.sum(on, axis=1) >= SPACINGS_ON * count[left]
-        total, steps = np.where(on, spacing[left], 0.0).sum(axis=1), np.where(on, multiple, 0.0).sum(axis=1)
-        step[left[fits]] = total[fits] / steps[fits]
+        fits = np.count_nonzero(on, axis=1) >= SPACINGS_ON * count[left]
+        total, steps = (np.where(on[fits], values[fits], 0.0).sum(axis=1) for values in (spacing, multiple))
+        step[left[fits]] = total / steps
         left = left[~fits]
         if left.size == 0:
             break
     return step
 
 
-def _small_spacing(spacing: FloatArray) -> tuple[FloatArray, IntArray]:
-    """One of the smallest spacings of each channel, and how many spacings there are.
+def _small_spacing(ascending: FloatArray, count: IntArray) -> FloatArray:
+    """One of the smallest of count[C] rising spacings of each channel.
 
     Counts printed with few decimals alternate between two spacings (0.030 and 0.031): the mean of those is taken.
     """
-    count = np.sum(~np.isnan(spacing), axis=1)
-    ascending = np.sort(spacing, axis=1)
-    small = np.take_along_axis(ascending, (count // 20)[:, None], axis=1)
+    small = at_rank(ascending, (count // 20)[:, None])
     alike = np.abs(ascending - small) <= OFF * small
-    return np.where(alike, ascending, 0.0).sum(axis=1) / np.maximum(alike.sum(axis=1), 1), count
+    total = np.where(alike, ascending, 0.0).sum(axis=1)
+    return np.asarray(total / np.maximum(np.count_nonzero(alike, axis=1), 1), dtype=np.float64)
 
 
 def _middle_kept(readings: FloatArray, kept: BoolArray) -> FloatArray:
     """The middle one of the kept readings of each channel."""
     rank = np.cumsum(kept, axis=1)
     middle = np.argmax(rank >= (rank[:, -1:] + 1) // 2, axis=1)
-    return np.take_along_axis(readings, middle[:, None], axis=1)[:, 0]
+    return at_rank(readings, middle[:, None])[:, 0]
 
 
 def _from_lattice(readings: FloatArray, anchor: FloatArray, step: FloatArray) -> FloatArray:

@@ -18,6 +18,8 @@ CHANCE = 1e-4
 """Expected number of runs in a record from which a run counts as stuck."""
 SHORTEST = 5
 """No shorter run counts."""
+LADDER = 5
+"""Bits up to which runs are counted one length after the other; few channels have longer ones."""
 FEWEST_RUNS = 20
 """Runs needed to say how often they go on."""
 
@@ -44,31 +46,33 @@ def find_stuck(same: Bits, n: IntArray, step: FloatArray, rho: FloatArray, commo
     equal = np.flatnonzero(np.any(same != 0, axis=1))
     for first in range(0, equal.size, bits.TOGETHER):
         some = equal[first : first + bits.TOGETHER]
-        longest[some] = bits.longest_run(same[some]) + 1
-        explained[some] = _explained(n[some], _stays(same[some], step[some], rho[some], commonest[some]))
+        bits_from = bits.beginnings(same[some], LADDER)
+        longest[some] = np.count_nonzero(bits_from, axis=1) + 1
+        longer = np.flatnonzero(bits_from[:, -1])
+        longest[some[longer]] = bits.longest_run(same[some[longer]]) + 1
+        explained[some] = _explained(n[some], _stays(bits_from, step[some], rho[some], commonest[some]))
         beyond = some[longest[some] > explained[some]]
         if beyond.size:
             inside[beyond] = _inside_runs(same[beyond], explained[beyond])
     return Stuck(longest, explained, inside)
 
 
-def _stays(runs: Bits, step: FloatArray, rho: FloatArray, commonest: FloatArray) -> FloatArray:
+def _stays(bits_from: IntArray, step: FloatArray, rho: FloatArray, commonest: FloatArray) -> FloatArray:
     """The probability that a reading equals the one before, at most, [c]."""
     follows = np.clip(np.nan_to_num(rho), 0.0, 0.9999)
     by_step = 2.0 * ndtr(0.5 * step / np.sqrt(1.0 - follows**2)) - 1.0
     seen = np.where(step > 0, np.maximum(by_step, commonest), 0.0)
-    return np.clip(np.maximum(seen, _goes_on(runs)), 1e-3, 0.9999)
+    return np.clip(np.maximum(seen, _goes_on(bits_from)), 1e-3, 0.9999)
 
 
-def _goes_on(runs: Bits) -> FloatArray:
+def _goes_on(bits_from: IntArray) -> FloatArray:
     """The share of the runs of two readings that go on to three, or, each time, of those of three to five, [c].
 
-    0 where there are too few to say. Runs are counted, not readings, so that a few long ones do not matter.
+    0 where there are too few to say. Runs are counted, not readings, so that a few long ones do not matter: a run of L
+    bits has one more place from which k bits are set than from which k + 1 are.
     """
-    two = runs & ~bits.earlier(runs)
-    three = two & bits.later(runs, 1)
-    five = three & bits.later(runs, 2) & bits.later(runs, 3)
-    of_two, of_three, of_five = bits.count(two), bits.count(three), bits.count(five)
+    runs = bits_from[:, :-1] - bits_from[:, 1:]
+    of_two, of_three, of_five = runs[:, 0], runs[:, 1], runs[:, 3]
     once = np.where(of_two >= FEWEST_RUNS, of_three / np.maximum(of_two, 1), 0.0)
     twice = np.where(of_three >= FEWEST_RUNS, np.sqrt(of_five / np.maximum(of_three, 1)), 0.0)
     return np.maximum(once, twice)
