@@ -11,8 +11,13 @@ IntArray = NDArray[np.int64]
 BoolArray = NDArray[np.bool_]
 
 
-TOGETHER = 64
-"""Channels whose bits are counted at a time, so that they stay in the processor's cache."""
+WORDS = 12_000
+"""Words counted at a time, so that they stay in the processor's cache."""
+
+
+def together(bits: Bits) -> int:
+    """Channels whose bits are counted at a time."""
+    return max(1, WORDS // int(bits.shape[1]))
 
 
 def empty(channels: int, rows: int) -> Bits:
@@ -60,10 +65,12 @@ def count(bits: Bits) -> IntArray:
 def pairs(bits: Bits, lags: int) -> IntArray:
     """How many pairs of set bits are k rows apart, int64[C, lags + 1], for k = 0 to lags."""
     found = np.zeros((bits.shape[0], lags + 1), dtype=np.int64)
-    for first in range(0, bits.shape[0], TOGETHER):
-        some = bits[first : first + TOGETHER]
-        for k in range(lags + 1):
-            found[first : first + TOGETHER, k] = count(some & later(some, k))
+    step = together(bits)
+    for first in range(0, bits.shape[0], step):
+        some = bits[first : first + step]
+        found[first : first + step, 0] = count(some)
+        for k in range(1, lags + 1):
+            found[first : first + step, k] = count(some & later(some, k))
     return found
 
 

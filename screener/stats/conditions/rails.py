@@ -9,8 +9,8 @@ from screener.stats.conditions.bits import Bits
 from screener.stats.conditions.clipping import Clipping
 from screener.stats.conditions.counting import FloatArray, IntArray
 
-TOGETHER = 16
-"""Channels worked on at a time, so that they stay in the processor's cache."""
+TILE = 160_000
+"""Readings worked on at a time, so that they stay in the processor's cache."""
 HELD, LONG = 0.8, 10
 """Share of an end's readings, and readings, in one run that make the channel stuck there rather than clipped."""
 
@@ -23,11 +23,12 @@ def apart_from_rails(
         return same, clipping
     kept, low, high = same.copy(), clipping.low.copy(), clipping.high.copy()
     greatest = ordered[np.arange(n.size), np.maximum(n - 1, 0)]
+    together = max(1, TILE // readings.shape[1])
     ends = ((np.less_equal, ordered[:, 0] + step / 2.0, low), (np.greater_equal, greatest - step / 2.0, high))
     for beyond, end, counted in ends:
         railed = np.flatnonzero(counted)
-        for first in range(0, railed.size, TOGETHER):
-            some = railed[first : first + TOGETHER]
+        for first in range(0, railed.size, together):
+            some = railed[first : first + together]
             rail = bits.empty(some.size, readings.shape[1])
             bits.put(beyond(_taken(readings, some), end[some, None]), rail)
             held = np.zeros(some.size, dtype=np.bool_)

@@ -44,8 +44,9 @@ def find_stuck(same: Bits, n: IntArray, step: FloatArray, rho: FloatArray, commo
     longest, inside = np.minimum(n, 1), np.zeros(n.size, dtype=np.int64)
     explained = np.full(n.size, SHORTEST, dtype=np.int64)
     equal = np.flatnonzero(np.any(same != 0, axis=1))
-    for first in range(0, equal.size, bits.TOGETHER):
-        some = equal[first : first + bits.TOGETHER]
+    together = bits.together(same)
+    for first in range(0, equal.size, together):
+        some = equal[first : first + together]
         bits_from = bits.beginnings(same[some], LADDER)
         longest[some] = np.count_nonzero(bits_from, axis=1) + 1
         longer = np.flatnonzero(bits_from[:, -1])

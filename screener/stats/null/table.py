@@ -1,6 +1,7 @@
 """A table of null distributions of r over n, read in both directions: p of r, and critical r at alpha."""
 
 from dataclasses import dataclass
+from functools import lru_cache
 
 import numpy as np
 from numpy.typing import NDArray
@@ -107,7 +108,15 @@ def interpolation(sizes: IntArray, at: IntArray) -> FloatArray:
     """Weights of the tabled sizes at each n, float64[U, N]: cubic in ln n between them, straight beyond the last.
 
     Beyond the last size the trend is the least-squares line through the last four nodes, moved to meet the last.
+    Families share their sizes and all have the n of the same channels, so the weights are kept; they are not to be
+    written to.
     """
+    return _interpolation(tuple(sizes.tolist()), tuple(at.tolist()))
+
+
+@lru_cache(maxsize=16)
+def _interpolation(tabled: tuple[int, ...], wanted_at: tuple[int, ...]) -> FloatArray:
+    sizes, at = np.array(tabled), np.array(wanted_at)
     x, wanted = np.log(sizes.astype(np.float64)), np.log(at.astype(np.float64))
     weights = np.zeros((at.size, sizes.size))
     span = min(4, sizes.size)
