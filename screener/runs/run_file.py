@@ -116,6 +116,10 @@ class RunFile:
             spans = self._connection.execute("SELECT first, stop FROM span WHERE failure IS NULL")
             return {Span(int(first), int(stop)) for first, stop in spans}
 
+    def channels_done(self) -> set[int]:
+        """The positions of the channels of those spans, which may overlap when runs of other cuts went on with it."""
+        return {position for span in self.done() for position in range(span.first, span.stop)}
+
     def results(self) -> pl.DataFrame:
         """One row per channel tried so far, in table order: `position` and the columns of RESULT_COLUMNS."""
         with explained_content(self.path):

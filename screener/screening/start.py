@@ -13,7 +13,7 @@ from screener.records import BlockFailed, BlockScored, Event, Plan, RunFinished,
 from screener.runs import RunFile, default_run_path, is_run_file
 from screener.screening.null_source import nulls_for
 from screener.screening.screen import held_against, screen
-from screener.screening.workers import blocks_at_once, thread_workers
+from screener.screening.workers import blocks_at_once, bytes_at_work, most_in_block, thread_workers
 from screener.stats.correlation import table_ahead
 from screener.stats.null.packing import NULL_VERSION
 from screener.stats.positions import rule_key
@@ -43,15 +43,17 @@ def _scored(
     table: Table, plan: Plan, run_path: Path | None, executor: Executor, jobs: int, cancelled: Callable[[], bool]
 ) -> Iterator[Event]:
     with run_for(table.facts, plan, run_path) as run:
-        done = {position for span in run.done() for position in range(span.first, span.stop)}
+        done = run.channels_done()
         yield TableOpened(table.facts, plan, run.path, len(done))
         nulls = yield from nulls_for(plan.positions, table.facts.rows, jobs, cancelled)
         if nulls is None:
             yield RunFinished(cancelled=True, seconds=0.0)
             return
-        # Another version may have cut the channels elsewhere.
-        todo = [span for span in spans(table.facts) if not done.issuperset(range(span.first, span.stop))]
-        ahead = blocks_at_once(jobs, block_bytes(table.facts), machine_memory())
+        # Another version, or another number of workers, may have cut the channels elsewhere.
+        budget = bytes_at_work(machine_memory())
+        cut = spans(table.facts, most_bytes=most_in_block(jobs, budget))
+        todo = [span for span in cut if not done.issuperset(range(span.first, span.stop))]
+        ahead = blocks_at_once(jobs, block_bytes(table.facts, cut), budget)
         for event in screen(table, plan, nulls, spans=todo, executor=executor, ahead=ahead, cancelled=cancelled):
             if isinstance(event, BlockScored):
                 run.store(event.scores)

@@ -12,6 +12,7 @@ NICENESS = 10
 """Workers yield to the thread that draws the screen."""
 WAITING = 2
 """Blocks handed out beyond one for each worker, so that none waits for the next."""
+LARGEST_BLOCK = 16_000_000
 AT_WORK_BYTES = 80 << 20
 AT_WORK_SHARE = 1_000
 """Readings of all blocks at work: so many bytes, or this part of the machine's memory where that is more."""
@@ -28,12 +29,21 @@ def thread_workers(jobs: int) -> Iterator[Executor]:
             pool.shutdown(wait=False, cancel_futures=True)
 
 
-def blocks_at_once(jobs: int, block_bytes: int, memory_bytes: int) -> int:
-    """How many blocks may be handed out: enough for every worker, as long as their readings keep within a budget.
+def bytes_at_work(memory_bytes: int) -> int:
+    """The most that the readings of all blocks at work may take together, in a machine with so much memory.
 
-    Scoring takes some four to five times the readings of a block, so the budget bounds what the workers take together.
+    Scoring takes some four to five times the readings of a block, so this bounds what the workers take.
     """
-    budget = max(AT_WORK_BYTES, memory_bytes // AT_WORK_SHARE)
+    return max(AT_WORK_BYTES, memory_bytes // AT_WORK_SHARE)
+
+
+def most_in_block(jobs: int, budget: int) -> int:
+    """The bytes of readings in a block that leave every worker its own; a block has at least one channel."""
+    return min(LARGEST_BLOCK, budget // (jobs + WAITING))
+
+
+def blocks_at_once(jobs: int, block_bytes: int, budget: int) -> int:
+    """How many blocks may be handed out: enough for every worker, as long as their readings keep within the budget."""
     return max(1, min(jobs + WAITING, budget // max(1, block_bytes)))
 
 

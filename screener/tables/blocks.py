@@ -1,6 +1,7 @@
 """How the channels of a table are cut into blocks."""
 
 import os
+from collections.abc import Sequence
 
 from screener.records import Span, TableFacts
 
@@ -13,13 +14,15 @@ SHARE = 4
 _READING_BYTES = 8
 
 
-def spans(facts: TableFacts, first_bytes: int = FIRST_BYTES) -> list[Span]:
+def spans(facts: TableFacts, first_bytes: int = FIRST_BYTES, most_bytes: int | None = None) -> list[Span]:
     """Spans that cover every channel once, in order; the same table shape always gives the same spans.
 
-    A span holds at least one channel, so with many rows a block is larger than `first_bytes`.
+    A span holds at least one channel, so with many rows a block is larger than `first_bytes` and `most_bytes`, which
+    is `GROWN` times `first_bytes` unless given.
     """
     count, channel_bytes = len(facts.channels), _READING_BYTES * max(1, facts.rows)
-    least, most = (max(1, size // channel_bytes) for size in (first_bytes, GROWN * first_bytes))
+    most_bytes = GROWN * first_bytes if most_bytes is None else most_bytes
+    least, most = (max(1, size // channel_bytes) for size in (min(first_bytes, most_bytes), most_bytes))
     width = least
     cut: list[Span] = []
     first = 0
@@ -35,6 +38,6 @@ def machine_memory() -> int:
     return os.sysconf("SC_PAGE_SIZE") * os.sysconf("SC_PHYS_PAGES")
 
 
-def block_bytes(facts: TableFacts) -> int:
+def block_bytes(facts: TableFacts, cut: Sequence[Span]) -> int:
     """The readings of the largest block, in bytes."""
-    return max((span.stop - span.first for span in spans(facts)), default=0) * facts.rows * _READING_BYTES
+    return max((span.stop - span.first for span in cut), default=0) * facts.rows * _READING_BYTES

@@ -52,12 +52,16 @@ def reason_for_type(dtype: pl.DataType) -> str:
 
 
 def unfit(
-    frame: pl.DataFrame | pl.LazyFrame, columns: Sequence[str], rows: int, shown: Mapping[str, str]
+    frame: pl.DataFrame | pl.LazyFrame,
+    columns: Sequence[str],
+    rows: int,
+    shown: Mapping[str, str],
+    starts: Sequence[int] = (0,),
 ) -> dict[str, str]:
     """For each numeric column that is constant, empty, a counter, a time, an identifier, a code or a flag: the reason.
 
     The first rows clear most columns; only the rest is read to the end, some at a time. `shown` gives each
-    column's name.
+    column's name, `starts` the row with which each of several files begins, where counting may begin again.
     """
     if not columns:
         return {}
@@ -70,7 +74,7 @@ def unfit(
     for start in range(0, len(suspects), width):
         batch = suspects[start : start + width]
         readings = readings_of(frame.lazy().select(reading(*batch)))
-        reasons |= {column: _reason(row, shown[column]) for column, row in zip(batch, readings, strict=True)}
+        reasons |= {column: _reason(row, shown[column], starts) for column, row in zip(batch, readings, strict=True)}
     return {column: reason for column, reason in reasons.items() if reason}
 
 
@@ -103,14 +107,23 @@ def _suspects(first: NDArray[np.float64]) -> NDArray[np.bool_]:
     return suspects
 
 
-def _reason(readings: NDArray[np.float64], name: str) -> str:
+def _reason(readings: NDArray[np.float64], name: str, starts: Sequence[int]) -> str:
     """Why the readings of one column are no measurement; empty when they may be one."""
     known = readings[~np.isnan(readings)]
     if not len(known):
         return "empty: no readings"
     if len(known) > 1 and (known == known[0]).all():
         return f"constant: every reading is {float(known[0])!r}"
-    return _counting(known, len(readings), name) or _coding(known, name)
+    return _counting(known, len(readings), name) or _counting_in_each(readings, starts, name) or _coding(known, name)
+
+
+def _counting_in_each(readings: NDArray[np.float64], starts: Sequence[int], name: str) -> str:
+    """Why readings that rise with the rows of each file are no measurement."""
+    parts = [part for part in np.split(readings, starts[1:]) if len(part)]
+    if len(parts) < 2:
+        return ""
+    reasons = [_counting(part[~np.isnan(part)], len(part), name) for part in parts]
+    return f"{reasons[0]}, in each file" if all(reasons) else ""
 
 
 def _counting(known: NDArray[np.float64], rows: int, name: str) -> str:

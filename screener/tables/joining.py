@@ -44,19 +44,21 @@ def join(tables: Sequence[RawTable], files: Sequence[str]) -> tuple[RawTable, tu
         loaded=held and all(table.loaded for table in tables),
         remarks=tuple(remarks),
         whole=None,
+        starts=tuple(file.first_row for file in made),
     )
     return whole, made
 
 
 def _check(first: RawTable, other: RawTable, first_file: str, file: str) -> None:
-    if other.names != first.names:
-        longer = max(len(first.names), len(other.names))
-        pairs = zip(_padded(first.names, longer), _padded(other.names, longer), strict=True)
-        old, new = next((old, new) for old, new in pairs if old != new)
-        raise TableError(
-            f"Couldn't join {file!r} to {first_file!r}: its columns differ, {visible(new) or 'none'!r} stands where "
-            f"{visible(old) or 'none'!r} was. Name files of one layout."
-        )
+    for what, old, new in (("columns", first.names, other.names), ("units", first.units, other.units)):
+        if new != old:
+            longer = max(len(old), len(new))
+            pairs = zip(_padded(old, longer), _padded(new, longer), strict=True)
+            before, after = next((before, after) for before, after in pairs if before != after)
+            raise TableError(
+                f"Couldn't join {file!r} to {first_file!r}: its {what} differ, {visible(after) or 'none'!r} stands "
+                f"where {visible(before) or 'none'!r} was. Name files of one layout."
+            )
     if other.decimal_comma != first.decimal_comma:
         raise TableError(f"Couldn't join {file!r} to {first_file!r}: their decimal signs differ. Give --decimal.")
 

@@ -28,5 +28,7 @@ class RawTable:
     """How the table is written, on one line."""
     whole: pl.DataFrame | None = None
     """What `frame` gives, where it stands in memory: collecting thousands of columns again is not free."""
+    starts: tuple[int, ...] = (0,)
+    """The row with which each of several files begins."""
     spool: Spool | None = None
     """What keeps the file that the frame reads, when it is a temporary one."""

@@ -64,12 +64,16 @@ def names_a_channel(word: str) -> bool:
 
 def _has_channels_in_rows(raw: RawTable) -> bool:
     """Whether every row begins with a name of its own, and the columns have no names but numbers."""
-    headless = not any(raw.names) or (names_a_channel(raw.names[0]) and _are_counted(raw.names[1:]))
-    if not headless or len(raw.names) <= _FEWEST_READINGS:
+    told = bool(raw.names) and names_a_channel(raw.names[0])
+    if told:
+        unit = len(raw.names) > 1 and raw.names[1].strip().lower() in _UNITS
+        told = _are_counted(raw.names[1 + unit :])
+    if not (told or not any(raw.names)) or len(raw.names) <= _FEWEST_READINGS:
         return False
     schema = raw.frame.collect_schema()
     types = schema.dtypes()
-    if types[0] != pl.String or not all(dtype.is_numeric() for dtype in types[1:]):
+    # Words among the readings make text of a column; where the header tells of channels in rows that is no matter.
+    if types[0] != pl.String or not (told or all(dtype.is_numeric() for dtype in types[1:])):
         return False
     first = raw.frame.select(pl.col(schema.names()[0])).collect().to_series()
     words = not any(map(is_number, first.drop_nulls().head(_MOST_CHANNELS)))

@@ -75,7 +75,11 @@ def sift(raw: RawTable, shown: Mapping[str, str], choice: Choice, missing: Seque
     frame, codes = _without_codes(text.frame, numeric, missing, held=raw.held)
     whole = _whole(raw, frame)
     unfit_reasons = unfit(
-        frame if whole is None else whole, [column for column in schema if column not in reasons], raw.rows, shown
+        frame if whole is None else whole,
+        [column for column in schema if column not in reasons],
+        raw.rows,
+        shown,
+        raw.starts,
     )
     by_name = {column for at, column in enumerate(schema) if at in choice.by_name}
     reasons |= {c: why for c, why in unfit_reasons.items() if not (c in by_name and why.startswith(GUESSES))}

@@ -11,7 +11,10 @@ from polars.testing import assert_frame_equal
 from screener.errors import PlanError, RunFileError
 from screener.records import BlockScored, Plan, RunFinished, Span, TableOpened
 from screener.runs import RunFile
+from screener.screening.screen import score_span
 from screener.screening.start import start
+from screener.screening.workers import thread_workers
+from screener.stats.null.packing import shipped_nulls
 from screener.tables import open_table, spans
 
 CHANNELS, ROWS = 12, 100_000
@@ -90,6 +93,24 @@ def test_a_block_that_failed_is_tried_again(table: Path, tmp_path: Path) -> None
         run.finish()
         assert "The disk was away." in run.results()["reason"].to_list()
     assert_frame_equal(finish(table, path), whole, check_exact=True)
+
+
+def test_a_run_goes_on_with_other_blocks_and_counts_each_channel_once(table: Path, tmp_path: Path) -> None:
+    path = tmp_path / "t.run"
+    whole = finish(table, tmp_path / "whole.run")
+    events = start(table, Plan(), path, jobs=1)
+    next(events)
+    next(events)
+    del events
+    with RunFile.open(path) as run:
+        (first,) = run.done()
+        moved = Span(first.first + 1, first.stop + 1)
+        with thread_workers(1) as executor:
+            run.store(executor.submit(score_span, open_table(table, Plan()), moved, Plan(), shipped_nulls()).result())
+        assert run.channels_done() == set(range(first.first, moved.stop))
+    assert_frame_equal(finish(table, path), whole, rel_tol=1e-8)
+    with RunFile.open(path) as run:
+        assert run.channels_done() == set(range(CHANNELS))
 
 
 def spans_of(table: Path) -> list[Span]:

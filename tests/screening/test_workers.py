@@ -3,11 +3,21 @@
 import os
 import threading
 import time
+from pathlib import Path
 
 import pytest
 from threadpoolctl import threadpool_info
 
-from screener.screening.workers import NICENESS, blocks_at_once, thread_workers, usable_cores
+from screener.records import Channel, TableFacts
+from screener.screening.workers import (
+    NICENESS,
+    blocks_at_once,
+    bytes_at_work,
+    most_in_block,
+    thread_workers,
+    usable_cores,
+)
+from screener.tables import block_bytes, spans
 
 
 def test_matrix_products_get_one_thread_while_blocks_are_scored() -> None:
@@ -60,18 +70,18 @@ def test_only_the_cores_of_this_process_count() -> None:
             os.sched_setaffinity(0, allowed)
 
 
-@pytest.mark.parametrize(
-    ("jobs", "block_bytes", "memory_bytes", "blocks"),
-    [
-        (2, 4_000_000, 8 << 30, 4),
-        (8, 4_000_000, 8 << 30, 10),
-        (8, 40_000_000, 8 << 30, 2),
-        (8, 400_000_000, 8 << 30, 1),
-        (64, 4_000_000, 8 << 30, 20),
-        (64, 4_000_000, 512 << 30, 66),
-    ],
-)
-def test_so_many_blocks_are_handed_out_as_workers_need_and_memory_allows(
-    jobs: int, block_bytes: int, memory_bytes: int, blocks: int
+@pytest.mark.parametrize("memory_bytes", [4 << 30, 512 << 30])
+@pytest.mark.parametrize("jobs", [1, 2, 8, 64])
+@pytest.mark.parametrize("rows", [100, 10_000, 1_000_000, 50_000_000])
+def test_blocks_at_work_keep_within_a_budget_and_every_worker_has_one_where_that_can_be(
+    rows: int, jobs: int, memory_bytes: int
 ) -> None:
-    assert blocks_at_once(jobs, block_bytes, memory_bytes) == blocks
+    facts = TableFacts(Path("t"), "", rows, tuple(Channel(k, f"c{k}") for k in range(900)), (), "")
+    budget = bytes_at_work(memory_bytes)
+    cut = spans(facts, most_bytes=most_in_block(jobs, budget))
+    each = block_bytes(facts, cut)
+    ahead = blocks_at_once(jobs, each, budget)
+    assert budget == {4 << 30: 80 << 20, 512 << 30: (512 << 30) // 1000}[memory_bytes]
+    assert ahead * each <= budget or ahead == 1
+    assert ahead >= jobs or (ahead + 1) * 8 * rows > budget
+    assert each <= 16_000_000 or each == 8 * rows

@@ -43,6 +43,14 @@ def test_channels_in_rows_below_numbered_columns(open_text: OpenText) -> None:
     is_p_and_q(open_text("channel,1,2,3,4,5\n" + ROWS))
 
 
+def test_channels_in_rows_with_units_and_words_below_numbered_columns(open_text: OpenText) -> None:
+    table = open_text("Channel;Unit;1;2;3;4\np1;bar;1,5;OVER;-3;2\nq1;l/min;7;0,125;<12;3\n")
+    assert table.names == ["p1", "q1"]
+    assert [channel.unit for channel in table.facts.channels] == ["bar", "l/min"]
+    assert_array_equal(table.readings, [[1.5, np.nan, -3, 2], [7, 0.125, 12, 3]])
+    assert [channel.below for channel in table.facts.channels] == [0, 1]
+
+
 def test_channels_in_rows_as_asked_with_units_and_words(open_text: OpenText) -> None:
     table = open_text("what,unit,a,b,c\np1,bar,1.5,OVER,-3\nq1,l/min,7,0.125,12\n", Plan(shape="rows"))
     assert table.names == ["p1", "q1"]
@@ -157,6 +165,28 @@ def test_files_of_another_layout_are_refused_with_the_column(tmp_path: Path) -> 
     (tmp_path / "run_11.csv").write_text("p1,x\n1,2\n")
     with pytest.raises(TableError, match=r"Couldn't join 'run_11\.csv' to 'run_2\.csv': .* 'x' stands where 'q1' was"):
         open_table(tmp_path / "run_*.csv", Plan())
+
+
+def test_files_in_other_units_are_refused_with_the_unit(tmp_path: Path) -> None:
+    for number, unit in ((1, "mm"), (2, "in")):
+        (tmp_path / f"run_{number}.csv").write_text(f"p,q\n{unit},N\n1.5,2\n3,4.5\n")
+    with pytest.raises(TableError, match="its units differ, 'in' stands where 'mm' was"):
+        open_table(tmp_path / "run_*.csv", Plan())
+
+
+@pytest.mark.parametrize("held_bytes", [0, 1 << 30])
+def test_what_counts_the_rows_of_each_file_is_no_channel(tmp_path: Path, held_bytes: int) -> None:
+    rng = np.random.default_rng(4)
+    for number, size in ((1, 50), (2, 70)):
+        at = np.arange(size)
+        frame = pl.DataFrame({"n": at, "t [s]": at * 0.5, "falls": -at, "p": rng.normal(size=size)})
+        frame.write_csv(tmp_path / f"run_{number}.csv")
+    table = open_table(tmp_path / "run_*.csv", Plan(), held_bytes=held_bytes)
+    assert [channel.name for channel in table.facts.channels] == ["falls", "p"]
+    assert {one.name: one.reason for one in table.facts.set_aside} == {
+        "n": "a row counter: it goes up by 1 from row to row, in each file",
+        "t [s]": "a row counter: it goes up by 0.5 from row to row, in each file",
+    }
 
 
 def test_a_pattern_without_files_is_one_sentence(tmp_path: Path) -> None:
