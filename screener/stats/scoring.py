@@ -138,7 +138,8 @@ def _kept(ordered: FloatArray, n: NDArray[np.int64]) -> tuple[FloatArray, ...]:
     kept: list[FloatArray] = [np.empty(0)] * n.size
     for size in np.unique(n):
         rows = np.flatnonzero(n == size)
-        for row, readings in zip(rows, ordered[np.ix_(rows, kept_ranks(int(size)))], strict=True):
+        place = rows[:, None] * ordered.shape[1] + kept_ranks(int(size))
+        for row, readings in zip(rows, ordered.ravel().take(place), strict=True):
             kept[row] = readings
     return tuple(kept)
 

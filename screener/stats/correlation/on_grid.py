@@ -87,9 +87,9 @@ def tiled_product(left: FloatArray, right: FloatArray, tile: int = TILE) -> Floa
     product = np.empty((count, right.shape[1]))
     whole = count - count % tile
     for first in range(0, whole, tile):
-        np.matmul(left[first : first + tile], right, out=product[first : first + tile])
+        np.dot(left[first : first + tile], right, out=product[first : first + tile])
     if whole < count:
         padded = np.zeros((tile, width))
         padded[: count - whole] = left[whole:]
-        product[whole:] = (padded @ right)[: count - whole]
+        product[whole:] = padded.dot(right)[: count - whole]
     return product

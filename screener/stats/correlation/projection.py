@@ -21,8 +21,8 @@ the last bit, on how many others are scored with it."""
 TILE_READINGS, LONGEST_TILE = 330_000, 128
 """Readings, and channels, compressed at a time."""
 
-SQUARED = 8192
-"""Readings squared and summed in one go: few enough that the linear algebra library does not share them out."""
+PIECE = 512
+"""Readings squared and summed in one go: many small results, since numpy lets no other thread run for a few."""
 
 Deviations = Callable[[FloatArray, FloatArray, FloatArray], None]
 """Writes into the third array, which may be the first, the deviations of readings, float64[C, k], that rise along each
@@ -105,8 +105,9 @@ def project(ordered: FloatArray, n: IntArray, rows: IntArray, rule: str, deviati
 
 def _squares(tile: FloatArray) -> FloatArray:
     """Sum of squares of each row."""
-    parts = (tile[:, first : first + SQUARED] for first in range(0, tile.shape[1], SQUARED))
-    return sum((np.vecdot(part, part) for part in parts), np.zeros(tile.shape[0]))
+    whole = tile.shape[1] - tile.shape[1] % PIECE
+    pieces, rest = tile[:, :whole].reshape(len(tile), -1, PIECE), tile[:, whole:]
+    return np.asarray(np.vecdot(pieces, pieces).sum(axis=1) + np.vecdot(rest, rest), dtype=np.float64)
 
 
 def tile_rows(width: int) -> int:
