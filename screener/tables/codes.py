@@ -4,7 +4,7 @@ They are only proposed. A value is proposed when it is the lowest or the highest
 twice, and lies further from the other readings than three times the range of those.
 """
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Collection, Iterator, Mapping, Sequence
 
 import numpy as np
 import polars as pl
@@ -23,15 +23,21 @@ _HELD_READINGS = 1_000_000
 """Of a table in memory: so few that their copy reuses the memory of the one before."""
 
 
-def proposed_codes(frame: pl.DataFrame | pl.LazyFrame, columns: Sequence[str], rows: int) -> tuple[Proposal, ...]:
-    """The values that look like codes for a missing reading, those in most cells first."""
+def proposed_codes(
+    frame: pl.DataFrame | pl.LazyFrame, columns: Sequence[str], rows: int, limits: Mapping[str, Collection[float]]
+) -> tuple[Proposal, ...]:
+    """The values that look like codes for a missing reading, those in most cells first.
+
+    `limits` are the detection limits of some columns, which come again and again for another reason.
+    """
     if rows < _FEWEST_CELLS + _FEWEST_OTHERS or not columns:
         return ()
     found: dict[str, list[int]] = {}
     for part in _parts(frame, columns, rows):
         for column in _far_reaching(part):
             for value, cells in _codes(column.cast(pl.Float64).to_numpy()):
-                found.setdefault(_written(value, column.dtype), []).append(cells)
+                if value not in limits.get(column.name, ()):
+                    found.setdefault(_written(value, column.dtype), []).append(cells)
     ranked = sorted(found.items(), key=lambda item: (-sum(item[1]), item[0]))
     return tuple(Proposal(value, len(cells), sum(cells)) for value, cells in ranked)
 

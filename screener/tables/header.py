@@ -7,6 +7,7 @@ from dataclasses import dataclass
 
 from screener.tables.cells import LOGGER_WORDS, is_date, is_missing, is_number
 from screener.tables.head import HeadRow
+from screener.tables.units import KNOWN_UNITS
 
 COMMENTS = ("#", "%", "//", "!")
 """How lines begin that tell about the table; the last of them may hold its names."""
@@ -15,6 +16,7 @@ _LONGEST_UNIT = 16
 _SHORT_UNIT = 3
 _FEW_COLUMNS = 2
 """Lines that tell about a table often have two cells, as many as the narrowest table has."""
+_DASHES = ("-", "–", "—", "--")
 _BARE_NUMBER = re.compile(r"[<>≤≥]?=?\s*[+-]?(?:\d[\d.,' ]*|[.,]\d+)(?:[eEdD][+-]?\d+)?\s*(?:%|[°µΩ]?[A-Za-z]{1,3})?")
 
 
@@ -228,9 +230,15 @@ def _units(below: Sequence[HeadRow], named: HeadRow, *, start_line: int, asked: 
     if asked > 0:
         return _row_of_line(below, asked) if below else None
     row = below[0] if below else None
-    if row is None or row.first >= start_line or _is_reading(row):
+    if row is None or row.first >= start_line or (_is_reading(row) and not _are_units_and_dashes(row)):
         return None
     return row if _may_be_units(row, len(named.cells)) else None
+
+
+def _are_units_and_dashes(row: HeadRow) -> bool:
+    """Whether all cells are well-known units but for dashes, which stand for no unit here and not for no reading."""
+    cells = {cell.strip().strip("[](){}") for cell in row.cells} - {"", *_DASHES}
+    return bool(cells) and cells <= KNOWN_UNITS
 
 
 def _may_be_units(row: HeadRow, width: int) -> bool:

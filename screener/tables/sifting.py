@@ -84,7 +84,7 @@ def sift(raw: RawTable, shown: Mapping[str, str], choice: Choice, missing: Seque
     by_name = {column for at, column in enumerate(schema) if at in choice.by_name}
     reasons |= {c: why for c, why in unfit_reasons.items() if not (c in by_name and why.startswith(GUESSES))}
     columns = tuple(column for column in schema if column not in reasons)
-    proposals = proposed_codes(frame if whole is None else whole, columns, raw.rows)
+    proposals = proposed_codes(frame if whole is None else whole, columns, raw.rows, _limits(text.forms))
     remarks = (*text.remarks, *codes, *(proposal.sentence() for proposal in proposals))
     if not mixed and len(columns) == len(wanted):
         return Sifted(frame, columns, reasons, remarks, proposals, whole=whole)
@@ -94,6 +94,15 @@ def sift(raw: RawTable, shown: Mapping[str, str], choice: Choice, missing: Seque
     return Sifted(
         _only(frame, columns), columns, reasons, remarks, proposals, text.forms.below, text.forms.above, units
     )
+
+
+def _limits(forms: Forms | None) -> dict[str, set[float]]:
+    """The innermost detection limits of the columns that have any."""
+    limits: dict[str, set[float]] = {}
+    for side in (forms.below, forms.above) if forms else ():
+        for column, limit in side.items():
+            limits.setdefault(column, set()).add(limit.value)
+    return limits
 
 
 def _whole(raw: RawTable, frame: pl.LazyFrame) -> pl.DataFrame | None:

@@ -112,6 +112,20 @@ CASES = {
         aside=("when",),
     ),
     "quotes_in_preamble.csv": Case('"Rig 7, "left" side\nvalve 5" open\np,q\n' + rows()),
+    "units_and_dashes.csv": Case(
+        "n,p,q\n-,bar,°C\n" + "".join(f"{k}.5,{row}\n" for k, row in zip((3, 1, 4, 1, 5), rows().split(), strict=True)),
+        {"n": [3.5, 1.5, 4.5, 1.5, 5.5], **CHANNELS},
+        units={"n": "", "p": "bar", "q": "°C"},
+        dialect="comma, units in line 2",
+    ),
+    "dashes_are_no_units.csv": Case(
+        "p,q\n-,OPEN\n" + rows(), {"p": [None, *P], "q": [None, *Q]}, remark="1 cell holds 'OPEN' in q"
+    ),
+    "limits_far_off.csv": Case(
+        "p,q\n" + "".join(f"{'<0.001' if k % 3 == 0 else 20 + k / 8},{k * k % 11}.5\n" for k in range(12)),
+        {"p": [0.001 if k % 3 == 0 else 20 + k / 8 for k in range(12)], "q": [k * k % 11 + 0.5 for k in range(12)]},
+        censored={"p": (4, 0)},
+    ),
     "units_in_brackets.csv": Case("p,q\n[bar],[l/min]\n" + rows(), units={"p": "bar", "q": "l/min"}),
     "no_units_as_said.csv": Case(
         "p,q\nup,down\n" + rows(), {"p": [None, *P], "q": [None, *Q]}, plan={"units_line": 0, "header_line": 1}
