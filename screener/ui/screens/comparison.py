@@ -14,6 +14,7 @@ from textual.screen import Screen
 from screener.errors import ScreenerError
 from screener.ui.numbers import p_text, r_text
 from screener.ui.palette import CURSOR, FLAGGED, HEADER, PLAIN, STRONG
+from screener.ui.rows import longest_name
 from screener.ui.screens.comparison_help import comparison_help
 from screener.ui.shown import fitted, fitted_name, shown
 from screener.ui.widgets.key_line import KeyLine
@@ -49,7 +50,7 @@ KEYS = (
     ("1-6", "sort", "sort(2)"),
     ("S", "reverse", "reverse"),
     ("f", "newly flagged", "flagged_now"),
-    ("a", "all, or only changes", "everything"),
+    ("a", "all rows", "everything"),
     ("e", "export", "export"),
     ("?", "help", "help"),
     ("q", "quit", "quit"),
@@ -83,6 +84,7 @@ class ComparisonScreen(Screen[None]):
         self._sort, self._falling = 0, False
         self._changes_only, self._flagged_now = True, False
         self._rows = rows
+        self._longest_name = longest_name(rows)
         self._cursor = self._top = 0
         self._notice = ""
 
@@ -95,10 +97,7 @@ class ComparisonScreen(Screen[None]):
 
     def on_mount(self) -> None:
         """Show what changed, by weight."""
-        from screener.runs.comparing import sentence
-
         self.query_one("#title", Lines).show([plain(shown(self._heading), STRONG)])
-        self.query_one("#sentence", Lines).show([plain(sentence(self._all))])
         self.query_one(KeyLine).show_keys(KEYS)
         self._arrange()
         self.call_after_refresh(self._show)
@@ -200,9 +199,10 @@ class ComparisonScreen(Screen[None]):
         self._show()
 
     def _show(self) -> None:
-        """The lines in sight and the status."""
+        """The sentence, the lines in sight and the status."""
         area = self.query_one("#rows", Lines)
-        widths = _widths(area.size.width - 2)
+        self.query_one("#sentence", Lines).show([plain(_told(self._all, area.size.width))])
+        widths = _widths(area.size.width - 2, self._longest_name)
         head = " ".join(fitted(title, width) for (title, _, _), width in zip(CELLS, widths, strict=True))
         lines: list[Line] = [plain("  " + head, HEADER)]
         for row, values in enumerate(self._rows.slice(self._top, self._height).iter_rows(named=True), self._top):
@@ -214,9 +214,18 @@ class ComparisonScreen(Screen[None]):
         self.query_one("#status", Lines).show([plain(self._notice or f"{place} {kind}, {order}")])
 
 
-def _widths(total: int) -> list[int]:
+def _told(rows: pl.DataFrame, width: int) -> str:
+    """The counts in one line; where there is no room, without those that are the same."""
+    from screener.runs.comparing import sentence
+
+    told = sentence(rows)
+    return told if len(told) <= width else told.rpartition(", ")[0]
+
+
+def _widths(total: int, longest_name: int) -> list[int]:
+    """The name takes what it needs of what the others leave."""
     fixed = sum(width for _, width, _ in CELLS) + len(CELLS) - 1
-    return [width or max(8, total - fixed) for _, width, _ in CELLS]
+    return [width or max(8, min(longest_name, total - fixed)) for _, width, _ in CELLS]
 
 
 def _line(row: Row, widths: list[int], *, at_cursor: bool) -> Line:
