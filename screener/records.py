@@ -208,6 +208,8 @@ class BlockScores:
     """[C] sorted readings kept for the plot, at the ranks `stats.points.kept_ranks(n)`."""
     in_order: tuple[FloatArray, ...] = ()
     """[C] readings kept in row order, as `stats.row_order.kept_in_order` keeps them; empty when none are."""
+    outermost: tuple[IntArray, ...] = ()
+    """[C] rows (0-based) of the outermost readings, lowest first, highest last; empty when none are kept."""
     conditions: tuple[str, ...] = ()
     """[C] the conditions of the channel in words; empty where there is none."""
     step: FloatArray | None = None

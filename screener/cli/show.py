@@ -58,7 +58,11 @@ def command(ctx: click.Context, /, path: Path, channel: str, **given: Any) -> No
                 _drawn(run, position, row["n"], against or row["family"], View(view.replace("-", " ")), given)
                 for view in given["view"] or VIEWS[:1]
             ]
-            parts += [_families(drawings[0]), *(part for one in drawings for part in ([_heading(one)], one.lines))]
+            parts += [
+                _families(drawings[0]),
+                _outermost(drawings),
+                *(part for one in drawings for part in ([_heading(one)], one.lines)),
+            ]
         parts.append(_reading(run))
         put(line.rstrip() for line in _apart(parts))
         ctx.exit(exit_code(run, results))
@@ -147,6 +151,22 @@ def _families(drawn: "Drawing") -> list[str]:
     if any(fit["extrapolated"] for fit in fits):
         lines.append("* beyond what was simulated: from the fitted tail")
     return lines
+
+
+def _outermost(drawings: Sequence["Drawing"]) -> list[str]:
+    """The outermost readings by name, as far as a plot shows them."""
+    from screener.cli.report import aligned
+    from screener.ui.numbers import reading_text
+
+    drawn = next((one for one in drawings if one.tails.low), None)
+    if drawn is None:
+        return []
+    readings = [*drawn.tails.low, *reversed(drawn.tails.high)]
+    cells = [
+        (reading_text(one.reading), f"{one.row:,}", "" if one.off is None else f"{one.off:+.4g}") for one in readings
+    ]
+    off = f"off the line of {drawn.wanted.family}"
+    return ["outermost readings, from the lowest to the highest", *aligned(("reading", "row", off), cells)]
 
 
 def _family_cells(fit: Row) -> tuple[str, ...]:

@@ -13,7 +13,7 @@ from screener.errors import RunFileError
 from screener.runs.failures import refusal
 
 APPLICATION_ID = 0x5343524E
-SCHEMA = 3
+SCHEMA = 4
 PATIENCE = 5.0
 """Seconds to wait for another program's lock."""
 
@@ -22,7 +22,7 @@ Migrate = Callable[[sqlite3.Connection, int], None]
 
 _TABLES = {
     *("version", "run", "remark", "set_aside", "channel", "proposal", "source_file"),
-    *("span", "score", "family", "fit", "kept_readings", "readings_in_order", "by_file", "strip"),
+    *("span", "score", "family", "fit", "kept_readings", "readings_in_order", "by_file", "outermost", "strip"),
     *("act", "decided", "view"),
 }
 

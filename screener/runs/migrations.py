@@ -37,5 +37,5 @@ def _add_table(connection: sqlite3.Connection, name: str, statement: str, column
             connection.execute(f"ALTER TABLE {name} ADD COLUMN {column} {kind}{must}")
 
 
-STEPS: dict[int, Callable[[sqlite3.Connection], None]] = {1: add_what_is_new, 2: add_what_is_new}
+STEPS: dict[int, Callable[[sqlite3.Connection], None]] = dict.fromkeys((1, 2, 3), add_what_is_new)
 """How each earlier schema becomes the next."""

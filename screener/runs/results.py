@@ -16,7 +16,7 @@ from screener.runs.text import visible
 from screener.stats.many import adjusted_p
 
 if TYPE_CHECKING:
-    from screener.records import FloatArray
+    from screener.records import FloatArray, IntArray
 
 OUTSIDE_SUPPORT = "outside support"
 """The note of a fit to a family that cannot hold the channel's readings."""
@@ -88,6 +88,12 @@ def read_in_order(connection: sqlite3.Connection, position: int) -> FloatArray:
     """The readings kept of one channel in row order; empty when there are none."""
     row = connection.execute("SELECT readings FROM readings_in_order WHERE position = ?", (position,)).fetchone()
     return unpacked(row[0]) if row else np.empty(0)
+
+
+def read_outermost(connection: sqlite3.Connection, position: int) -> IntArray:
+    """The rows (0-based) of the outermost readings of one channel, lowest first; empty when they are not kept."""
+    row = connection.execute("SELECT rows FROM outermost WHERE position = ?", (position,)).fetchone()
+    return np.frombuffer(row[0] if row else b"", "<i8").astype(np.int64)
 
 
 def read_by_file(connection: sqlite3.Connection, position: int, files: int) -> FloatArray:

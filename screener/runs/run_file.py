@@ -25,6 +25,7 @@ from screener.runs.results import (
     read_decided,
     read_fits,
     read_in_order,
+    read_outermost,
     read_points,
     read_reason,
     read_results,
@@ -34,7 +35,7 @@ from screener.runs.scores import store_failure, store_scores
 from screener.runs.view import read_view, store_view
 
 if TYPE_CHECKING:
-    from screener.records import FloatArray
+    from screener.records import FloatArray, IntArray
 
 
 class RunFile:
@@ -149,6 +150,11 @@ class RunFile:
         """n, mean and standard deviation of the channel in each of `facts.files`; empty when they are not kept."""
         with explained_content(self.path):
             return read_by_file(self._connection, position, len(self.facts.files))
+
+    def outermost(self, position: int) -> IntArray:
+        """The rows (0-based) of the outermost readings of the channel, lowest first; empty when they are not kept."""
+        with explained_content(self.path):
+            return read_outermost(self._connection, position)
 
     def strips(self) -> pl.DataFrame:
         """One row per channel scored: `position` and `strip`, digits from the low to the high tail."""

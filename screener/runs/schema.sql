@@ -1,9 +1,9 @@
--- The run file, schema 3. Later schemas are reached by migrations, which add tables and columns and change none.
+-- The run file, schema 4. Later schemas are reached by migrations, which add tables and columns and change none.
 -- A missing number is NULL, never NaN. Names and sentences are stored safe to show.
 
 -- "SCRN" in ASCII: what tells a run file from any other SQLite file.
 PRAGMA application_id = 0x5343524E;
-PRAGMA user_version = 3;
+PRAGMA user_version = 4;
 
 BEGIN;
 
@@ -125,6 +125,12 @@ CREATE TABLE readings_in_order (
 CREATE TABLE by_file (
     position INTEGER PRIMARY KEY,
     summaries BLOB NOT NULL
+);
+
+-- One row per channel scored: the rows of its lowest readings, lowest first, then of its highest, int64, little-endian.
+CREATE TABLE outermost (
+    position INTEGER PRIMARY KEY,
+    rows BLOB NOT NULL
 );
 
 -- One row per channel scored: its departure from the line in a few digits, from the low to the high tail.

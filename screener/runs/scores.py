@@ -51,6 +51,11 @@ def store_scores(connection: sqlite3.Connection, scores: BlockScores, rule: str)
             "INSERT OR REPLACE INTO by_file (position, summaries) VALUES (?, ?)",
             zip(range(span.first, span.stop), map(packed, scores.by_file), strict=True),
         )
+    if scores.outermost:
+        connection.executemany(
+            "INSERT OR REPLACE INTO outermost (position, rows) VALUES (?, ?)",
+            ((span.first + at, rows.astype("<i8").tobytes()) for at, rows in enumerate(scores.outermost)),
+        )
     connection.executemany(
         "INSERT OR REPLACE INTO strip (position, levels) VALUES (?, ?)",
         zip(range(span.first, span.stop), strips_of(scores, rule), strict=True),

@@ -26,6 +26,7 @@ from screener.stats.closest import closest
 from screener.stats.conditions import conditions_of
 from screener.stats.families import FAMILIES, family_named
 from screener.stats.null.nulls import Nulls
+from screener.stats.outermost import outermost_rows
 from screener.stats.parts import part_summaries
 from screener.stats.scoring import score
 
@@ -126,6 +127,7 @@ def score_span(table: ReadableTable, span: Span, plan: Plan, null: Nulls) -> Blo
         n_effective=scoring.conditions.n_effective,
         points=scoring.points,
         in_order=tuple(scoring.in_order),
+        outermost=outermost_rows(block.readings, scoring.points, list(scoring.in_order)),
         by_file=part_summaries(block.readings, [file.first_row for file in table.facts.files]),
     )
 

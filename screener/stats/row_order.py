@@ -58,6 +58,21 @@ def row_order(kept: FloatArray, rows: int) -> RowOrder:
     return RowOrder(np.repeat(middle, 2), low_high.ravel(), before, after, -(-rows // STRETCHES))
 
 
+def stretch_extremes(kept: FloatArray, rows: int) -> tuple[FloatArray, FloatArray]:
+    """The lowest and the highest reading of every stretch of `stretch_starts`, each [C, stretches]; NaN where missing.
+
+    `kept` is what `kept_in_order` kept of the channels. Where all readings are kept, each is a stretch of its own.
+    """
+    if rows <= IN_FULL:
+        return kept, kept
+    return kept[:, :STRETCHES], kept[:, STRETCHES : 2 * STRETCHES]
+
+
+def stretch_starts(rows: int) -> NDArray[np.int64]:
+    """The first row (0-based) of every stretch, and at the end the number of rows."""
+    return np.arange(rows + 1) if rows <= IN_FULL else np.append(_starts(rows), rows)
+
+
 def _starts(rows: int) -> NDArray[np.int64]:
     return np.arange(STRETCHES) * rows // STRETCHES
 

@@ -34,10 +34,11 @@ def place_words(row: int, rows: int, *, flagged_only: bool, condition: str = "")
 
 
 def channel_words(channel: Mapping[str, Any] | None) -> str:
-    """What else is to be said of a channel: why it is not scored, what was decided, what was noted."""
+    """What else is to be said of a channel: why it is not scored or in which condition, the decision, the note."""
     if channel is None:
         return ""
-    reason = f"   not scored: {shown(channel['reason'])}" if channel["reason"] else ""
+    said = f"not scored: {shown(channel['reason'])}" if channel["reason"] else shown(channel["conditions"] or "")
+    reason = f"   {said}" if said else ""
     decision = f"   {shown(channel['decision'])}" if channel["decision"] else ""
     note = f'   "{shown(channel["note"])}"' if channel["note"] else ""
     return reason + decision + note

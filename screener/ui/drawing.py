@@ -2,22 +2,25 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, Any
 
 from screener.ui.families import family_lines, shapes
+from screener.ui.tails import Tails, tail_lines, tails_of
 from screener.ui.views import View
 
 if TYPE_CHECKING:
     from collections.abc import Sequence
 
     from screener.plots import Charset, QuantileView
-    from screener.records import Plan, TableFacts
+    from screener.records import FloatArray, Plan, TableFacts
     from screener.runs import RunFile
 
 
 OF_ROWS = {View.RUN_ORDER, View.LAG, View.HISTOGRAM}
 """Views that are not held against a family."""
+ROOM_FOR_TAILS = 12
+"""Lines from which on the outermost readings are named under the plot."""
 TAILS = {View.LOW_TAIL, View.HIGH_TAIL}
 
 
@@ -49,6 +52,8 @@ class Drawing:
     """All rows of FIT_COLUMNS of the channel."""
     closest: str = ""
     """What the families' p say of those that come closest, in a sentence."""
+    tails: Tails = field(default_factory=Tails)
+    """The outermost readings by name, in the views that are quantile plots."""
     reason: str = ""
     """Why the channel is not scored, whatever the family."""
 
@@ -64,6 +69,7 @@ def drawing(run: RunFile, facts: TableFacts, plan: Plan, wanted: Wanted, *, char
     fits = run.fits(wanted.position).to_dicts()
     fit = next((fit for fit in fits if fit["family"] == wanted.family), {})
     said = closest_words(fits, plan.alpha, wanted.n)
+    tails = Tails()
     if wanted.view is View.FAMILIES:
         lines = family_lines(fits, said, wanted.family, width=wanted.width, height=wanted.height)
     elif wanted.view is View.SHAPE:
@@ -71,23 +77,34 @@ def drawing(run: RunFile, facts: TableFacts, plan: Plan, wanted: Wanted, *, char
     elif wanted.view in OF_ROWS:
         lines = _row_plot(run, facts, wanted, charset)
     else:
-        lines = _quantile_plot(run, plan, wanted, fit, charset)
+        lines, tails = _quantile_plot(run, plan, wanted, fit, charset)
     families = tuple(str(fit["family"]) for fit in fits)
+    reason = run.reason(wanted.position)
     return Drawing(
-        wanted, channel.name, channel.unit, families, fit, tuple(lines), tuple(fits), said, run.reason(wanted.position)
+        wanted, channel.name, channel.unit, families, fit, tuple(lines), tuple(fits), said, reason=reason, tails=tails
     )
 
 
 def view_of(run: RunFile, plan: Plan, wanted: Wanted, fit: dict[str, Any]) -> QuantileView:
     """What the quantile plot of the channel shows, in the wanted view."""
-    from screener.plots import difference_of, quantile_view, tail_of
+    return _seen(_whole(run.points(wanted.position), plan, wanted, fit), wanted.view)
+
+
+def _whole(points: FloatArray, plan: Plan, wanted: Wanted, fit: dict[str, Any]) -> QuantileView:
+    """The whole quantile plot of the kept readings."""
+    from screener.plots import quantile_view
 
     location, scale = (float("nan") if fit.get(name) is None else fit[name] for name in ("location", "scale"))
-    points = run.points(wanted.position)
-    view = quantile_view(points, wanted.n, wanted.family, plan.positions, location, scale, shapes(fit))
-    if wanted.view is View.DIFFERENCE:
-        return difference_of(view)
-    return tail_of(view, upper=wanted.view is View.HIGH_TAIL) if wanted.view in TAILS else view
+    return quantile_view(points, wanted.n, wanted.family, plan.positions, location, scale, shapes(fit))
+
+
+def _seen(whole: QuantileView, view: View) -> QuantileView:
+    """What a view shows of the whole plot."""
+    from screener.plots import difference_of, tail_of
+
+    if view is View.DIFFERENCE:
+        return difference_of(whole)
+    return tail_of(whole, upper=view is View.HIGH_TAIL) if view in TAILS else whole
 
 
 def closest_words(fits: Sequence[dict[str, Any]], alpha: float, n: int) -> str:
@@ -103,11 +120,19 @@ def closest_words(fits: Sequence[dict[str, Any]], alpha: float, n: int) -> str:
     return comparison(p, [family_named(fit["family"]) for fit in fits], alpha, n)
 
 
-def _quantile_plot(run: RunFile, plan: Plan, wanted: Wanted, fit: dict[str, Any], charset: Charset) -> list[str]:
+def _quantile_plot(
+    run: RunFile, plan: Plan, wanted: Wanted, fit: dict[str, Any], charset: Charset
+) -> tuple[list[str], Tails]:
+    """The plot over the names of its outermost readings, where there is room for both; and these readings."""
     from screener.plots import quantile_plot
 
-    view = view_of(run, plan, wanted, fit)
-    return quantile_plot(view, width=wanted.width, height=wanted.height, charset=charset)
+    points = run.points(wanted.position)
+    whole = _whole(points, plan, wanted, fit)
+    tails = tails_of(points, run.outermost(wanted.position), whole)
+    named = tail_lines(tails, wanted.view, wanted.width) if wanted.height >= ROOM_FOR_TAILS else []
+    height = wanted.height - len(named)
+    plot = quantile_plot(_seen(whole, wanted.view), width=wanted.width, height=height, charset=charset)
+    return [*plot, *named], tails
 
 
 def _shape_plot(run: RunFile, plan: Plan, wanted: Wanted, charset: Charset) -> list[str]:

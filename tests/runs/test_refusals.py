@@ -80,10 +80,10 @@ def test_a_store_of_another_program(tmp_path: Path) -> None:
     assert not is_run_file(tmp_path / "a.run")
 
 
-@pytest.mark.parametrize(("schema", "way_out"), [(4, "Use the newer version"), (0, "Run `screener score` again.")])
+@pytest.mark.parametrize(("schema", "way_out"), [(5, "Use the newer version"), (0, "Run `screener score` again.")])
 def test_a_run_file_of_another_schema(tmp_path: Path, schema: int, way_out: str) -> None:
     path = changed(tmp_path / "a.run", f"PRAGMA user_version = {schema}")
-    with refused(f"it has schema {schema}, this version needs 3", way_out):
+    with refused(f"it has schema {schema}, this version needs 4", way_out):
         RunFile.open(path)
     assert is_run_file(path)
 
@@ -216,4 +216,4 @@ def test_the_header_says_what_the_file_is(tmp_path: Path) -> None:
     """At the offsets that the published SQLite file format gives, so that `file` and others can tell."""
     header = changed(tmp_path / "a.run").read_bytes()[:100]
     assert struct.unpack_from(">I", header, 68) == (0x5343524E,)
-    assert struct.unpack_from(">I", header, 60) == (3,)
+    assert struct.unpack_from(">I", header, 60) == (4,)

@@ -91,7 +91,8 @@ class PseudoTerminal:
         while time.monotonic() < end:
             if wanted in self.text if isinstance(wanted, str) else wanted(self.text):
                 return self.text
-            self.read(0.05)
+            if not self.read(0.05) and self.process.poll() is not None and not self.read(0.05):
+                break
         raise AssertionError(f"Waited in vain for {wanted!r}; the screen shows:\n{self.text}")
 
     def exit_code(self) -> int:

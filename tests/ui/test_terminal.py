@@ -40,6 +40,18 @@ ENDLESS = """
 
     sys.exit(run_screen(Source("endless.csv", start, None)))
 """
+CRASHING = """
+    import sys
+    from pathlib import Path
+    from screener.ui import Source, run_screen
+    from screener.ui.widgets.channel_table import ChannelTable
+
+    def crash(*_, **__):
+        raise RuntimeError("crash of a test")
+
+    ChannelTable.show = crash
+    sys.exit(run_screen(Source("made.run", None, Path("made.run"))))
+"""
 DUMB = """
     import sys
     from pathlib import Path
@@ -57,7 +69,7 @@ CURSOR_SHOWN = b"\x1b[?25h"
 
 def environment(**more: str) -> dict[str, str]:
     """What a user's shell hands down, without anything of this test run."""
-    kept = {name: os.environ[name] for name in ("PATH", "HOME") if name in os.environ}
+    kept = {name: os.environ[name] for name in ("PATH", "HOME", "PYTHONPATH") if name in os.environ}
     return {**kept, "TERM": "xterm-256color", "LANG": "C.UTF-8", **more}
 
 
@@ -169,6 +181,42 @@ def test_a_signal_to_end_restores_the_terminal(folder: Path, number: signal.Sign
         assert run.exit_code() == 128 + number
         assert MAIN_SCREEN_BACK in run.raw[-400:]
         assert CURSOR_SHOWN in run.raw[-400:]
+        assert run.attributes == run.attributes_before
+
+
+def test_ctrl_z_hands_the_terminal_back_and_fg_brings_the_screen_back(folder: Path) -> None:
+    with PseudoTerminal(
+        ["bash", "--norc", "--noprofile", "-i"], columns=80, rows=24, environment=environment(PS1="% "), folder=folder
+    ) as shell:
+        shell.wait_for("% ")
+        shell.send(f"{sys.executable} -m screener made.run; echo left with $?\r")
+        shell.wait_for("1 of 240 channels")
+        shell.send("\x1b[B")
+        shell.wait_for("2 of 240 channels")
+        shell.send("\x1a")
+        shell.wait_for("Stopped")
+        shell.send("echo cooked $((6 * 7))\r")
+        shell.wait_for("cooked 42")
+        shell.send("fg\r")
+        shell.wait_for("2 of 240 channels")
+        shell.send("\x1b[B")
+        shell.wait_for("3 of 240 channels")
+        shell.send("q")
+        shell.wait_for(lambda _: shell.raw.count(MAIN_SCREEN_BACK) == 2)
+        shell.send("stty -a; exit\r")
+        shell.exit_code()
+        settings = shell.raw.rpartition(MAIN_SCREEN_BACK)[2].split()
+        assert {b"icanon", b"echo", b"isig"} <= set(settings)
+
+
+def test_a_crash_restores_the_terminal_and_says_where_the_run_file_is(folder: Path) -> None:
+    with program(folder, CRASHING) as run:
+        run.wait_for("crash of a test")
+        assert run.exit_code() != 0
+        last = run.raw.rpartition(MAIN_SCREEN_BACK)[2].decode()
+        assert CURSOR_SHOWN in run.raw
+        assert "What was scored is in the run file 'made.run'." in last
+        assert "RuntimeError: " in last
         assert run.attributes == run.attributes_before
 
 

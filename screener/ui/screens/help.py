@@ -13,13 +13,13 @@ KEYS = """\
   [ ]           the plot against the previous or next family; also Left and Right
   /  n          find a channel by a part of its name; the next one
   f             only the flagged channels, or all
-  w             only channels where a word is found (not scored, leave out, ...) or a condition holds, in SQL over the
-                export columns: r < 0.98 AND n > 100; an empty one shows all
+  w             only channels where a word is found (not scored, leave out, ...) or a condition holds, in SQL over the \
+export columns: r < 0.98 AND n > 100; an empty one shows all
   s  S          sort by the next column; reverse the order
   0 to 9        sort in table order, or by verdict, channel, n, r, critical r, p, off, closest, decision; again reverses
   c             choose the columns
-  v  V          the next or previous view of the channel: quantile plot, actual minus expected, low tail, high tail,
-                run order, lag, histogram, all families
+  v  V          the next or previous view of the channel: quantile plot, actual minus expected, low tail, high tail, \
+run order, lag, histogram, all families
   Space  m      mark the channel; mark all rows shown, or none. What is decided or noted then is so for all marked
   u t x l       decide: use as it is, use transformed, leave out, look again; the letter stands beside the verdict
   d  a          take the decision back; add a note
@@ -38,6 +38,7 @@ COLUMNS = """\
   critical r    a channel truly of that family has a smaller r with probability alpha
   p             probability of so small an r, or a smaller one, for a channel truly of that family
   low-high      actual minus expected, from the low to the high tail: half height is on the line, up is above it
+  conditions    what lowers r by itself: rounded, serial, clipped, stuck, drifting; also in the line under the table
   off (sd)      rms distance of the readings from the line in standard deviations: how much, where p says how sure
   closest       the family closest to the channel, where that was looked for"""
 
@@ -47,7 +48,8 @@ METHOD = (
     "or scale. Its distribution for channels truly of the family was simulated, and gives the critical value and p. "
     "The plot shows actual readings against expected ones, location + scale x G(u), with the line on which they are "
     "equal; lognormal, Weibull and log-logistic are plotted in ln x. Bends at both ends mean heavy or light tails, a "
-    "bow means skew."
+    "bow means skew. Under it stand the outermost readings: value, row, and in brackets actual minus expected (in ln x "
+    "for families plotted so)."
 )
 
 BAND = (
@@ -62,8 +64,9 @@ CAUTIONS = (
     "Not flagged is not proof of normality: with few readings large departures pass, and r is weak against light tails "
     "and clusters.",
     "With very many readings small departures are flagged; look at the distance off the line before acting.",
-    "Critical values hold for independent, unrounded readings. Coarse steps, clipping, drift and readings that follow "
-    "each other in time lower r by themselves.",
+    "Coarse steps, clipping, drift and readings that follow each other in time lower r by themselves. Critical values "
+    "against the normal allow for steps and for following in time; those of other families and of clipped channels "
+    "hold for independent, unrounded, complete readings.",
     "Among many channels some are flagged by chance; the line under the title says how many to expect.",
     "Figures for safety, health or regulated characteristics need the governing standard, local codes, and licensed or "
     "qualified practice; this screen does not replace them.",
