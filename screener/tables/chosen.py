@@ -28,6 +28,8 @@ def choose(names: Sequence[str], plan: Plan) -> Choice:
     Raises:
         PlanError: no column matches `plan.channels`, or `plan.skip` leaves none.
     """
+    if not (plan.channels or plan.skip or plan.expect):
+        return Choice({}, frozenset(), ())
     reasons = {at: NOT_ASKED for at, name in enumerate(names) if plan.channels and not _matched(name, plan.channels)}
     if len(reasons) == len(names):
         raise PlanError(f"No column matches {_quoted(plan.channels)}. The table has {shortlist(names, 5)}.")

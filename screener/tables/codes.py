@@ -44,11 +44,10 @@ def proposed_codes(
 
 def _parts(frame: pl.DataFrame | pl.LazyFrame, columns: Sequence[str], rows: int) -> Iterator[pl.DataFrame]:
     """The columns, so many at a time."""
-    held = frame if isinstance(frame, pl.DataFrame) and frame.width == len(columns) else None
-    width = max(1, (_BATCH_READINGS if held is None else _HELD_READINGS) // rows)
+    width = max(1, (_HELD_READINGS if isinstance(frame, pl.DataFrame) else _BATCH_READINGS) // rows)
     for start in range(0, len(columns), width):
-        stop = start + width
-        yield frame.lazy().select(columns[start:stop]).collect() if held is None else held[:, start:stop]
+        some = list(columns[start : start + width])
+        yield frame[some] if isinstance(frame, pl.DataFrame) else frame.select(some).collect()
 
 
 def _far_reaching(frame: pl.DataFrame) -> list[pl.Series]:

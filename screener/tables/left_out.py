@@ -33,7 +33,7 @@ def only_readings(
     told = Told()
     if irregular:
         frame, rows, told = _without_other_rows(frame, rows, source, layout)
-    return _without_sums(frame, rows, told)
+    return _without_sums(frame, rows, told, len(layout.names))
 
 
 def _without_other_rows(frame: Frame, rows: int, source: Path | bytes, layout: Layout) -> tuple[Frame, int, Told]:
@@ -45,9 +45,9 @@ def _without_other_rows(frame: Frame, rows: int, source: Path | bytes, layout: L
     return _without(frame, at), rows - len(at), Told(tuple(words), tuple(widths.remarks()))
 
 
-def _without_sums(frame: Frame, rows: int, told: Told) -> tuple[Frame, int, Told]:
-    schema = frame.collect_schema()
-    sums = sums_at_end(frame.lazy(), rows) if len(schema) > 1 and schema.dtypes()[0] == pl.String else {}
+def _without_sums(frame: Frame, rows: int, told: Told, columns: int) -> tuple[Frame, int, Told]:
+    first = frame.lazy().select(pl.nth(0)).collect_schema().dtypes()[0]
+    sums = sums_at_end(frame.lazy(), rows) if columns > 1 and first == pl.String else {}
     if not sums:
         return frame, rows, told
     named = ", ".join(repr(visible(cell)) for cell in list(sums.values())[:3])
@@ -59,5 +59,7 @@ def _without(frame: Frame, at: Sequence[int]) -> Frame:
     """The frame without these rows."""
     if not at:
         return frame
+    if isinstance(frame, pl.DataFrame):
+        return frame.filter(~pl.Series(np.isin(np.arange(len(frame)), at)))
     gone = pl.Series(at, dtype=pl.UInt32)
     return frame.with_row_index("row").filter(~pl.col("row").is_in(gone.implode())).drop("row")

@@ -56,9 +56,11 @@ class _Text:
     forms: Forms | None = None
 
 
-def sift(raw: RawTable, shown: Mapping[str, str], choice: Choice, missing: Sequence[str]) -> Sifted:
-    """Every column of the table, either among the channels or with a reason; `shown` gives each column's name."""
-    schema = raw.frame.collect_schema()
+def sift(raw: RawTable, schema: pl.Schema, shown: Mapping[str, str], choice: Choice, missing: Sequence[str]) -> Sifted:
+    """Every column of the table, either among the channels or with a reason; `shown` gives each column's name.
+
+    `schema` is that of the raw frame.
+    """
     reasons = {column: choice.reasons[at] for at, column in enumerate(schema) if at in choice.reasons}
     for column, dtype in schema.items():
         if column not in reasons and (reason := reason_for_type(dtype)):

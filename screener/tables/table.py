@@ -116,8 +116,9 @@ def _check_size(path: Path, rows: int, most_bytes: int) -> None:
 def _sifted(path: Path, plan: Plan, raw: RawTable) -> tuple[TableFacts, Sifted]:
     shown, name_remarks = labels(raw.names, raw.units)
     choice = choose([label.name for label in shown], plan)
-    stored = raw.frame.collect_schema().names()
-    sifted = sift(raw, dict(zip(stored, (label.name for label in shown), strict=True)), choice, plan.missing)
+    schema = raw.frame.collect_schema()
+    stored = schema.names()
+    sifted = sift(raw, schema, dict(zip(stored, (label.name for label in shown), strict=True)), choice, plan.missing)
     by_column = dict(zip(stored, shown, strict=True))
     set_aside = tuple(SetAside(by_column[c].name, sifted.reasons[c]) for c in stored if c in sifted.reasons)
     if not sifted.columns:
