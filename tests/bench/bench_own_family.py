@@ -1,6 +1,6 @@
 """Rejected share of samples that truly come from each family, at typical shapes: alpha is held to between 4 and 6 %.
 
-python tests/bench/bench_own_family.py [samples]
+python tests/bench/bench_own_family.py [samples] [family ...]
 """
 
 import sys
@@ -9,7 +9,7 @@ import numpy as np
 from threadpoolctl import threadpool_limits
 
 from screener.stats.correlation import fit_families
-from screener.stats.families import FAMILIES, Axis, Family
+from screener.stats.families import FAMILIES, Axis, Family, family_named
 from screener.stats.null.packing import shipped_nulls
 from screener.stats.null.simulate import LOGIT_GRID, sorted_uniforms
 
@@ -41,7 +41,7 @@ def main() -> None:
     print(f"rejected at alpha = 5 %, in percent; {samples:,} samples a cell, standard error {error:.2f}")
     print(f"{'family':<40}" + "".join(f"{n:>8}" for n in SIZES))
     missed = 0
-    for family in FAMILIES:
+    for family in map(family_named, sys.argv[2:]) if sys.argv[2:] else FAMILIES:
         for shapes in family.typical:
             shares = [100 * rejected(family, shapes, n, samples) for n in SIZES]
             marks = ["" if 4.0 <= share <= 6.0 else "!" for share in shares]

@@ -11,7 +11,7 @@ from screener.records import NullsPrepared
 from screener.screening.null_source import held_nulls, null_folder, nulls_for
 from screener.stats.families import family_named
 from screener.stats.null.nulls import Nulls
-from screener.stats.null.packing import shipped_nulls
+from screener.stats.null.packing import NULL_VERSION, shipped_nulls
 
 SHARE = 0.02
 
@@ -74,7 +74,7 @@ def test_a_cancelled_preparation_gives_nothing_and_goes_on_later() -> None:
 
 def test_a_damaged_full_table_is_not_believed(tmp_path: Path) -> None:
     (tmp_path / "screener" / "nulls").mkdir(parents=True)
-    (tmp_path / "screener" / "nulls" / "blom-version2.npz").write_bytes(b"PK\x03\x04 rubbish")
+    (tmp_path / "screener" / "nulls" / f"blom-version{NULL_VERSION}.npz").write_bytes(b"PK\x03\x04 rubbish")
     assert held_nulls("blom") is None
 
 

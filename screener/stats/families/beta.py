@@ -30,12 +30,26 @@ def coordinates(alpha: float, beta: float) -> tuple[float, ...]:
     return float(np.hypot(alpha**-0.5, beta**-0.5)), float(np.arctan2(beta**-0.5, alpha**-0.5))
 
 
+def mean_and_deviation(alpha: FloatArray, beta: FloatArray) -> tuple[FloatArray, FloatArray]:
+    """Mean and standard deviation."""
+    both = alpha + beta
+    return alpha / both, np.sqrt(alpha * beta / (both + 1.0)) / both
+
+
 FAMILY = Family(
     name="beta",
     support=Support.INTERVAL,
     quantile=quantile,
     arises_from="fractions, bounded by both ends",
-    shapes=ShapeGrid(("alpha", "beta"), ((0.05, 2.0, 13), (0.03, np.pi / 2 - 0.03, 13)), parameters, coordinates),
+    shapes=ShapeGrid(
+        ("alpha", "beta"),
+        ((0.05, 2.0, 13), (0.03, np.pi / 2 - 0.03, 13)),
+        parameters,
+        coordinates,
+        nodes=(20, 28),
+        angle=True,
+    ),
+    centre_and_width=mean_and_deviation,
     typical=((0.7, 0.7), (2.0, 5.0), (8.0, 3.0), (30.0, 40.0)),
     costly=True,
 )

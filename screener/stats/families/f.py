@@ -40,12 +40,25 @@ def coordinates(d1: float, d2: float) -> tuple[float, ...]:
     return float(np.hypot(across, up)), float(np.arctan2(up, across))
 
 
+def centre_and_width(d1: FloatArray, d2: FloatArray) -> tuple[FloatArray, FloatArray]:
+    """Mean and standard deviation for many degrees of freedom; finite for few."""
+    return np.ones_like(d1), np.sqrt(2.0 / d1 + 2.0 / d2)
+
+
 FAMILY = Family(
     name="F",
     support=Support.HALF_LINE,
     quantile=quantile,
     arises_from="ratios of variances",
-    shapes=ShapeGrid(("d1", "d2"), ((0.05, 1.42, 13), (0.03, np.pi / 2 - 0.03, 13)), parameters, coordinates),
+    shapes=ShapeGrid(
+        ("d1", "d2"),
+        ((0.05, 1.42, 13), (0.03, np.pi / 2 - 0.03, 13)),
+        parameters,
+        coordinates,
+        nodes=(28, 24),
+        angle=True,
+    ),
+    centre_and_width=centre_and_width,
     typical=((4.0, 8.0), (10.0, 30.0), (30.0, 200.0)),
     costly=True,
 )

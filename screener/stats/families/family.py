@@ -33,11 +33,15 @@ class ShapeGrid:
     names: tuple[str, ...]
     """The shape parameters."""
     axes: tuple[tuple[float, float, int], ...]
-    """First and last coordinate of each axis, and how many points it has; as many axes as shapes."""
+    """First and last coordinate of each axis, and the points that its places are counted by; one for each shape."""
     parameters: Callable[..., tuple[FloatArray, ...]]
     """The shape parameters at coordinates, one array for each axis."""
     coordinates: Callable[..., tuple[float, ...]]
     """The coordinates of shape parameters: the inverse, for single numbers."""
+    nodes: tuple[int, ...]
+    """Places along each axis at which quantiles are tabled, enough for r between them to hold eight digits."""
+    angle: bool = False
+    """The last coordinate is an angle, and its range symmetric in a quarter of a turn."""
     coordinate_name: str = ""
     """What the coordinate of a single shape is, for the axis of a plot."""
 
@@ -57,12 +61,25 @@ class ShapeGrid:
         steps = [(at - first) / (last - first) * (count - 1) for (first, last, count), at in pairs]
         return np.clip(steps, 0.0, np.array(self.counts) - 1.0)
 
-    def points(self) -> FloatArray:
-        """All grid points, float64[points, axes] in steps, the last axis running fastest."""
-        return np.stack([axis.ravel() for axis in np.indices(self.counts)], axis=1).astype(np.float64)
+    def smooth(self, places: FloatArray) -> FloatArray:
+        """Steps, float64[..., axes], of places from -1 to 1 along each axis, in which quantiles are smoothest.
+
+        For an angle that is the cosine of its double, on either side of which shapes change places.
+        """
+        part = 0.5 * (places + 1.0)
+        if self.angle:
+            first, last, _ = self.axes[-1]
+            double = np.arccos(-np.cos(2.0 * first) * places[..., -1])
+            part[..., -1] = np.clip((0.5 * double - first) / (last - first), 0.0, 1.0)
+        return np.asarray(part * (np.array(self.counts) - 1.0), dtype=np.float64)
 
 
-NO_SHAPES = ShapeGrid((), (), lambda: (), lambda: ())
+NO_SHAPES = ShapeGrid((), (), lambda: (), lambda: (), ())
+
+
+def standard(*shapes: FloatArray) -> tuple[FloatArray, FloatArray]:
+    """Centre 0 and width 1, whatever the shapes."""
+    return np.zeros_like(shapes[0]), np.ones_like(shapes[0])
 
 
 @dataclass(frozen=True, slots=True)
@@ -76,6 +93,8 @@ class Family:
     arises_from: str
     axis: Axis = Axis.LINEAR
     shapes: ShapeGrid = NO_SHAPES
+    centre_and_width: Callable[..., tuple[FloatArray, FloatArray]] = standard
+    """In closed form, from the shapes: how quantiles lie and spread, but for factors that change smoothly."""
     typical: tuple[tuple[float, ...], ...] = ((),)
     """Shape parameters at which the laws of all families are tested."""
     diagnostic: bool = False

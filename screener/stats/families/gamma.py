@@ -22,12 +22,18 @@ def parameters(coordinate: FloatArray) -> tuple[FloatArray, ...]:
     return (coordinate**-2.0,)
 
 
+def mean_and_deviation(k: FloatArray) -> tuple[FloatArray, FloatArray]:
+    """Mean and standard deviation."""
+    return k, np.sqrt(k)
+
+
 FAMILY = Family(
     name="gamma",
     support=Support.HALF_LINE,
     quantile=quantile,
     arises_from="sums of waiting times",
-    shapes=ShapeGrid(("k",), ((0.02, 2.0, 21),), parameters, lambda k: (k**-0.5,), "1/sqrt(k)"),
+    shapes=ShapeGrid(("k",), ((0.02, 2.0, 21),), parameters, lambda k: (k**-0.5,), (24,), coordinate_name="1/sqrt(k)"),
+    centre_and_width=mean_and_deviation,
     typical=((0.5,), (2.0,), (9.0,), (100.0,)),
     costly=True,
 )

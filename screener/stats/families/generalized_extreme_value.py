@@ -24,6 +24,6 @@ FAMILY = Family(
     support=Support.WHOLE_LINE,
     quantile=quantile,
     arises_from="block maxima",
-    shapes=ShapeGrid(("xi",), ((-1.0, 1.0, 41),), lambda at: (at,), lambda xi: (xi,), "xi"),
+    shapes=ShapeGrid(("xi",), ((-1.0, 1.0, 41),), lambda at: (at,), lambda xi: (xi,), (44,), coordinate_name="xi"),
     typical=((-0.5,), (-0.1,), (0.0,), (0.2,), (0.6,)),
 )

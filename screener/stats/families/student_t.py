@@ -30,6 +30,6 @@ FAMILY = Family(
     support=Support.WHOLE_LINE,
     quantile=quantile,
     arises_from="mixtures of normal spreads",
-    shapes=ShapeGrid(("nu",), ((0.0, 1.0, 21),), parameters, lambda nu: (1.0 / nu,), "1/nu"),
+    shapes=ShapeGrid(("nu",), ((0.0, 1.0, 21),), parameters, lambda nu: (1.0 / nu,), (28,), coordinate_name="1/nu"),
     typical=((1.5,), (3.0,), (10.0,), (60.0,)),
 )

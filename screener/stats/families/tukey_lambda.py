@@ -24,7 +24,9 @@ FAMILY = Family(
     support=Support.WHOLE_LINE,
     quantile=quantile,
     arises_from="how heavy a symmetric tail is",
-    shapes=ShapeGrid(("lambda",), ((-1.0, 2.0, 61),), lambda at: (at,), lambda value: (value,), "lambda"),
+    shapes=ShapeGrid(
+        ("lambda",), ((-1.0, 2.0, 61),), lambda at: (at,), lambda value: (value,), (56,), coordinate_name="lambda"
+    ),
     typical=((-0.5,), (0.0,), (0.14,), (0.5,), (1.0,)),
     diagnostic=True,
 )

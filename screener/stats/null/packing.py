@@ -17,7 +17,7 @@ from screener.stats.null.shaped import ShapedTable
 from screener.stats.null.simulate import simulated_log_gap
 from screener.stats.null.table import NullTable
 
-NULL_VERSION = "2"
+NULL_VERSION = "3"
 """Raised when the statistic, a grid or the way of simulating changes, so that older tables are not believed."""
 
 SHIPPED = "filliben.npz"
