@@ -35,7 +35,10 @@ def matching(results: pl.DataFrame, condition: str) -> pl.Series:
         # An expression only: whole queries, which could read files, are refused.
         found = results.select(RESULT_COLUMNS.keys()).select(pl.sql_expr(condition).alias("found"))["found"]
     except pl.exceptions.ColumnNotFoundError as error:
-        raise ConditionError(f"There is no column {_named(error)!r}. Columns: {', '.join(RESULT_COLUMNS)}") from error
+        columns = ", ".join(RESULT_COLUMNS)
+        raise ConditionError(
+            f"There is no column {_named(error)!r} (a text stands in single quotes). Columns: {columns}"
+        ) from error
     except (PolarsError, ValueError, TypeError) as error:
         raise ConditionError(f"Couldn't use that condition: {_told(error)}. {EXAMPLE}") from error
     if found.dtype != pl.Boolean or found.len() not in {1, results.height}:
@@ -68,4 +71,4 @@ def _named(error: PolarsError) -> str:
 def _told(error: Exception) -> str:
     """The first line of what the library says, without a full stop."""
     lines = str(error).splitlines() or [type(error).__name__]
-    return shown(lines[0]).rstrip(". ")
+    return shown(lines[0]).removesuffix(" as Expr").rstrip(". ")

@@ -39,7 +39,7 @@ def test_rows_that_fulfil_it_are_found(results: pl.DataFrame, condition: str, sa
     ("condition", "said"),
     [
         ("r <", "Couldn't use that condition"),
-        ("rr < 0.5", "There is no column 'rr'. Columns: channel, unit, n,"),
+        ("rr < 0.5", "There is no column 'rr' (a text stands in single quotes). Columns: channel, unit, n,"),
         ("r + 1", "neither true nor false"),
         ("max(r) = 'x'", "Couldn't use that condition"),
         ("sausage", "No channel has 'sausage' in its verdict"),

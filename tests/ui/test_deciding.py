@@ -85,11 +85,24 @@ async def test_a_wrong_condition_is_explained_in_place_and_a_right_one_filters(r
     async with reviewed.run_test(size=(140, 24)) as pilot:
         await shows(pilot, "1 of 60 channels")
         await pilot.press("w", *"rr < 1", "enter")
-        await shows(pilot, "There is no column 'rr'. Columns: channel, unit, n,")
+        await shows(pilot, "There is no column 'rr' (a text stands in single quotes). Columns: channel, unit, n,")
         await pilot.press("home", "delete", "enter")
         await shows(pilot, "of 52 channels where r < 1")
         await pilot.press("w", *["backspace"] * 9, "enter")
         await shows(pilot, "of 60 channels, table order")
+
+
+async def test_a_long_notice_is_shown_whole_on_a_narrow_screen_and_gone_with_the_next_key(
+    reviewed: ScreenerApp,
+) -> None:
+    async with reviewed.run_test(size=(80, 24)) as pilot:
+        await shows(pilot, "1 of 60 channels")
+        await pilot.press("w", *"verdict = flagged", "enter")
+        text = await shows(pilot, "There is no column 'flagged'")
+        assert "closest_p, advice, decision, note" in " ".join(text.split())
+        await pilot.press("escape", "down")
+        await shows(pilot, "2 of 60 channels")
+        assert screen_text(pilot.app).splitlines()[-2].startswith("2 of 60 channels")
 
 
 async def test_rows_are_filtered_by_what_was_decided(reviewed: ScreenerApp) -> None:

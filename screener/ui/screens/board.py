@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import textwrap
 from dataclasses import replace
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
@@ -34,6 +35,8 @@ if TYPE_CHECKING:
 
 WIDE = 110
 LEAST_WIDTH, LEAST_HEIGHT = 60, 15
+NOTICE_LINES = 5
+"""Lines that a long notice may take from the table."""
 
 
 class Board(Screen[None]):
@@ -251,13 +254,22 @@ class Board(Screen[None]):
 
     def _show_status(self) -> None:
         if self._notice:
-            self._line("status", plain(self._notice, NOTICE))
+            self._show_notice()
             return
+        self.query_one("#status").styles.height = 1
         now, rows = self._showing, self._table.row_count
         place = place_words(self._table.cursor, rows, flagged_only=now.flagged_only, condition=now.condition)
         order = order_words(now.sort, falling=now.falling)
         marked = f"   {len(self._marked):,} marked" if self._marked else ""
         self._line("status", [(f"{place}, {order}", QUIET), (marked + channel_words(self._table.channel), PLAIN)])
+
+    def _show_notice(self) -> None:
+        """The notice in as many lines as it needs, within reason."""
+        text = self._notice if self._unicode else ascii_only(self._notice)
+        lines = textwrap.wrap(text, max(20, self.size.width))[:NOTICE_LINES]
+        status = self.query_one("#status", Lines)
+        status.styles.height = len(lines)
+        status.show([plain(line, NOTICE) for line in lines])
 
     def _line(self, name: str, line: Line) -> None:
         if not self._unicode:
