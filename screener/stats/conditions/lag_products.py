@@ -12,7 +12,7 @@ FloatArray = NDArray[np.float64]
 
 LAGS = 16
 """Lags 0 to LAGS of one resolution."""
-PIECE = 1024
+PIECE = 2048
 """Readings of a piece, at most: few enough to stay in the processor's cache."""
 
 
