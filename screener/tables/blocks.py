@@ -9,6 +9,8 @@ FIRST_BYTES = 4_000_000
 """The first blocks are small, so that the first rows come soon, and the last ones, so that no thread waits long."""
 GROWN = 4
 """Times the first block that others may hold: what scoring costs a block is shared by more channels."""
+MOST_CHANNELS = 5000
+"""Channels of a block, however short they are: what is known of more of them does not stay in the processor's cache."""
 SHARE = 4
 """Blocks that what is left is cut into at the least."""
 _READING_BYTES = 8
@@ -22,7 +24,8 @@ def spans(facts: TableFacts, first_bytes: int = FIRST_BYTES, most_bytes: int | N
     """
     count, channel_bytes = len(facts.channels), _READING_BYTES * max(1, facts.rows)
     most_bytes = GROWN * first_bytes if most_bytes is None else most_bytes
-    least, most = (max(1, size // channel_bytes) for size in (min(first_bytes, most_bytes), most_bytes))
+    sizes = min(first_bytes, most_bytes), most_bytes
+    least, most = (max(1, min(MOST_CHANNELS, size // channel_bytes)) for size in sizes)
     width = least
     cut: list[Span] = []
     first = 0

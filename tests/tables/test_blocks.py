@@ -36,3 +36,8 @@ def test_blocks_grow_to_sixteen_megabytes_and_shrink_towards_the_end(rows: int, 
     assert max(widths, default=0) * rows * 8 <= max(16_000_000, 8 * rows)
     # Behind any block but the last ones there is work for three more threads.
     assert all(span.stop - span.first <= max(widths[0], (channels - span.first) // 4) for span in cut)
+
+
+@pytest.mark.parametrize("rows", [0, 10, 100])
+def test_a_block_of_short_channels_holds_five_thousand(rows: int) -> None:
+    assert [span.stop for span in spans(facts(rows, 12_000))] == [5000, 10_000, 12_000]
