@@ -30,9 +30,9 @@ class Spool:
 
     def __init__(self) -> None:
         home = _home()
-        sweep(home)
-        self.folder = Path(tempfile.mkdtemp(dir=home))
-        lock = os.open(self.folder / _LOCK, os.O_CREAT | os.O_RDWR, 0o600)
+        with roomy(home / "new"):
+            self.folder = Path(tempfile.mkdtemp(dir=home))
+            lock = os.open(self.folder / _LOCK, os.O_CREAT | os.O_RDWR, 0o600)
         fcntl.flock(lock, fcntl.LOCK_EX)
         self.remove = weakref.finalize(self, _remove, self.folder, lock)
 
@@ -67,11 +67,15 @@ def roomy(folder: Path) -> Iterator[None]:
         raise _no_room(folder) from error
 
 
-def sweep(home: Path) -> None:
-    """Remove what killed programs left behind."""
-    for folder in home.iterdir():
-        with suppress(OSError):
-            _remove_if_left(folder)
+def sweep() -> None:
+    """Remove what killed programs left behind, if anything."""
+    with suppress(OSError):
+        home = _place()
+        if home.is_symlink() or home.stat().st_uid != os.getuid():
+            return
+        for folder in home.iterdir():
+            with suppress(OSError):
+                _remove_if_left(folder)
 
 
 def _remove_if_left(folder: Path) -> None:
@@ -88,9 +92,16 @@ def _remove_if_left(folder: Path) -> None:
         os.close(lock)
 
 
+def _place() -> Path:
+    return Path(tempfile.gettempdir()) / f"screener-{os.getuid()}"
+
+
 def _home() -> Path:
     """The folder of this user's spools; only the user may enter it."""
-    home = Path(tempfile.gettempdir()) / f"screener-{os.getuid()}"
+    try:
+        home = _place()
+    except OSError as error:
+        raise TableError("Couldn't keep the table: no folder takes temporary files. Set TMPDIR.") from error
     try:
         home.mkdir(mode=0o700, exist_ok=True)
         mine = home.stat().st_uid == os.getuid()

@@ -23,7 +23,7 @@ from screener.tables.names import Label, labels, shortlist
 from screener.tables.raw import RawTable
 from screener.tables.sifting import Sifted, sift
 from screener.tables.sources import Source, source_named
-from screener.tables.spool import Spool
+from screener.tables.spool import Spool, sweep
 
 HELD_BYTES = 2 << 30
 """A table whose readings take more than this is left in its columnar file."""
@@ -77,6 +77,7 @@ def open_table(path: Path, plan: Plan, *, held_bytes: int = HELD_BYTES, most_byt
 
     One channel may take `most_bytes`, half of the machine's memory unless given.
     """
+    sweep()
     source = source_named(path)
     if source.address:
         loaded = [load_address(source.address, plan, held_bytes)]

@@ -102,8 +102,8 @@ def test_what_a_killed_program_left_is_removed_when_the_next_table_is_opened(tmp
         program.wait()
         assert left.exists()
     del other
-    table = open_table(tmp_path / "t.csv", Plan(), held_bytes=0)
-    assert not left.exists()
+    table = open_table(tmp_path / "t.csv", Plan())
+    assert not left.exists(), "also by a program that keeps nothing itself"
     assert readings_of(table)
 
 
@@ -193,3 +193,13 @@ def test_of_a_text_that_grows_whole_lines_are_read_and_fingerprinted(tmp_path: P
     size = int(table.facts.remarks[-1].split("first ")[1].split(" ")[0].replace(",", ""))
     (tmp_path / "copy.csv").write_bytes(path.read_bytes()[:size])
     assert open_table(tmp_path / "copy.csv", Plan()).facts.fingerprint == table.facts.fingerprint
+
+
+def test_without_a_place_for_temporary_files_only_what_needs_one_is_refused(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    FRAME.write_csv(tmp_path / "t.csv")
+    monkeypatch.setattr("tempfile.tempdir", str(tmp_path / "t.csv"))
+    assert open_table(tmp_path / "t.csv", Plan()).facts.rows == len(FRAME)
+    with pytest.raises(TableError, match=r"^Couldn't make temporary folder .*: Not a directory\. Set TMPDIR\.$"):
+        open_table(tmp_path / "t.csv", Plan(), held_bytes=0)
