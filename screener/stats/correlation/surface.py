@@ -205,7 +205,10 @@ def _form(surface: FloatArray, axes: tuple[Axis, Axis], at: FloatArray) -> Float
 def _step(place: FloatArray, form: FloatArray, reach: FloatArray, axes: tuple[Axis, Axis]) -> FloatArray:
     """Newton's step up, float64[C, 2], within the square, no longer than reach along its two principal directions."""
     slope, bends = form[:, (1, 0), (0, 1)], form[:, (2, 0), (0, 2)]
-    free = (place * np.sign(slope) < 1.0) & np.array([along.points.size > 1 for along in axes])
+    if axes[1].points.size == 1:
+        length = _within(slope / np.maximum(np.abs(bends), LEAST_BEND), reach[:, None])
+        return np.asarray(_within(place + length, 1.0) - place, dtype=np.float64)
+    free = place * np.sign(slope) < 1.0
     twist = np.where(free.all(axis=1), form[:, 1, 1], 0.0)
     step = np.where(free, _newton(np.where(free, slope, 0.0), bends, twist, reach), 0.0)
     inside = _within(place + step, 1.0) - place
