@@ -59,3 +59,11 @@ def test_a_unit_that_the_name_already_has_is_not_repeated() -> None:
 
 def test_control_characters_in_a_name_are_written_out() -> None:
     assert "\x1b" not in told(FIT, channel="a\x1b[2J", unit="\x9b")[0]
+
+
+def test_a_matched_critical_value_stands_before_the_textbook_one() -> None:
+    lines = told({**FIT, "critical_r": 0.97, "plain_critical_r": 0.9996})
+    assert lines[2:4] == [
+        "r 0.9775 not below critical 0.9700 (matched)",
+        "p 2.7e-18 (extrapolated)   textbook 0.999600",
+    ]

@@ -63,19 +63,24 @@ def _evidence(drawing: Drawing) -> Line:
         return plain(f"r {r_text(r)}")
     below = r < critical
     relation = "! below" if below else "not below"
-    textbook = fit.get("plain_critical_r")
-    matched = f" (matched; textbook {r_text(textbook)})" if textbook not in {None, critical} else ""
     return [
         (f"r {r_text(r)} ", PLAIN),
         (f"{relation} critical {r_text(critical)}", FLAGGED if below else PLAIN),
-        (matched, QUIET),
+        (" (matched)" if _textbook(drawing) else "", QUIET),
     ]
+
+
+def _textbook(drawing: Drawing) -> str:
+    """The textbook critical value, where the channel is held against another."""
+    textbook = drawing.fit.get("plain_critical_r")
+    return "" if textbook in {None, drawing.fit.get("critical_r")} else r_text(textbook)
 
 
 def _probability(drawing: Drawing) -> str:
     p = drawing.fit.get("p")
     beyond = " (extrapolated)" if drawing.fit.get("extrapolated") else ""
-    return "" if p is None else f"p {p_text(p)}{beyond}"
+    textbook = f"   textbook {_textbook(drawing)}" if _textbook(drawing) else ""
+    return "" if p is None else f"p {p_text(p)}{beyond}{textbook}"
 
 
 def _parameters(drawing: Drawing) -> Line:
