@@ -1,9 +1,11 @@
 """Readings kept in row order: all when few, else extremes of stretches and pairs of followers."""
 
+from itertools import pairwise
+
 import numpy as np
 import pytest
 
-from screener.stats.row_order import IN_FULL, kept_in_order, row_order
+from screener.stats.row_order import IN_FULL, STRETCHES, kept_in_order, row_order
 
 
 def test_few_readings_are_all_kept_with_gaps_where_they_are_missing() -> None:
@@ -38,3 +40,17 @@ def test_kept_readings_of_another_table_are_refused() -> None:
     for size, rows in ((4, 5), (10, 1000)):
         with pytest.raises(ValueError, match="in row order"):
             row_order(np.zeros(size), rows)
+
+
+@pytest.mark.parametrize("rows", [IN_FULL + 1, 767, 1023, 1024, 4001, 100_003])
+@pytest.mark.parametrize("missing", [0.0, 0.3, 0.9])
+def test_the_extremes_of_every_stretch_are_those_of_a_loop(rows: int, missing: float) -> None:
+    rng = np.random.default_rng(rows)
+    readings = rng.normal(size=(2, rows))
+    readings[rng.random(readings.shape) < missing] = np.nan
+    ends = [stretch * rows // STRETCHES for stretch in range(STRETCHES + 1)]
+    for channel, kept in zip(readings, kept_in_order(readings), strict=True):
+        for stretch, (first, stop) in enumerate(pairwise(ends)):
+            there = channel[first:stop][~np.isnan(channel[first:stop])].tolist()
+            assert kept[stretch] == (min(there) if there else pytest.approx(np.nan, nan_ok=True))
+            assert kept[STRETCHES + stretch] == (max(there) if there else pytest.approx(np.nan, nan_ok=True))
