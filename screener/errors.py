@@ -31,3 +31,7 @@ class PlanError(ScreenerError):
     """A plan asks for something impossible."""
 
     exit_code = 5
+
+
+class Cancelled(Exception):  # noqa: N818 -- not an error: the user asked for it
+    """Work was given up because the user asked to stop."""

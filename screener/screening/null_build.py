@@ -1,5 +1,7 @@
 """Building null tables part by part: in parallel, seeded, and resumable after a stop."""
 
+import os
+import threading
 import zipfile
 from collections.abc import Iterator, Mapping
 from concurrent.futures import Future, ThreadPoolExecutor, as_completed
@@ -52,7 +54,7 @@ def parts(tasks: Mapping[str, Task], folder: Path) -> dict[str, Arrays]:
 def write_arrays(arrays: Mapping[str, NDArray[np.generic]], path: Path) -> None:
     """Write arrays as a compressed file, whole or not at all."""
     path.parent.mkdir(parents=True, exist_ok=True)
-    partial = path.with_name(path.name + ".partial")
+    partial = path.with_name(f"{path.name}.{os.getpid()}-{threading.get_native_id()}.partial")
     with partial.open("wb") as stream:
         np.savez_compressed(stream, allow_pickle=False, **dict(arrays))
     partial.replace(path)

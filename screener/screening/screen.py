@@ -9,7 +9,7 @@ from typing import Protocol
 import numpy as np
 from numpy.typing import NDArray
 
-from screener.errors import PlanError, ScreenerError
+from screener.errors import Cancelled, PlanError, ScreenerError
 from screener.records import (
     Block,
     BlockFailed,
@@ -26,6 +26,7 @@ from screener.stats.closest import closest
 from screener.stats.conditions import conditions_of
 from screener.stats.families import FAMILIES, family_named
 from screener.stats.null.nulls import Nulls
+from screener.stats.null.on_demand import SimulatedNulls
 from screener.stats.outermost import outermost_rows
 from screener.stats.parts import part_summaries
 from screener.stats.scoring import score
@@ -52,24 +53,31 @@ def screen(
     *,
     spans: Sequence[Span],
     executor: Executor,
+    simulated: SimulatedNulls | None = None,
     ahead: int = 4,
     cancelled: Callable[[], bool] = lambda: False,
 ) -> Iterator[Event]:
     """Score the spans; nothing runs until the caller iterates, and stopping the iteration stops the work.
 
+    `simulated` holds what is simulated while scoring, for all blocks together.
     `ahead` is how many blocks are handed out before the oldest comes back: enough to keep every worker busy, few enough
     to bound memory.
     """
     started = time.monotonic()
     waiting = list(reversed(spans))
     running: dict[Future[BlockScores], Span] = {}
+    simulated = simulated or SimulatedNulls(cancelled=cancelled)
     while (waiting or running) and not cancelled():
         while waiting and len(running) < ahead:
             span = waiting.pop()
-            running[executor.submit(score_span, table, span, plan, null)] = span
+            running[executor.submit(score_span, table, span, plan, null, simulated)] = span
         finished, _ = wait(running, timeout=POLL_SECONDS, return_when=FIRST_COMPLETED)
         for future in sorted(finished, key=lambda future: running[future]):
-            yield _event(future, running.pop(future), table.facts)
+            span = running.pop(future)
+            if isinstance(future.exception(), Cancelled):
+                waiting.append(span)
+            else:
+                yield _event(future, span, table.facts)
     yield RunFinished(cancelled=bool(waiting or running), seconds=time.monotonic() - started)
 
 
@@ -96,11 +104,24 @@ def _expectation(text: str) -> tuple[str, int]:
     return pattern, FAMILIES.index(family_named(family))
 
 
-def score_span(table: ReadableTable, span: Span, plan: Plan, null: Nulls) -> BlockScores:
+def score_span(
+    table: ReadableTable, span: Span, plan: Plan, null: Nulls, simulated: SimulatedNulls | None = None
+) -> BlockScores:
     """Read and score the channels of one span."""
     block = table.read(span)
     channels = table.facts.channels[span.first : span.stop]
-    scoring = score(block.readings, FAMILIES, null, plan.alpha, match=plan.match)
+    held = held_against([channel.name for channel in channels], plan)
+    scoring = score(
+        block.readings,
+        FAMILIES,
+        null,
+        plan.alpha,
+        match=plan.match,
+        held=held,
+        simulated=simulated,
+        below=block.below,
+        above=block.above,
+    )
     fits = scoring.fits
     notes = tuple(tuple("outside support" if outside else "" for outside in row) for row in fits.outside)
     return BlockScores(
@@ -118,7 +139,7 @@ def score_span(table: ReadableTable, span: Span, plan: Plan, null: Nulls) -> Blo
         scale=fits.scale,
         notes=notes,
         shapes=fits.shapes,
-        held=held_against([channel.name for channel in channels], plan),
+        held=held,
         closest=closest(scoring.p, FAMILIES, plan.alpha),
         conditions=tuple(
             _conditions(channel, conditions_of(scoring.conditions, at)) for at, channel in enumerate(channels)

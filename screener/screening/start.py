@@ -11,6 +11,7 @@ from screener import __version__
 from screener.errors import PlanError, RunFileError
 from screener.records import BlockFailed, BlockScored, Event, Plan, RunFinished, TableFacts, TableOpened
 from screener.runs import RunFile, default_run_path, is_run_file
+from screener.screening.kept_samples import simulated_nulls
 from screener.screening.null_source import nulls_for
 from screener.screening.screen import held_against, screen
 from screener.screening.workers import blocks_at_once, bytes_at_work, most_in_block, thread_workers
@@ -54,7 +55,10 @@ def _scored(
         cut = spans(table.facts, most_bytes=most_in_block(jobs, budget))
         todo = [span for span in cut if not done.issuperset(range(span.first, span.stop))]
         ahead = blocks_at_once(jobs, block_bytes(table.facts, cut), budget)
-        for event in screen(table, plan, nulls, spans=todo, executor=executor, ahead=ahead, cancelled=cancelled):
+        simulated = simulated_nulls(cancelled)
+        for event in screen(
+            table, plan, nulls, spans=todo, executor=executor, simulated=simulated, ahead=ahead, cancelled=cancelled
+        ):
             if isinstance(event, BlockScored):
                 run.store(event.scores)
             elif isinstance(event, BlockFailed):

@@ -1,17 +1,20 @@
 """The scores of a block of channels: r, critical value and p against every family."""
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
 
+from screener.stats.censoring import Censoring, censoring_of, refit
 from screener.stats.conditions import Conditions, conditions_of, find_conditions
-from screener.stats.correlation import Fits, fit_families
+from screener.stats.correlation import Fits, fit_families, held_within
 from screener.stats.families import Family
 from screener.stats.families.family import FloatArray
-from screener.stats.null.matched import MatchedTable
+from screener.stats.matching import TABLED_FAMILY, Judgement, Matching, judged_in_doubt
+from screener.stats.null.condition import FEWEST_DISTINCT
 from screener.stats.null.nulls import Nulls
+from screener.stats.null.on_demand import SimulatedNulls
 from screener.stats.ordering import sort_in_place
 from screener.stats.points import kept_ranks
 from screener.stats.row_order import kept_in_order
@@ -19,13 +22,8 @@ from screener.stats.row_order import kept_in_order
 FEWEST = 3
 """Readings without which a plot has no shape."""
 
-FEWEST_DISTINCT = 4
-"""Distinct readings without which a plot is a stair of two or three steps."""
-
 COARSE = 0.5
 """Steps, in standard deviations, below which distinct readings cannot be so few."""
-
-MATCHED_FAMILY = "normal"
 
 
 @dataclass(frozen=True, slots=True)
@@ -55,70 +53,85 @@ class Scoring:
 
 
 def score(
-    readings: FloatArray, families: Sequence[Family], nulls: Nulls, alpha: float, *, match: bool = True
+    readings: FloatArray,
+    families: Sequence[Family],
+    nulls: Nulls,
+    alpha: float,
+    *,
+    match: bool = True,
+    held: NDArray[np.int64] | None = None,
+    simulated: SimulatedNulls | None = None,
+    below: NDArray[np.int64] | None = None,
+    above: NDArray[np.int64] | None = None,
 ) -> Scoring:
     """Score readings in row order, float64[C, rows].
 
-    With `match`, a channel that is rounded or follows itself in time is held against the normal family by the critical
-    value of a normal channel in the same condition; other families keep the plain one.
+    With `match`, a channel that is rounded, clipped, or follows itself in time is held against a family by the critical
+    value of samples of that family in the same condition; r of a clipped channel is that of its unclipped readings.
+    `held`, int64[C], says which of the families each channel is held against (the normal family, or else the first);
+    what no table holds is simulated for that family alone. `below` and `above`, int64[C], count the readings that stand
+    at a detection limit and are known only to lie below it, or above it.
+    Raises: Cancelled, when simulating is given up.
     """
     ordered = readings.copy()
     n = sort_in_place(ordered)
     scored = _scorable(ordered, n)
-    conditions = find_conditions(readings, ordered, n)
+    conditions = _limited(find_conditions(readings, ordered, n), below, above)
     fits = fit_families(ordered, np.where(scored, n, 0), families, nulls.rule)
-    plain, p, extrapolated = _against_null(fits, n, families, nulls, alpha)
-    critical = plain.copy()
-    if match and nulls.matched is not None:
-        for column in (place for place, family in enumerate(families) if family.name == MATCHED_FAMILY):
-            _match(column, fits, conditions, nulls.matched, alpha, critical, p, extrapolated)
+    censoring = censoring_of(conditions, ordered)
+    reasons = _reasons(ordered, n, scored, conditions, censoring)
+    judge = np.array([not reason for reason in reasons], dtype=np.bool_)
+    if match:
+        refit(fits, ordered, censoring, np.flatnonzero(judge & censoring.some), families, nulls.rule)
+    plain = _against_null(fits, n, families, nulls, alpha)
+    judgement = Judgement(plain.critical_r.copy(), plain.p.copy(), plain.extrapolated.copy())
+    if match:
+        matching = Matching(families, fits, conditions, censoring, nulls, simulated or SimulatedNulls(), alpha)
+        conditions = judged_in_doubt(matching, judgement, _held(held, families, n.size), judge, ordered)
     return Scoring(
         n=n,
         missing=readings.shape[1] - n,
-        reasons=_reasons(ordered, n, scored, conditions),
+        reasons=reasons,
         fits=fits,
-        critical_r=critical,
-        p=p,
-        extrapolated=extrapolated,
+        critical_r=judgement.critical_r,
+        p=judgement.p,
+        extrapolated=judgement.extrapolated,
         points=_kept(ordered, n),
         in_order=kept_in_order(readings),
-        plain_critical_r=plain,
+        plain_critical_r=plain.critical_r,
         conditions=conditions,
     )
 
 
-def _match(
-    column: int,
-    fits: Fits,
-    conditions: Conditions,
-    table: MatchedTable,
-    alpha: float,
-    critical: FloatArray,
-    p: FloatArray,
-    extrapolated: NDArray[np.bool_],
-) -> None:
-    """Replace the critical value and p of one family where the channel's condition calls for it."""
-    r = fits.r[:, column]
-    at = np.flatnonzero((conditions.rounded | conditions.serial) & ~np.isnan(r))
-    if at.size:
-        step = np.where(conditions.rounded, conditions.step_in_sd, 0.0)[at]
-        tau = np.where(conditions.serial, conditions.tau_4, 1.0)[at]
-        null, each = table.rows(conditions.n[at], step, tau), np.arange(at.size)
-        critical[at, column] = null.critical(alpha)
-        p[at, column] = null.p_against(r[at], each, alpha)
-        extrapolated[at, column] = p[at, column] < null.floor
+def _limited(conditions: Conditions, below: NDArray[np.int64] | None, above: NDArray[np.int64] | None) -> Conditions:
+    """Conditions with the readings beyond detection limits."""
+    if below is not None:
+        conditions = replace(conditions, below=below)
+    return conditions if above is None else replace(conditions, above=above)
+
+
+def _held(held: NDArray[np.int64] | None, families: Sequence[Family], channels: int) -> NDArray[np.int64]:
+    if held is not None:
+        return held
+    names = [family.name for family in families]
+    return np.full(channels, names.index(TABLED_FAMILY) if TABLED_FAMILY in names else 0)
 
 
 def _reasons(
-    ordered: FloatArray, n: NDArray[np.int64], scored: NDArray[np.bool_], conditions: Conditions
+    ordered: FloatArray,
+    n: NDArray[np.int64],
+    scored: NDArray[np.bool_],
+    conditions: Conditions,
+    censoring: Censoring,
 ) -> tuple[str, ...]:
     """Why each channel is not scored; empty where it is."""
     reasons = [""] * n.size
     coarse = np.flatnonzero(scored & (conditions.step_in_sd >= COARSE))
-    distinct = 1 + np.count_nonzero(np.diff(ordered[coarse], axis=1) > 0.0, axis=1)
+    uncensored = held_within(ordered[coarse], n[coarse], censoring.low[coarse], censoring.high[coarse])
+    distinct = 1 + np.count_nonzero(np.diff(uncensored, axis=1) > 0.0, axis=1)
     for channel, count in zip(coarse[distinct < FEWEST_DISTINCT], distinct[distinct < FEWEST_DISTINCT], strict=True):
         reasons[channel] = f"only {count} distinct readings, at least {FEWEST_DISTINCT} are needed"
-    for channel in np.flatnonzero(scored & (conditions.stuck > 0.5 * n)):
+    for channel in np.flatnonzero(scored & (censoring.most | (conditions.stuck > 0.5 * n))):
         reasons[channel] = conditions_of(conditions, int(channel))
     for channel in np.flatnonzero(scored & conditions.drifting):
         reasons[channel] = conditions_of(conditions, int(channel))
@@ -155,15 +168,15 @@ def _reason(ordered: FloatArray, n: int) -> str:
 
 def _against_null(
     fits: Fits, n: NDArray[np.int64], families: Sequence[Family], nulls: Nulls, alpha: float
-) -> tuple[FloatArray, FloatArray, NDArray[np.bool_]]:
-    """Critical value, p, and whether p is extrapolated, each [C, F]."""
+) -> Judgement:
+    """The textbook judgement of C channels, of n[C] readings."""
     critical, p = np.full_like(fits.r, np.nan), np.full_like(fits.r, np.nan)
-    extrapolated = np.zeros(fits.r.shape, dtype=np.bool_)
+    judgement = Judgement(critical, p, np.zeros(fits.r.shape, dtype=np.bool_))
     for column, family in enumerate(families):
         fitted = np.flatnonzero(~np.isnan(fits.r[:, column]))
         if fitted.size:
             null, row = nulls.rows(family, n[fitted], fits.steps[fitted, column])
             critical[fitted, column] = null.critical(alpha)[row]
             p[fitted, column] = null.p_against(fits.r[fitted, column], row, alpha)
-            extrapolated[fitted, column] = p[fitted, column] < null.floor[row]
-    return critical, p, extrapolated
+            judgement.extrapolated[fitted, column] = p[fitted, column] < null.floor[row]
+    return judgement

@@ -44,7 +44,8 @@ def test_flags_are_those_of_scipy_and_the_handbook(
     measurements: pl.DataFrame, tmp_path: Path, ending: str, rows: int, alpha: float, flagged: int
 ) -> None:
     first = measurements.head(rows)
-    results = screened(first, ending, tmp_path, "--alpha", str(alpha))
+    # Some measurements have a heap at 0, which counts as clipped unless the textbook value is asked for.
+    results = screened(first, ending, tmp_path, "--plain", "--alpha", str(alpha))
     assert results["channel"].to_list() == first.columns
     assert set(results["n"]) == {rows}
 

@@ -4,13 +4,13 @@ import numpy as np
 import pytest
 from numpy.typing import NDArray
 
+from screener.stats.correlation import fit_families
 from screener.stats.families import FAMILIES, family_named
 from screener.stats.null.matched import (
     COEFFICIENTS,
     PROBABILITIES,
     STEPS,
     autoregressive,
-    log_gap,
     step_weights,
     tau_of,
 )
@@ -90,19 +90,21 @@ def test_what_does_not_define_a_distribution_is_not_scored() -> None:
 def test_between_its_nodes_the_table_agrees_with_a_simulation(n: int, step: float, coefficient: float) -> None:
     samples = 4000
     rng = np.random.default_rng(6)
-    ordered = np.sort(autoregressive(rng, samples, n, coefficient), axis=1)
-    lattice = step * ordered.std(axis=1, keepdims=True) / np.sqrt(1.0 - step**2 / 12.0)
-    gaps = log_gap(lattice * np.round(ordered / lattice + rng.random((samples, 1))), "filliben")
+    readings = step * np.round(autoregressive(rng, samples, n, coefficient) / step + rng.random((samples, 1)))
+    r = fit_families(np.sort(readings, axis=1), np.full(samples, n), NORMAL, "filliben").r[:, 0]
     table = shipped_nulls().matched
     assert table is not None
-    critical = table.rows(np.array([n]), np.array([step]), tau_of(np.array([coefficient]))).critical(0.05)[0]
-    assert np.mean(-np.expm1(gaps) < critical) == pytest.approx(0.05, abs=0.015)
+    in_sd = step / readings.std(axis=1)
+    critical = table.rows(np.full(samples, n), in_sd, np.full(samples, tau_of(coefficient))).critical(0.05)
+    assert np.mean(r < critical) == pytest.approx(0.05, abs=0.012)
 
 
 def test_step_weights_add_up_and_repeat_the_nodes() -> None:
     nodes = step_weights(np.array([0.0, *STEPS]))
-    assert nodes == pytest.approx(np.eye(1 + len(STEPS)), abs=1e-12)
-    assert step_weights(np.linspace(0, 1.6, 50)).sum(axis=1) == pytest.approx(np.ones(50))
+    dense = np.zeros((1 + len(STEPS), 1 + len(STEPS)))
+    np.put_along_axis(dense, nodes.index, nodes.weight, axis=1)
+    assert dense == pytest.approx(np.eye(1 + len(STEPS)), abs=1e-12)
+    assert step_weights(np.linspace(0, 1.6, 50)).weight.sum(axis=1) == pytest.approx(np.ones(50))
 
 
 def test_an_ar1_has_the_stated_autocorrelation() -> None:

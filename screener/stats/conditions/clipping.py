@@ -5,7 +5,7 @@ compared with what the values next to it let expect, in two ways:
 
 * it holds at least twice as many readings as the value beside it, and the values inside do not rise so towards the end;
 * or the counts at all values inside are those of a rounded normal channel (a straight line on normal probability
-  paper), continued beyond the extreme value by readings of which none is there.
+  paper), and the extreme value holds the readings that this channel would have at it and beyond.
 """
 
 from dataclasses import dataclass
@@ -24,8 +24,17 @@ FEWEST = 3
 FEW_READINGS = 200
 PILE, SURE = 2.0, 2.5
 """Times the expected count, and standard errors above it, from which a lattice value is piled up."""
-ABSENT = 15.0
-"""Readings that a normal channel would have beyond its extreme value; the chance to see none is exp(-15)."""
+CLIPPED, SURELY = 4.0, 15.0
+"""Log likelihood by which readings piled up at the extreme value, and none beyond, are those of a clipped rather than
+an unclipped normal channel; the greater one where the counts inside do not tell a normal channel."""
+FEWEST_BEYOND = 1.0
+"""Readings that an unclipped normal channel would have beyond, without which there is nothing to miss."""
+PERHAPS = 1.0
+"""Log likelihood from which it may be so."""
+FEWEST_COUNTED = 20
+"""Readings whose counts at lattice values are compared with a normal channel's."""
+BELL = 3.0
+"""Log likelihood by which the counts inside are those of a normal rather than a uniform channel."""
 PLACES, STRAIGHT = 9, 3.0
 """Places between the ends where the normal line is checked, and how far it may be off, in standard errors."""
 
@@ -40,6 +49,9 @@ class Clipping:
     at_low: IntArray
     """[C] readings equal to the least value, clipped or not."""
     at_high: IntArray
+    perhaps_low: BoolArray
+    """[C] the least value of a rounded channel may be a rail or not: too few readings to tell."""
+    perhaps_high: BoolArray
 
 
 def find_clipping(ordered: FloatArray, n: IntArray, lattice: Lattice, inflation: FloatArray) -> Clipping:
@@ -51,13 +63,27 @@ def find_clipping(ordered: FloatArray, n: IntArray, lattice: Lattice, inflation:
     clusters = np.sqrt(inflation)
     low |= rounded & _piled(at_low, beside_low, clusters)
     high |= rounded & _piled(at_high, beside_high, clusters)
-    where = np.flatnonzero(rounded & (n > 2 * ABSENT))
+    where = np.flatnonzero(rounded & (n >= FEWEST_COUNTED))
+    perhaps_low, perhaps_high = np.zeros_like(low), np.zeros_like(high)
     if where.size:
-        cut_low, cut_high = _cut_off(ordered, n, lattice, inflation, where)
-        low[where] |= cut_low
-        high[where] |= cut_high
+        heap_low, heap_high, bell, step = _heaps(ordered, n, lattice, inflation, where)
+        enough = np.where(bell >= BELL, CLIPPED, np.where(bell >= 0.0, SURELY, np.inf))
+        # The finer the lattice, the more values there are of which the extreme one may happen to be the fullest.
+        enough += np.log(1.0 / np.clip(step, 1e-6, 1.0))
+        low[where] |= heap_low >= enough
+        high[where] |= heap_high >= enough
+        belled = bell >= np.where(n[where] < FEW_READINGS * np.sqrt(inflation[where]), 0.0, BELL)
+        perhaps_low[where] = (heap_low >= PERHAPS) & belled
+        perhaps_high[where] = (heap_high >= PERHAPS) & belled
     varied = (n > 0) & (at_low < n)
-    return Clipping(np.where(low & varied, at_low, 0), np.where(high & varied, at_high, 0), at_low, at_high)
+    return Clipping(
+        np.where(low & varied, at_low, 0),
+        np.where(high & varied, at_high, 0),
+        at_low,
+        at_high,
+        perhaps_low & ~low,
+        perhaps_high & ~high,
+    )
 
 
 def _end_counts(ordered: FloatArray, n: IntArray, lattice: Lattice) -> tuple[tuple[IntArray, IntArray], ...]:
@@ -86,10 +112,14 @@ def _piled(at: IntArray, beside: IntArray, inflation: FloatArray) -> BoolArray:
     return piled
 
 
-def _cut_off(
+def _heaps(
     ordered: FloatArray, n: IntArray, lattice: Lattice, inflation: FloatArray, where: IntArray
-) -> tuple[BoolArray, BoolArray]:
-    """Whether the channels at `where` are rounded normal ones whose readings beyond an extreme value are not there."""
+) -> tuple[FloatArray, FloatArray, FloatArray, FloatArray]:
+    """By how much clipping is likelier than not, at either end of the channels at `where`, and a normal channel than a
+    uniform one by the counts inside, and the step in standard deviations of the normal channel, each [K].
+
+    Minus infinity where the counts inside are not those of a rounded normal channel.
+    """
     count, step = n[where].astype(np.float64), lattice.step[where]
     least = ordered[where, 0] + 0.5 * step
     values = np.rint((ordered[where, n[where] - 1] - ordered[where, 0]) / step) - 1
@@ -105,12 +135,37 @@ def _cut_off(
     error = np.sqrt(np.maximum(line * (1.0 - line) * inflation[where, None] / count[:, None], 1e-300))
     straight = np.all(~usable | (np.abs(line - fitted) <= STRAIGHT * error), axis=1) & (values >= 2) & (slope > 0)
     independent = count / np.sqrt(inflation[where])
-    missing_low = independent * ndtr(score[:, 0] - slope)
-    missing_high = independent * ndtr(-score[:, -1] - slope)
+    at_low, at_high = independent * share[:, 0], independent * (1.0 - share[:, -1])
+    heap_low = _heap(at_low, independent, score[:, 0], slope)
+    heap_high = _heap(at_high, independent, -score[:, -1], slope)
     return (
-        straight & usable[:, 0] & (missing_low >= ABSENT),
-        straight & usable[:, -1] & (missing_high >= ABSENT),
+        np.where(straight & usable[:, 0], heap_low, -np.inf),
+        np.where(straight & usable[:, -1], heap_high, -np.inf),
+        _bell(independent, share, fitted, place),
+        slope,
     )
+
+
+def _heap(at: FloatArray, independent: FloatArray, inner: FloatArray, slope: FloatArray) -> FloatArray:
+    """Log likelihood ratio of clipped over unclipped for `at` readings at an extreme value and none beyond it, [C].
+
+    The value's inner limit lies at that standard normal score. Minus infinity where a truncated channel, without the
+    readings beyond, is likelier still.
+    """
+    beyond = independent * ndtr(inner - slope)
+    inside = np.maximum(independent * ndtr(inner) - beyond, 1e-300)
+    ratio = at * np.log1p(beyond / inside)
+    return np.asarray(np.where((ratio >= beyond) & (beyond >= FEWEST_BEYOND), ratio, -np.inf), dtype=np.float64)
+
+
+def _bell(independent: FloatArray, share: FloatArray, fitted: FloatArray, place: FloatArray) -> FloatArray:
+    """Log likelihood ratio of the shares between the places: fitted normal over even, [C]."""
+    counted, normal, even = (np.diff(each, axis=1) for each in (share, fitted, place))
+    normal = normal / np.maximum(normal.sum(axis=1, keepdims=True), 1e-300)
+    even = even / np.maximum(even.sum(axis=1, keepdims=True), 1e-300)
+    with np.errstate(divide="ignore", invalid="ignore"):
+        ratio = np.where(counted > 0, counted * np.log(normal / even), 0.0)
+    return np.asarray(independent * ratio.sum(axis=1), dtype=np.float64)
 
 
 def _line(x: FloatArray, y: FloatArray, weight: FloatArray) -> tuple[FloatArray, FloatArray]:

@@ -45,6 +45,12 @@ class Conditions:
     clipped_low: IntArray
     clipped_high: IntArray
     """Readings piled up at the least and at the greatest value; 0 where they are no more than to be expected."""
+    perhaps_low: IntArray
+    perhaps_high: IntArray
+    """Readings at the least and at the greatest value where too few tell whether that is a rail; 0 elsewhere."""
+    below: IntArray
+    above: IntArray
+    """Readings that stand at a detection limit, and are known only to lie below it, or above it."""
     longest_run: IntArray
     """Readings in the longest run of equal neighbours, 1 where no two are equal."""
     stuck: IntArray
@@ -87,10 +93,10 @@ def find_conditions(readings: FloatArray, ordered: FloatArray, n: IntArray) -> C
     readings = _brought_along(readings, exponent)
     passed = pass_over(readings, ordered, n)
     spread = _spread(passed)
-    dependence = serial_dependence(passed.resolutions, n, readings)
     sample = sample_ranks(ordered, n)
     lattice = find_lattice(ordered, n, sample)
     step_in_sd = np.divide(lattice.step, spread, out=np.zeros(n.size), where=(lattice.step > 0) & (spread > 0))
+    dependence = serial_dependence(passed.resolutions, n, readings, step_in_sd)
     ar = _same_tau(dependence)
     clipping = find_clipping(ordered, n, lattice, (1.0 + ar**2) / (1.0 - ar**2))
     repeats = find_repeats(ordered, n, sample, lattice, spread)
@@ -109,6 +115,10 @@ def find_conditions(readings: FloatArray, ordered: FloatArray, n: IntArray) -> C
         rounded=step_in_sd * np.sqrt(n) >= ROUNDED_FROM,
         clipped_low=clipping.low,
         clipped_high=clipping.high,
+        perhaps_low=np.where(clipping.perhaps_low, clipping.at_low, 0),
+        perhaps_high=np.where(clipping.perhaps_high, clipping.at_high, 0),
+        below=np.zeros_like(n),
+        above=np.zeros_like(n),
         longest_run=stuck.longest,
         stuck=stuck.readings,
         repeated_value=np.where(repeated > 0, _back(repeats.value, exponent), np.nan),

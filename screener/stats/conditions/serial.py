@@ -28,6 +28,9 @@ SURE_AT_ONE, SURE = 3.3, 4.2
 """Standard errors from 0 beyond which rho_1, or rho_k at another lag to 16, is no chance."""
 SLIGHT = 0.1
 """A rho below this leaves the null of r as it is, however sure."""
+COARSE = 0.2
+"""Steps, in standard deviations, from which rounding takes more than a third of a percent from every rho."""
+BISECTIONS = 14
 NARROW, SURE_OF_LASTING, SMOOTH = 0.2, 3.0, 0.85
 """|rho| that lasts to the far half of a resolution's lags, and so many standard errors, calls for every lag when the
 next resolution sees less than a share of it. The Fourier transform costs several sorts; few channels swing so."""
@@ -53,11 +56,17 @@ def longest_lag(rows: int) -> int:
     return min(rows - 2, max(FEWEST_LAGS, rows // 4))
 
 
-def serial_dependence(resolutions: tuple[Resolution, ...], n: IntArray, readings: FloatArray) -> Serial:
-    """Serial dependence of readings, float64[C, rows], given their lag products and their n[C] finite readings."""
+def serial_dependence(
+    resolutions: tuple[Resolution, ...], n: IntArray, readings: FloatArray, step_in_sd: FloatArray
+) -> Serial:
+    """Serial dependence of readings, float64[C, rows], given their lag products and their n[C] finite readings.
+
+    tau_3 and tau_4 are those of the readings before they were rounded to a step of so many standard deviations, [C].
+    """
     rho = [_correlations(each, resolutions[0]) for each in resolutions]
-    back = _lost_with_the_mean(rho[0][:, 1], n)[:, None]
-    restored = [each + back * (1.0 - each) for each in rho]
+    unrounded = [before_rounding(each, step_in_sd, one.width) for each, one in zip(rho, resolutions, strict=True)]
+    back = _lost_with_the_mean(unrounded[0][:, 1], n)[:, None]
+    restored = [each + back * (1.0 - each) for each in unrounded]
     limit = longest_lag(readings.shape[1])
     most = 2.0 * np.sum(np.nan_to_num(rho[0]) ** 2, axis=1) - 1.0
     tau_3, tau_4 = np.ones(n.size), np.ones(n.size)
@@ -69,7 +78,7 @@ def serial_dependence(resolutions: tuple[Resolution, ...], n: IntArray, readings
             tau_4 += 2.0 * fourth
     narrow = _narrow(restored, [one.width for one in resolutions], n, limit)
     for channel in np.flatnonzero(narrow):
-        tau_3[channel], tau_4[channel] = _from_every_lag(readings[channel], limit)
+        tau_3[channel], tau_4[channel] = _from_every_lag(readings[channel], limit, step_in_sd[channel])
     tau_3, tau_4 = np.clip(tau_3, 0.0, None), np.maximum(tau_4, 1.0)
     slow = _slow(restored[-1], readings.shape[1] // resolutions[-1].width)
     return Serial(rho[0], tau_3, tau_4, slow, _beyond_chance(rho[0], resolutions[0].pairs))
@@ -80,6 +89,38 @@ def _correlations(at: Resolution, finest: Resolution) -> FloatArray:
     with np.errstate(divide="ignore", invalid="ignore"):
         variance = finest.products[:, :1] / finest.pairs[:, :1]
         return np.where(at.pairs >= 3.0 * at.width**2, at.products / at.pairs / variance, np.nan)
+
+
+def before_rounding(rho: FloatArray, step_in_sd: FloatArray, width: int) -> FloatArray:
+    """rho, float64[C, lags], between sums over `width` rows, without what rounding to a step took from it.
+
+    A rounding error has a twelfth of the squared step as variance. Over the lags of one row it is correlated as far as
+    readings stay within a step: by the sum over m of 6 / (pi m)^2 exp(-(2 pi m / step)^2 (1 - rho)),
+    the step in unrounded standard deviations (Widrow & Kollar 2008, Quantization Noise, from memory).
+    """
+    coarse = np.flatnonzero(step_in_sd >= COARSE)
+    if coarse.size == 0:
+        return rho
+    share = (step_in_sd[coarse] ** 2 / 12.0)[:, None]
+    found = rho.copy()
+    if width > 1:
+        found[coarse] /= 1.0 - share
+        found[coarse, 0] -= (share / (width * (1.0 - share)))[:, 0]
+    else:
+        found[coarse, 1:] = np.copysign(_unrounded(np.abs(rho[coarse, 1:]), share), rho[coarse, 1:])
+    return found
+
+
+def _unrounded(rho: FloatArray, share: FloatArray) -> FloatArray:
+    """The rho, float64[K, lags], of which rounding, of that share in the variance, [K, 1], leaves the given one."""
+    low, high = np.zeros_like(rho), np.ones_like(rho)
+    rate = (2.0 * np.pi) ** 2 * (1.0 - share) / (12.0 * share)
+    for _ in range(BISECTIONS):
+        middle = 0.5 * (low + high)
+        error = sum(6.0 / (np.pi * m) ** 2 * np.exp(-(m**2) * rate * (1.0 - middle)) for m in (1, 2, 3))
+        below = (1.0 - share) * middle + share * error < rho
+        low, high = np.where(below, middle, low), np.where(below, high, middle)
+    return np.where(np.isnan(rho), np.nan, 0.5 * (low + high))
 
 
 def _lost_with_the_mean(first: FloatArray, n: IntArray) -> FloatArray:
@@ -139,9 +180,10 @@ def _narrow(rho: list[FloatArray], wide: list[int], n: IntArray, limit: int) -> 
     return found
 
 
-def _from_every_lag(readings: FloatArray, limit: int) -> tuple[float, float]:
+def _from_every_lag(readings: FloatArray, limit: int, step_in_sd: float) -> tuple[float, float]:
     """tau_3 and tau_4 of one channel, float64[rows], lag by lag."""
     rho = (autocorrelation(readings[None, :]) / _kept(readings.size))[:, : limit + 1]
+    rho = before_rounding(rho, np.array([step_in_sd]), 1)
     n = np.array([np.isfinite(readings).sum()])
     weights = np.ones(limit + 1)
     weights[0] = 0.0

@@ -38,10 +38,7 @@ def fit_families(ordered: FloatArray, n: IntArray, families: Sequence[Family], r
 
     Channels of fewer than three readings, or without spread, get NaN.
     """
-    shape = (ordered.shape[0], len(families))
-    r, location, scale = (np.full(shape, np.nan) for _ in range(3))
-    shapes, steps = (np.full((*shape, 2), np.nan) for _ in range(2))
-    fits = Fits(r, location, scale, shapes, steps, np.zeros(shape, dtype=np.bool_))
+    fits = no_fits(ordered.shape[0], len(families))
     enough = np.flatnonzero(n >= 3)
     varying = enough[ordered[enough, 0] < ordered[enough, n[enough] - 1]]
     if varying.size:
@@ -50,36 +47,44 @@ def fit_families(ordered: FloatArray, n: IntArray, families: Sequence[Family], r
     return fits
 
 
+def no_fits(channels: int, families: int) -> Fits:
+    """Fits of that many channels and families, to be filled in."""
+    shape = (channels, families)
+    r, location, scale = (np.full(shape, np.nan) for _ in range(3))
+    shapes, steps = (np.full((*shape, 2), np.nan) for _ in range(2))
+    return Fits(r, location, scale, shapes, steps, np.zeros(shape, dtype=np.bool_))
+
+
 def _fit_linear(
     fits: Fits, ordered: FloatArray, n: IntArray, families: Sequence[Family], rule: str, rows: IntArray
 ) -> None:
-    columns = _on_axis(families, Axis.LINEAR)
+    columns = on_axis(families, Axis.LINEAR)
     if columns.size:
         near, exponent = brought_near(ordered, n)
         projection = project(near, n, rows, rule, differences)
         centre = near[rows, n[rows] // 2] + projection.mean
-        _fill(fits, projection, families, columns, rows, centre, exponent[rows])
+        fill(fits, projection, families, columns, rows, centre, exponent[rows])
 
 
 def _fit_log(
     fits: Fits, ordered: FloatArray, n: IntArray, families: Sequence[Family], rule: str, rows: IntArray
 ) -> None:
-    columns = _on_axis(families, Axis.LOG)
+    columns = on_axis(families, Axis.LOG)
     positive = ordered[rows, 0] > 0.0
     fits.outside[np.ix_(rows[~positive], columns)] = True
     rows = rows[positive]
     if rows.size and columns.size:
         projection = project(ordered, n, rows, rule, log_differences)
         centre = np.log(ordered[rows, n[rows] // 2]) + projection.mean
-        _fill(fits, projection, families, columns, rows, centre, np.zeros_like(rows))
+        fill(fits, projection, families, columns, rows, centre, np.zeros_like(rows))
 
 
-def _on_axis(families: Sequence[Family], axis: Axis) -> IntArray:
+def on_axis(families: Sequence[Family], axis: Axis) -> IntArray:
     """Places of the families on an axis."""
     return np.array([i for i, family in enumerate(families) if family.axis is axis], dtype=np.int64)
 
 
-def _fill(
+def fill(
     fits: Fits,
     projection: Projection,
     families: Sequence[Family],
