@@ -88,14 +88,13 @@ def sift(raw: RawTable, schema: pl.Schema, shown: Mapping[str, str], choice: Cho
     columns = tuple(column for column in schema if column not in reasons)
     proposals = proposed_codes(frame if whole is None else whole, columns, raw.rows, _limits(text.forms))
     remarks = (*text.remarks, *codes, *(proposal.sentence() for proposal in proposals))
-    if not mixed and len(columns) == len(wanted):
-        return Sifted(frame, columns, reasons, remarks, proposals, whole=whole)
+    if mixed or len(columns) < len(wanted):
+        frame, whole = _only(frame, columns), None if whole is None else whole[list(columns)]
+    sifted = Sifted(frame, columns, reasons, remarks, proposals, whole=whole)
     if text.forms is None:
-        return Sifted(_only(frame, columns), columns, reasons, remarks, proposals)
+        return sifted
     units = {column: form.suffix for column, form in text.forms.by_column.items()}
-    return Sifted(
-        _only(frame, columns), columns, reasons, remarks, proposals, text.forms.below, text.forms.above, units
-    )
+    return replace(sifted, below=text.forms.below, above=text.forms.above, units=units)
 
 
 def _limits(forms: Forms | None) -> dict[str, set[float]]:

@@ -91,12 +91,9 @@ def open_table(path: Path, plan: Plan, *, held_bytes: int = HELD_BYTES, most_byt
     with readable(path, raw.format):
         facts, sifted = _sifted(source.path, plan, raw)
         facts = replace(facts, fingerprint=joined([one.content for one in loaded]), files=files)
-        held = None
-        if raw.held:
-            held = sifted.frame.collect() if sifted.whole is None else sifted.whole
     states = () if raw.held else tuple(one.state for one in loaded if one.state)
     kept = (source.spool, *(one.raw.spool for one in loaded))
-    return Table(facts, sifted.columns, held, sifted.frame, states, kept, sifted.below, sifted.above)
+    return Table(facts, sifted.columns, sifted.whole, sifted.frame, states, kept, sifted.below, sifted.above)
 
 
 def _loaded(file: Path, source: Source, plan: Plan, held_bytes: int) -> Loaded:
