@@ -61,6 +61,7 @@ def utf8_text(path: Path, packing: Packing, *, given: str = "", keep: Sink = in_
         encoding = _known(given, sample) if given else _encoding(sample)
         text = sample.decode(encoding, errors="replace") if encoding.startswith("utf-") else ""
         returns = _LONE_RETURN.search(text.encode(errors="replace") if text else sample) is not None
+        returns = returns or (encoding == "utf-8" and not packing and _has_lone_return(path))
         words = [*((_NAMES.get(encoding, encoding),) if encoding != "utf-8" else ())]
         words += ["lines end in carriage returns"] if returns else []
         if encoding == "utf-8" and not returns:
@@ -136,6 +137,18 @@ def _known(name: str, sample: bytes) -> str:
     except LookupError as error:
         known = "utf-8, utf-16, latin-1, cp1252"
         raise PlanError(f"Couldn't use encoding {name!r}: there is none of that name. Known are {known}...") from error
+
+
+def _has_lone_return(path: Path) -> bool:
+    """Whether a carriage return alone ends a line anywhere."""
+    before = b""
+    with path.open("rb") as file:
+        while piece := file.read(_CHUNK_BYTES):
+            if b"\r" in piece or before:
+                if _LONE_RETURN.search(before + piece):
+                    return True
+                before = b"\r" if piece.endswith(b"\r") else b""
+    return False
 
 
 def _converted(pieces: Iterable[bytes], encoding: str) -> Iterator[bytes]:

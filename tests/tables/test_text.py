@@ -197,3 +197,14 @@ def test_twenty_thousand_columns_are_read(open_text: OpenText, separator: str) -
 
 def test_a_row_with_a_very_long_cell_is_read(open_text: OpenText) -> None:
     same(open_text(f"a,note\n1,{'x' * 300_000}\n4,y\n"), {"a": [1, 4]})
+
+
+@pytest.mark.parametrize("end", ["\n", "\r\n"])
+@pytest.mark.parametrize("at", [0, 150, 5_000, 700_000, 1_199_999])
+def test_a_line_that_ends_otherwise_far_below_the_first_is_a_line(open_text: OpenText, end: str, at: int) -> None:
+    count = 1_200_000 if at > 5_000 else 6_000
+    rows = [f"{k % 9},{k % 7}{end}" for k in range(count)]
+    rows[at] = f"{at % 9},{at % 7}\r"
+    opened = open_text("a,b" + end + "".join(rows))
+    assert_array_equal(opened.readings, [np.arange(count) % 9, np.arange(count) % 7])
+    assert opened.facts.dialect == ("comma, lines end in carriage returns" if at < count - 1 else "comma")
