@@ -1,22 +1,21 @@
 """Critical values and p of channels in their own condition, in place of the textbook ones."""
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Iterator
 from dataclasses import dataclass, fields, replace
 from typing import TypeVar
 
 import numpy as np
 from numpy.typing import NDArray
 
-from screener.stats.censoring import Censoring, as_if_clipped, censoring_of, refit
+from screener.stats.censoring import as_if_clipped, censoring_of, refit
 from screener.stats.conditions import Conditions
 from screener.stats.correlation import Fits
-from screener.stats.families import Axis, Family
 from screener.stats.families.family import FloatArray
+from screener.stats.found import Found
 from screener.stats.null.condition import Condition
 from screener.stats.null.matched import SIZES, within_table
 from screener.stats.null.nulls import Nulls
-from screener.stats.null.on_demand import SimulatedNulls, judged, level, near, nearest_scale, sufficient
-from screener.stats.null.rounding_loss import StepUnit, step_unit
+from screener.stats.null.on_demand import SimulatedNulls, judged, level, near, sufficient
 from screener.stats.null.table import NullRows
 
 IntArray = NDArray[np.int64]
@@ -48,10 +47,7 @@ class Judgement:
 class Matching:
     """C channels, what they were found to be, and the nulls that they can be held against."""
 
-    families: Sequence[Family]
-    fits: Fits
-    conditions: Conditions
-    censoring: Censoring
+    found: Found
     nulls: Nulls
     simulated: SimulatedNulls
     alpha: float
@@ -63,72 +59,37 @@ class Matching:
         against, int64[C], samples in its condition are simulated where no table holds them, if it is to be judged,
         bool[C]. Other families keep the textbook value.
         """
-        conditioned = self.conditions.rounded | self.conditions.serial
-        wanted = judge & (conditioned | self.censoring.some)
-        for column in (place for place, family in enumerate(self.families) if family.name == TABLED_FAMILY):
-            tabled = conditioned & ~self.censoring.some & self._tabled()
-            self._by_table(judgement, np.flatnonzero(tabled & ~np.isnan(self.fits.r[:, column])), column)
+        conditioned = self.found.conditions.rounded | self.found.conditions.serial
+        wanted = judge & (conditioned | self.found.censoring.some)
+        for column in (place for place, family in enumerate(self.found.families) if family.name == TABLED_FAMILY):
+            tabled = conditioned & ~self.found.censoring.some & self._tabled()
+            self._by_table(judgement, np.flatnonzero(tabled & ~np.isnan(self.found.fits.r[:, column])), column)
             wanted &= ~(tabled & (held == column))
         for column in np.unique(held[wanted]):
-            channels = np.flatnonzero(wanted & (held == column) & ~np.isnan(self.fits.r[:, column]))
+            channels = np.flatnonzero(wanted & (held == column) & ~np.isnan(self.found.fits.r[:, column]))
             for condition, alike, losses in self._alike(channels, int(column)):
                 if sufficient(self.simulated, condition):
                     self._simulated(judgement, condition, alike, losses, int(column))
 
     def _tabled(self) -> BoolArray:
         if self.nulls.matched is None:
-            return np.zeros(self.conditions.n.size, dtype=np.bool_)
-        return within_table(self.conditions.n, self._step(), self._tau())
-
-    def _step(self) -> FloatArray:
-        return np.where(self.conditions.rounded, self.conditions.step_in_sd, 0.0)
-
-    def _tau(self) -> FloatArray:
-        return np.where(self.conditions.serial, self.conditions.tau_4, 1.0)
+            return np.zeros(self.found.conditions.n.size, dtype=np.bool_)
+        return within_table(self.found.conditions.n, self.found.step, self.found.tau)
 
     def _by_table(self, judgement: Judgement, at: IntArray, column: int) -> None:
         if at.size and self.nulls.matched is not None:
-            rows = self.nulls.matched.rows(self.conditions.n[at], self._step()[at], self._tau()[at])
-            judgement.put(at, column, self.fits.r[at, column], rows, self.alpha)
+            rows = self.nulls.matched.rows(self.found.conditions.n[at], self.found.step[at], self.found.tau[at])
+            judgement.put(at, column, self.found.fits.r[at, column], rows, self.alpha)
 
     def _alike(self, channels: IntArray, column: int) -> Iterator[tuple[Condition, IntArray, FloatArray]]:
         """Conditions that are simulated, the channels that share each, and what rounding takes from their own r."""
         groups: dict[Condition, list[tuple[int, float]]] = {}
         for channel in channels:
-            own = self._condition(int(channel), column)
+            own = self.found.condition(int(channel), column)
             groups.setdefault(near(own), []).append((int(channel), own.loss()))
         for condition, members in groups.items():
             alike, losses = zip(*members, strict=True)
             yield condition, np.array(alike), np.array(losses)
-
-    def _condition(self, channel: int, column: int) -> Condition:
-        """The channel's own condition."""
-        return Condition(
-            family=self.families[column].name,
-            shapes=self._shapes(channel, column),
-            rule=self.nulls.rule,
-            n=int(self.conditions.n[channel]),
-            low=int(self.censoring.low[channel]),
-            high=int(self.censoring.high[channel]),
-            step=self._step_in_unit(channel, column),
-            tau=float(self._tau()[channel]),
-        )
-
-    def _step_in_unit(self, channel: int, column: int) -> float:
-        if not self.conditions.rounded[channel]:
-            return 0.0
-        if step_unit(self.families[column]) is StepUnit.DEVIATION:
-            return float(self.conditions.step_in_sd[channel])
-        return float(self.conditions.step[channel] / self.fits.scale[channel, column])
-
-    def _shapes(self, channel: int, column: int) -> tuple[float, ...]:
-        family = self.families[column]
-        if family.axis is Axis.LOG:
-            return (nearest_scale(float(self.fits.scale[channel, column])),)
-        if not family.shape_count:
-            return ()
-        steps = np.round(self.fits.steps[channel, column, : family.shape_count])
-        return tuple(round(float(shape), 9) for shape in family.shapes.at(steps))
 
     def _simulated(
         self, judgement: Judgement, condition: Condition, at: IntArray, losses: FloatArray, column: int
@@ -138,11 +99,11 @@ class Matching:
         1 - r is what rounding alone leaves, which is known, and the rest, which grows as that of unrounded normal
         channels does.
         """
-        r = self.fits.r[at, column]
-        moved = self._level(self.conditions.n[at], self._tau()[at]) - self._level(
+        r = self.found.fits.r[at, column]
+        moved = self._level(self.found.conditions.n[at], self.found.tau[at]) - self._level(
             np.array([condition.n]), np.array([condition.tau])
         )
-        if self.families[column].shape_count:
+        if self.found.families[column].shape_count:
             moved += self._shaped(condition, at, column)
         growth, loss = np.exp(moved), condition.loss()
         there = loss + (1.0 - r - losses) / growth
@@ -165,8 +126,8 @@ class Matching:
     def _shaped(self, condition: Condition, at: IntArray, column: int) -> FloatArray:
         """What the tabled null given the estimated shape differs from samples of that very shape, at alpha: [K]."""
         plain = replace(condition, low=0, high=0, step=0.0, tau=1.0)
-        steps = self.fits.steps[at, column]
-        rows, row = self.nulls.rows(self.families[column], np.full(at.size, condition.n), steps)
+        steps = self.found.fits.steps[at, column]
+        rows, row = self.nulls.rows(self.found.families[column], np.full(at.size, condition.n), steps)
         tabled = np.log(1.0 - rows.critical(self.alpha)[row])
         return np.asarray(tabled - level(self.simulated, plain, self.alpha), dtype=np.float64)
 
@@ -180,26 +141,24 @@ def judged_in_doubt(
     and judged without the readings there, if it is not flagged then.
     """
     matching.into(judgement, held, judge)
-    conditions, each = matching.conditions, np.arange(held.size)
-    flagged = judge & (judgement.p[each, held] < matching.alpha) & (_names(matching.families)[held] == TABLED_FAMILY)
+    conditions, each = matching.found.conditions, np.arange(held.size)
+    normal = np.array([family.name == TABLED_FAMILY for family in matching.found.families])
+    flagged = judge & (judgement.p[each, held] < matching.alpha) & normal[held]
     doubtful = np.flatnonzero(flagged & ((conditions.perhaps_low > 0) | (conditions.perhaps_high > 0)))
     if doubtful.size == 0:
         return conditions
     clipped = as_if_clipped(conditions, doubtful)
     censoring = censoring_of(clipped, ordered)
     doubtful = doubtful[~censoring.most[doubtful]]
-    fits, second = _copied(matching.fits), _copied(judgement)
-    refit(fits, ordered, censoring, doubtful, matching.families, matching.nulls.rule)
+    fits, second = _copied(matching.found.fits), _copied(judgement)
+    refit(fits, ordered, censoring, doubtful, matching.found.families, matching.nulls.rule)
     only = np.isin(each, doubtful)
-    replace(matching, fits=fits, conditions=clipped, censoring=censoring).into(second, held, only)
+    found = replace(matching.found, fits=fits, conditions=clipped, censoring=censoring)
+    replace(matching, found=found).into(second, held, only)
     cleared = doubtful[second.p[doubtful, held[doubtful]] >= matching.alpha]
-    _put_rows(fits, matching.fits, cleared)
+    _put_rows(fits, matching.found.fits, cleared)
     _put_rows(second, judgement, cleared)
     return as_if_clipped(conditions, cleared)
-
-
-def _names(families: Sequence[Family]) -> NDArray[np.str_]:
-    return np.array([family.name for family in families])
 
 
 Arrays = TypeVar("Arrays", Fits, Judgement)

@@ -11,6 +11,7 @@ from screener.stats.conditions import Conditions, conditions_of, find_conditions
 from screener.stats.correlation import Fits, fit_families, held_within
 from screener.stats.families import Family
 from screener.stats.families.family import FloatArray
+from screener.stats.found import Found
 from screener.stats.matching import TABLED_FAMILY, Judgement, Matching, judged_in_doubt
 from screener.stats.null.condition import FEWEST_DISTINCT
 from screener.stats.null.nulls import Nulls
@@ -86,7 +87,8 @@ def score(
     plain = _against_null(fits, n, families, nulls, alpha)
     judgement = Judgement(plain.critical_r.copy(), plain.p.copy(), plain.extrapolated.copy())
     if match:
-        matching = Matching(families, fits, conditions, censoring, nulls, simulated or SimulatedNulls(), alpha)
+        found = Found(families, fits, conditions, censoring, nulls.rule)
+        matching = Matching(found, nulls, simulated or SimulatedNulls(), alpha)
         conditions = judged_in_doubt(matching, judgement, _held(held, families, n.size), judge, ordered)
     return Scoring(
         n=n,

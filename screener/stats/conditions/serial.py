@@ -65,22 +65,21 @@ def serial_dependence(
     """
     rho = [_correlations(each, resolutions[0]) for each in resolutions]
     unrounded = [before_rounding(each, step_in_sd, one.width) for each, one in zip(rho, resolutions, strict=True)]
-    back = _lost_with_the_mean(unrounded[0][:, 1], n)[:, None]
-    restored = [each + back * (1.0 - each) for each in unrounded]
+    whole = [restored(each, unrounded[0][:, 1], n) for each in unrounded]
     limit = longest_lag(readings.shape[1])
     most = 2.0 * np.sum(np.nan_to_num(rho[0]) ** 2, axis=1) - 1.0
     tau_3, tau_4 = np.ones(n.size), np.ones(n.size)
-    for i, (each, width) in enumerate(zip(restored, (one.width for one in resolutions), strict=True)):
+    for i, (each, width) in enumerate(zip(whole, (one.width for one in resolutions), strict=True)):
         if i == 0 or 3 * width <= limit:
             weights = _weights(width, limit, finest=i == 0)
             third, fourth = powers(each, width, n, weights, most)
             tau_3 += 2.0 * third
             tau_4 += 2.0 * fourth
-    narrow = _narrow(restored, [one.width for one in resolutions], n, limit)
+    narrow = _narrow(whole, [one.width for one in resolutions], n, limit)
     for channel in np.flatnonzero(narrow):
         tau_3[channel], tau_4[channel] = _from_every_lag(readings[channel], limit, step_in_sd[channel])
     tau_3, tau_4 = np.clip(tau_3, 0.0, None), np.maximum(tau_4, 1.0)
-    slow = _slow(restored[-1], readings.shape[1] // resolutions[-1].width)
+    slow = _slow(whole[-1], readings.shape[1] // resolutions[-1].width)
     return Serial(rho[0], tau_3, tau_4, slow, _beyond_chance(rho[0], resolutions[0].pairs))
 
 
@@ -121,6 +120,12 @@ def _unrounded(rho: FloatArray, share: FloatArray) -> FloatArray:
         below = (1.0 - share) * middle + share * error < rho
         low, high = np.where(below, middle, low), np.where(below, high, middle)
     return np.where(np.isnan(rho), np.nan, 0.5 * (low + high))
+
+
+def restored(rho: FloatArray, first: FloatArray, n: IntArray) -> FloatArray:
+    """rho, float64[C, lags], with what subtracting the mean took from it, by the rho at lag 1 and n, each [C]."""
+    back = _lost_with_the_mean(first, n)[:, None]
+    return rho + back * (1.0 - rho)
 
 
 def _lost_with_the_mean(first: FloatArray, n: IntArray) -> FloatArray:

@@ -60,15 +60,21 @@ def log_gaps(condition: Condition, samples: int, rng: np.random.Generator) -> Fl
     """ln(1 - r) of samples in a condition, float64[samples]; NaN where a sample has no r."""
     family, shares = family_named(condition.family), (condition.low / condition.n, condition.high / condition.n)
     coefficient = underlying_coefficient(family, condition.shapes, *shares, condition.tau)
-    quantiles = family.quantile(plotting_positions(condition.n, condition.rule), *_own(family, condition.shapes))
     found = np.empty(samples)
     chunk = max(1, CHUNK_READINGS // condition.n)
     for first in range(0, samples, chunk):
         count = min(chunk, samples - first)
         normal = np.sort(autoregressive(rng, count, condition.n, coefficient), axis=1)
-        ordered = recorded_at(normal, family, condition.shapes)
-        found[first : first + count] = np.log(np.maximum(_gaps(ordered, quantiles, family, condition, rng), 1e-16))
+        found[first : first + count] = recorded_log_gaps(normal, condition, rng)
     return found
+
+
+def recorded_log_gaps(normal: FloatArray, condition: Condition, rng: np.random.Generator) -> FloatArray:
+    """ln(1 - r) of sorted standard normal samples, float64[S, n], that stand for readings in a condition."""
+    family = family_named(condition.family)
+    quantiles = family.quantile(plotting_positions(condition.n, condition.rule), *_own(family, condition.shapes))
+    ordered = recorded_at(normal, family, condition.shapes)
+    return np.asarray(np.log(np.maximum(_gaps(ordered, quantiles, family, condition, rng), 1e-16)), dtype=np.float64)
 
 
 def _own(family: Family, shapes: tuple[float, ...]) -> tuple[float, ...]:

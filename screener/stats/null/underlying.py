@@ -59,6 +59,19 @@ def underlying_coefficient(family: Family, shapes: tuple[float, ...], low: float
     return float(np.interp(np.log(tau), np.log(taus), coefficients))
 
 
+def underlying_rho(rho: FloatArray, family: Family, shapes: tuple[float, ...], low: float, high: float) -> FloatArray:
+    """The autocorrelation of the normal series whose readings, clipped at these shares, have the given one."""
+    if family.name == "normal" and not (low or high):
+        return rho
+    at = np.linspace(-1.0, 1.0, 401)
+    seen = np.zeros_like(at)
+    for share in _hermite_shares(family, shapes, low, high)[::-1]:
+        seen = (seen + share) * at
+    # Even terms make it fall again below 0, where readings of a skew family cannot be so strongly opposed.
+    lowest = int(np.argmin(seen))
+    return np.asarray(np.interp(rho, seen[lowest:], at[lowest:]), dtype=np.float64)
+
+
 def _hermite_shares(family: Family, shapes: tuple[float, ...], low: float, high: float) -> FloatArray:
     """Shares of the variance of readings that lie in the Hermite terms 1 to TERMS of the normal series behind them."""
     normal = ndtri((np.arange(20_001) + 0.5) / 20_001)
