@@ -1,7 +1,7 @@
 """Projected readings carried to the probability grid, where one table of quantile functions serves every n."""
 
-from collections.abc import Iterator
-from dataclasses import dataclass
+from collections.abc import Iterable, Iterator
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -13,6 +13,9 @@ IntArray = NDArray[np.int64]
 
 WIDE_TILE = 32
 """Channels in a product with many columns."""
+
+TOGETHER = 1024
+"""Channels held against the families at a time: what is computed of more does not stay in the processor's cache."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -49,20 +52,37 @@ class Products:
 
 
 def carried(projection: Projection) -> Iterator[OnGrid]:
-    """Carry readings to the probability grid, channels of about the same n together."""
+    """Carry readings to the probability grid, channels of about the same n together, not too many at a time."""
     for start in sorted({group.carrier.start for group in projection.groups}):
-        groups = [group for group in projection.groups if group.carrier.start == start]
-        members = np.concatenate([group.members for group in groups])
-        yield OnGrid(
-            start=start,
-            members=members,
-            readings=np.concatenate([_carry(group) for group in groups]),
-            ones=np.stack([group.carrier.ones for group in groups]),
-            which=np.repeat(np.arange(len(groups)), [group.members.size for group in groups]),
-            sizes=np.array([float(group.n) for group in groups]),
-            mean=projection.mean[members],
-            length=projection.length[members],
-        )
+        for lot in _lots(group for group in projection.groups if group.carrier.start == start):
+            members = np.concatenate([group.members for group in lot])
+            yield OnGrid(
+                start=start,
+                members=members,
+                readings=np.concatenate([_carry(group) for group in lot]),
+                ones=np.stack([group.carrier.ones for group in lot]),
+                which=np.repeat(np.arange(len(lot)), [group.members.size for group in lot]),
+                sizes=np.array([float(group.n) for group in lot]),
+                mean=projection.mean[members],
+                length=projection.length[members],
+            )
+
+
+def _lots(groups: Iterable[SizeGroup]) -> Iterator[list[SizeGroup]]:
+    """The groups in lots of about TOGETHER channels, large ones cut."""
+    lot: list[SizeGroup] = []
+    room = TOGETHER
+    for group in groups:
+        done = 0
+        while done < group.members.size:
+            part = slice(done, done + room)
+            lot.append(replace(group, members=group.members[part], compressed=group.compressed[part]))
+            done, room = done + lot[-1].members.size, room - lot[-1].members.size
+            if room == 0:
+                yield lot
+                lot, room = [], TOGETHER
+    if lot:
+        yield lot
 
 
 def _carry(group: SizeGroup) -> FloatArray:
@@ -86,10 +106,12 @@ def tiled_product(left: FloatArray, right: FloatArray, tile: int = TILE) -> Floa
     count, width = left.shape
     product = np.empty((count, right.shape[1]))
     whole = count - count % tile
-    for first in range(0, whole, tile):
-        np.dot(left[first : first + tile], right, out=product[first : first + tile])
+    if whole:
+        # One call for all tiles: many small ones would cost more than the products, and hold up other threads.
+        tiles = left[:whole].reshape(-1, tile, width)
+        np.matmul(tiles, right, out=product[:whole].reshape(-1, tile, right.shape[1]))
     if whole < count:
-        padded = np.zeros((tile, width))
-        padded[: count - whole] = left[whole:]
-        product[whole:] = padded.dot(right)[: count - whole]
+        padded = np.zeros((1, tile, width))
+        padded[0, : count - whole] = left[whole:]
+        product[whole:] = (padded @ right)[0, : count - whole]
     return product
