@@ -3,6 +3,7 @@
 import numpy as np
 import pytest
 from numpy.typing import NDArray
+from scipy.special import ndtri
 
 from screener.stats.correlation import fit_families
 from screener.stats.families import FAMILIES, family_named
@@ -42,6 +43,40 @@ def test_normal_channels_are_flagged_at_the_rate_in_their_own_condition(
     # Between 3 and 6 %, and three standard errors of 1,500 channels.
     assert 0.03 - 0.013 < flagged(scoring, scoring.critical_r) < 0.06 + 0.018
     assert flagged(scoring, scoring.plain_critical_r) > plain_at_least
+
+
+@pytest.mark.parametrize(
+    ("n", "step", "coefficient", "clipped"),
+    [
+        (200, 0.0, 0.0, 0.2),
+        (200, 0.25, 0.3, 0.2),
+        (1000, 0.1, 0.6, 0.05),
+        (1000, 0.5, 0.0, 0.2),
+        (1000, 0.0, 0.9, 0.05),
+    ],
+)
+def test_clipped_normal_channels_are_flagged_at_the_rate(
+    n: int, step: float, coefficient: float, clipped: float
+) -> None:
+    rng = np.random.default_rng(n)
+    readings = np.minimum(autoregressive(rng, 600, n, coefficient), ndtri(1.0 - clipped))
+    if step:
+        readings = step * np.round(readings / step + rng.random((600, 1)))
+    scoring = score(readings, NORMAL, shipped_nulls(), 0.05)
+    # Between 3 and 6 %, and three standard errors of 600 channels.
+    assert 0.03 - 0.02 < flagged(scoring, scoring.critical_r) < 0.06 + 0.029
+    assert np.mean(scoring.conditions.clipped_high > 0) > 0.9
+
+
+@pytest.mark.parametrize("step", [0.0, 0.25, 0.5])
+def test_a_uniform_channel_is_not_taken_for_a_clipped_one(step: float) -> None:
+    rng = np.random.default_rng(8)
+    readings = np.sqrt(12.0) * rng.random((200, 200))
+    if step:
+        readings = step * np.round(readings / step + rng.random((200, 1)))
+    scoring = score(readings, NORMAL, shipped_nulls(), 0.05)
+    # The textbook value, and the exactly simulated one, flag all of them.
+    assert flagged(scoring, scoring.critical_r) > 0.95 - 0.03
 
 
 def test_a_channel_without_conditions_keeps_the_textbook_value() -> None:
