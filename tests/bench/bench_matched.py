@@ -2,8 +2,8 @@
 
     python tests/bench/bench_matched.py [--channels 2000] [--alpha 0.05] [--sizes 50,200,1000,10000]
 
-Tables of normal channels (rounded, following themselves in time, clipped at the top) are written as Parquet, screened as
-a run is, and verdicts are read from the run file. A channel that is not scored is counted apart; shares are of the
+Tables of normal channels (rounded, following themselves in time, clipped at the top) are written as Parquet, screened
+as a run is, and verdicts are read from the run file. A channel that is not scored is counted apart; shares are of the
 scored. `!` marks shares outside .6 to 1.2 alpha.
 """
 
