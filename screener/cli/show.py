@@ -118,7 +118,7 @@ def _numbers(run: "RunFile", position: int, row: Row | None) -> list[str]:
 def _limited(channel: "Channel") -> str:
     """How many readings are only known to lie beyond a detection limit."""
     sides = {"below": channel.below, "above": channel.above}
-    return "".join(f", {count:,} {side} a detection limit (taken at it)" for side, count in sides.items() if count)
+    return "".join(f", {count:,} {side} a detection limit" for side, count in sides.items() if count)
 
 
 def _reading(run: "RunFile") -> list[str]:

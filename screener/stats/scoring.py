@@ -135,6 +135,10 @@ def _reasons(
         reasons[channel] = f"only {count} distinct readings, at least {FEWEST_DISTINCT} are needed"
     for channel in np.flatnonzero(scored & (censoring.most | (conditions.stuck > 0.5 * n))):
         reasons[channel] = conditions_of(conditions, int(channel))
+    limited = (conditions.below > 0) | (conditions.above > 0)
+    for channel in np.flatnonzero(scored & censoring.most & limited):
+        beyond = int(censoring.low[channel] + censoring.high[channel])
+        reasons[channel] = f"{beyond:,} of {n[channel]:,} readings lie beyond a limit: too few are known"
     for channel in np.flatnonzero(scored & conditions.drifting):
         reasons[channel] = conditions_of(conditions, int(channel))
     for channel in np.flatnonzero(~scored):

@@ -40,7 +40,7 @@ def test_score_tells_how_the_table_was_read(runs: str) -> None:
 def test_show_tells_it_too_and_counts_the_readings_beyond_a_limit(runs: str) -> None:
     screener("score", runs)
     shown = screener("show", "run.run", "heat").out
-    assert "heat: 120 readings, 0 missing, 2 below a detection limit (taken at it)" in shown
+    assert "heat: 120 readings, 0 missing, 2 below a detection limit" in shown
     told = shown[shown.index("how the table was read") :]
     assert "read as: semicolon, decimal comma" in told
     assert "4 cells hold 'OVER' in force" in told

@@ -20,6 +20,8 @@ def limited(values: NDArray[np.float64], low: float = -np.inf, high: float = np.
     return [f"<{low:g}" if v < low else f">{high:g}" if v > high else f"{v:.3f}" for v in values]
 
 
+LIMITS = RNG.uniform(9.0, 11.0, N).round(2)
+
 CELLS = {
     "whole": limited(NORMAL[0]),
     "low": limited(NORMAL[1], low=9.2),
@@ -27,6 +29,8 @@ CELLS = {
     # The second half was measured with the better instrument.
     "two": [*limited(NORMAL[3, : N // 2], low=9.2), *limited(NORMAL[3, N // 2 :], low=8.5)],
     "waits": limited(WAITS, low=1.0),
+    # Every specimen has a limit of its own.
+    "each": [f"<{low}" if v < low else str(v) for v, low in zip(NORMAL[0], LIMITS, strict=True)],
 }
 KNOWN = {
     "whole": (NORMAL[0], -np.inf, np.inf),
@@ -48,7 +52,7 @@ def results(tmp_path_factory: pytest.TempPathFactory) -> dict[str, dict[str, obj
     return {str(row["channel"]): row for row in pl.read_parquet(folder / "lab.parquet").iter_rows(named=True)}
 
 
-@pytest.mark.parametrize("channel", CELLS)
+@pytest.mark.parametrize("channel", KNOWN)
 def test_r_is_that_of_the_known_readings_at_the_positions_of_all(
     results: dict[str, dict[str, object]], channel: str
 ) -> None:
@@ -61,12 +65,21 @@ def test_r_is_that_of_the_known_readings_at_the_positions_of_all(
 
 def test_limits_alone_flag_no_normal_channel_and_hide_no_other(results: dict[str, dict[str, object]]) -> None:
     verdicts = {name: row["verdict"] for name, row in results.items()}
-    assert verdicts == {"whole": "clear", "low": "clear", "both": "clear", "two": "clear", "waits": "flagged"}
+    assert verdicts == {"whole": "clear", "low": "clear", "both": "clear", "two": "clear", "waits": "flagged"} | {
+        "each": "not scored"
+    }
+
+
+def test_a_channel_of_which_too_little_is_known_says_so(results: dict[str, dict[str, object]]) -> None:
+    beyond = np.count_nonzero(NORMAL[0] < max(low for v, low in zip(NORMAL[0], LIMITS, strict=True) if v < low))
+    assert 2 * beyond > N
+    assert results["each"]["reason"] == f"{beyond} of {N} readings lie beyond a limit: too few are known"
 
 
 def test_conditions_count_the_cells_beyond_a_limit(results: dict[str, dict[str, object]]) -> None:
     for name, cells in CELLS.items():
         said = str(results[name]["conditions"] or "")
+        assert "clipped" not in said, said
         for side, sign in (("below", "<"), ("above", ">")):
             count = sum(cell.startswith(sign) for cell in cells)
             assert (f"{count} {side} detection limit" in said) == (count > 0), said

@@ -25,7 +25,7 @@ def _holds(conditions: Conditions, channel: int, word: str) -> bool:
     drifting = bool(conditions.drifting[channel])
     return {
         ROUNDED: bool(conditions.rounded[channel]),
-        CLIPPED: bool(conditions.clipped_low[channel] or conditions.clipped_high[channel]),
+        CLIPPED: any(_ends(conditions, channel).values()),
         STUCK: bool(conditions.stuck[channel]),
         REPEATED: bool(conditions.repeated[channel]),
         SERIAL: bool(conditions.serial[channel]) and not drifting,
@@ -44,8 +44,17 @@ def _rounded(conditions: Conditions, channel: int) -> str:
 
 def _clipped(conditions: Conditions, channel: int) -> str:
     n = int(conditions.n[channel])
-    ends = {"minimum": int(conditions.clipped_low[channel]), "maximum": int(conditions.clipped_high[channel])}
+    ends = _ends(conditions, channel)
     return ", " + " and ".join(f"{_share(count, n)} at the {end}" for end, count in ends.items() if count)
+
+
+def _ends(conditions: Conditions, channel: int) -> dict[str, int]:
+    """Clipped readings at each end; those of a detection limit are none."""
+    low, high = int(conditions.clipped_low[channel]), int(conditions.clipped_high[channel])
+    return {
+        "minimum": low if low > conditions.below[channel] else 0,
+        "maximum": high if high > conditions.above[channel] else 0,
+    }
 
 
 def _stuck(conditions: Conditions, channel: int) -> str:
