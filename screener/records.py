@@ -221,6 +221,20 @@ class BlockScores:
 
 
 @dataclass(frozen=True, slots=True)
+class Confirmation:
+    """What samples of a channel's own process, with its autocorrelation and condition, say of its r."""
+
+    family: str
+    r: float
+    samples: int
+    """Samples with an r."""
+    as_small: int
+    """Samples whose r is as small as the channel's, or smaller."""
+    p: float
+    critical_r: float
+
+
+@dataclass(frozen=True, slots=True)
 class TableOpened:
     """A table was read and the run file is ready."""
 

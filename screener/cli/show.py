@@ -33,6 +33,13 @@ VIEWS = [view.value.replace(" ", "-") for view in View if view is not View.FAMIL
 @click.option("--width", type=click.IntRange(20, 1000), help="Cells across.  [default: the terminal's, at most 100]")
 @click.option("--height", type=click.IntRange(6, 500), default=22, show_default=True, help="Lines of the plot.")
 @click.option("--ascii", "plain", is_flag=True, help="Draw with ASCII characters only.")
+@click.option(
+    "--confirm",
+    "samples",
+    type=click.IntRange(100, 1_000_000),
+    metavar="N",
+    help="Confirm the verdict by N samples in the channel's own autocorrelation; its table is read again.",
+)
 @plan_options
 @click.pass_context
 def command(ctx: click.Context, /, path: Path, channel: str, **given: Any) -> None:
@@ -41,6 +48,7 @@ def command(ctx: click.Context, /, path: Path, channel: str, **given: Any) -> No
     A part of the name is enough when no other channel's name holds it.
     """
     from screener.cli.by_file import file_lines
+    from screener.cli.confirming import confirm_and_keep
     from screener.cli.output import put
     from screener.cli.source import exit_code, finished_run
     from screener.stats.families import family_named
@@ -48,9 +56,11 @@ def command(ctx: click.Context, /, path: Path, channel: str, **given: Any) -> No
     against = family_named(given["against"]).name if given["against"] else ""
     with finished_run(ctx, path, given) as run:
         position = _position(run, channel)
+        if given["samples"]:
+            confirm_and_keep(run, position, given["samples"])
         results = run.results()
         row = next(results.filter(results["position"] == position).iter_rows(named=True), None)
-        parts: list[Sequence[str]] = [_numbers(run, position, row)]
+        parts: list[Sequence[str]] = [[*_numbers(run, position, row), *_confirmation(run, position)]]
         if given["by"]:
             parts.append(file_lines(run, position))
         if row is not None and row["n"]:
@@ -113,6 +123,14 @@ def _numbers(run: "RunFile", position: int, row: Row | None) -> list[str]:
         "(rms distance from the line, in standard deviations)",
         *condition,
     ]
+
+
+def _confirmation(run: "RunFile", position: int) -> list[str]:
+    """What the last confirmation of the channel said."""
+    from screener.ui.confirming import confirmation_words
+
+    found = run.confirmation(position)
+    return [confirmation_words(found)] if found is not None else []
 
 
 def _limited(channel: "Channel") -> str:
@@ -190,7 +208,7 @@ def _drawn(run: "RunFile", position: int, n: int, family: str, view: View, given
     from screener.plots import Charset
     from screener.ui.drawing import Wanted, drawing
 
-    wanted = Wanted(position, n, family, given["width"] or _width(), given["height"], view)
+    wanted = Wanted(position, n, family, given["width"] or _width(), given["height"], view, told=False)
     charset = Charset.ASCII if given["plain"] or not _draws_unicode() else Charset.UNICODE
     return drawing(run, run.facts, run.plan, wanted, charset=charset)
 

@@ -23,7 +23,7 @@ Migrate = Callable[[sqlite3.Connection, int], None]
 _TABLES = {
     *("version", "run", "remark", "set_aside", "channel", "proposal", "source_file"),
     *("span", "score", "family", "fit", "kept_readings", "readings_in_order", "by_file", "outermost", "strip"),
-    *("act", "decided", "view"),
+    *("confirmation", "act", "decided", "view"),
 }
 
 

@@ -14,9 +14,10 @@ from typing import TYPE_CHECKING, Self
 import polars as pl
 
 from screener.errors import RunFileError
-from screener.records import BlockScores, Decision, Plan, Span, TableFacts
+from screener.records import BlockScores, Confirmation, Decision, Plan, Span, TableFacts
 from screener.runs import connection as sqlite
 from screener.runs import decisions
+from screener.runs.confirmations import read_confirmation, store_confirmation
 from screener.runs.facts import read_origin, store_origin
 from screener.runs.failures import explained, explained_content, refusal
 from screener.runs.migrations import migrated
@@ -185,6 +186,16 @@ class RunFile:
         """Do again what was undone last; how many channels it is about, 0 when there is nothing."""
         with self._writing() as connection:
             return decisions.redo(connection)
+
+    def confirmation(self, position: int) -> Confirmation | None:
+        """What samples of the channel's own process said of its r; None when it was never confirmed."""
+        with explained_content(self.path):
+            return read_confirmation(self._connection, position)
+
+    def store_confirmation(self, position: int, confirmation: Confirmation) -> None:
+        """Keep it, in place of an earlier one of the channel."""
+        with self._writing() as connection:
+            store_confirmation(connection, position, confirmation)
 
     def view(self) -> dict[str, str]:
         """Where the user was, as last kept; anything may be missing."""

@@ -139,6 +139,17 @@ CREATE TABLE strip (
     levels TEXT NOT NULL
 );
 
+-- One row per channel confirmed: what samples in its own autocorrelation say of its r.
+CREATE TABLE confirmation (
+    position INTEGER PRIMARY KEY,
+    family TEXT NOT NULL,
+    r REAL NOT NULL,
+    samples INTEGER NOT NULL,
+    as_small INTEGER NOT NULL,
+    p REAL NOT NULL,
+    critical_r REAL
+);
+
 -- One row per act of a user: what was decided or noted at once, for one channel or many.
 CREATE TABLE act (
     id INTEGER PRIMARY KEY,

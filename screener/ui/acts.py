@@ -5,8 +5,9 @@ from __future__ import annotations
 from collections.abc import Callable, Sequence
 from typing import TYPE_CHECKING
 
-from screener.records import Decision
+from screener.records import Confirmation, Decision
 from screener.ui.captions import decided_words
+from screener.ui.confirming import confirmation_words
 
 if TYPE_CHECKING:
     from screener.runs import RunFile
@@ -28,6 +29,16 @@ def noted(positions: Sequence[int], note: str) -> Callable[[RunFile], str]:
     def deed(run: RunFile) -> str:
         run.annotate(positions, note)
         return decided_words("noted" if note else "note taken away", len(positions))
+
+    return deed
+
+
+def confirmed(position: int, confirmation: Confirmation) -> Callable[[RunFile], str]:
+    """Keep what samples said of a channel."""
+
+    def deed(run: RunFile) -> str:
+        run.store_confirmation(position, confirmation)
+        return confirmation_words(confirmation)
 
     return deed
 

@@ -109,6 +109,14 @@ class ScreenerApp(App[int]):
     def _exported(self, event: messages.Exported) -> None:
         self.main.exported(event)
 
+    @on(messages.ConfirmingGoesOn)
+    def _confirming(self, event: messages.ConfirmingGoesOn) -> None:
+        self.main.confirming(event)
+
+    @on(messages.ConfirmingEnded)
+    def _confirming_ended(self, event: messages.ConfirmingEnded) -> None:
+        self.main.confirming_ended(event)
+
     @on(messages.QuitAsked)
     def _quit_asked(self) -> None:
         self.leave(0)

@@ -5,6 +5,7 @@ from __future__ import annotations
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, Any
 
+from screener.ui.confirming import confirmation_lines
 from screener.ui.families import family_lines, shapes
 from screener.ui.tails import Tails, tail_lines, tails_of
 from screener.ui.views import View
@@ -34,6 +35,8 @@ class Wanted:
     width: int
     height: int
     view: View = View.QUANTILE
+    told: bool = True
+    """With the outermost readings and the confirmation under a quantile plot."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -129,7 +132,11 @@ def _quantile_plot(
     points = run.points(wanted.position)
     whole = _whole(points, plan, wanted, fit)
     tails = tails_of(points, run.outermost(wanted.position), whole)
-    named = tail_lines(tails, wanted.view, wanted.width) if wanted.height >= ROOM_FOR_TAILS else []
+    named: list[str] = []
+    if wanted.told and wanted.height >= ROOM_FOR_TAILS:
+        found = run.confirmation(wanted.position)
+        said = confirmation_lines(found, wanted.width) if found is not None and found.family == wanted.family else []
+        named = [*tail_lines(tails, wanted.view, wanted.width), *said]
     height = wanted.height - len(named)
     plot = quantile_plot(_seen(whole, wanted.view), width=wanted.width, height=height, charset=charset)
     return [*plot, *named], tails

@@ -17,8 +17,18 @@ from typing import TYPE_CHECKING
 from textual.message import Message
 
 from screener.errors import ScreenerError
-from screener.records import BlockFailed, BlockScored, Event, NullsPrepared, RunFinished, TableOpened
+from screener.records import (
+    BlockFailed,
+    BlockScored,
+    Event,
+    NullsPrepared,
+    Plan,
+    RunFinished,
+    TableFacts,
+    TableOpened,
+)
 from screener.ui import messages
+from screener.ui.acts import confirmed
 from screener.ui.drawing import Wanted, drawing
 from screener.ui.source import Source
 
@@ -50,6 +60,8 @@ class Feed:
         self._stop = threading.Event()
         self._reading: threading.Thread | None = None
         self._scoring: threading.Thread | None = None
+        self._confirming: threading.Thread | None = None
+        self._stop_confirming = threading.Event()
 
     def begin(self) -> None:
         """Start scoring, or open the run file to review."""
@@ -67,13 +79,14 @@ class Feed:
     def stop(self) -> None:
         """Ask scoring to end after the blocks in hand, and reading at once."""
         self._stop.set()
+        self._stop_confirming.set()
         self._reader.stop()
 
     def stopped_within(self, seconds: float) -> bool:
-        """Whether both threads have ended, after waiting for at most that long."""
+        """Whether all threads have ended, after waiting for at most that long."""
         self.stop()
         end = time.monotonic() + seconds
-        threads = [thread for thread in (self._reading, self._scoring) if thread is not None]
+        threads = [thread for thread in (self._reading, self._scoring, self._confirming) if thread is not None]
         for thread in threads:
             thread.join(max(0.0, end - time.monotonic()))
         return not any(thread.is_alive() for thread in threads)
@@ -93,6 +106,31 @@ class Feed:
     def keep(self, view: dict[str, str]) -> None:
         """Have the run file keep where the user is."""
         self._reader.keep(view)
+
+    def confirm(self, facts: TableFacts, plan: Plan, position: int) -> None:
+        """Have the channel confirmed; while one is being confirmed, stop that."""
+        if self._confirming is not None and self._confirming.is_alive():
+            self._stop_confirming.set()
+            return
+        stop = self._stop_confirming = threading.Event()
+        self._confirming = self._thread(lambda: self._confirm(facts, plan, position, stop))
+
+    def _confirm(self, facts: TableFacts, plan: Plan, position: int, stop: threading.Event) -> None:
+        """Make the samples, telling of them; the result goes to the run file."""
+        from screener.screening.confirmation import SAMPLES, confirm
+
+        name, said = facts.channels[position].name, ""
+        try:
+            self._post(messages.ConfirmingGoesOn(name, 0, SAMPLES))
+            for reached in confirm(facts, plan, position, SAMPLES, stop.is_set):
+                self._post(messages.ConfirmingGoesOn(name, reached.made, SAMPLES))
+            if stop.is_set():
+                said = "Stopped confirming; nothing was kept."
+            else:
+                self._reader.act(confirmed(position, reached.confirmation))
+        except ScreenerError as error:
+            said = str(error)
+        self._post(messages.ConfirmingEnded(said))
 
     def _thread(self, work: Callable[[], None]) -> threading.Thread:
         def guarded() -> None:

@@ -24,6 +24,7 @@ PLOT_KEYS = (
     ("utxl", "decide", "help"),
     ("z", "undo", "undo"),
     ("a", "note", "annotate"),
+    ("C", "confirm", "confirm"),
     ("?", "help", "help"),
     ("q", "quit", "quit"),
 )
@@ -57,6 +58,7 @@ ACTIONS = (
     ("a", "annotate", "Add a note"),
     ("z", "undo", "Undo the last decision or note"),
     ("y", "redo", "Do again what was undone"),
+    ("C,upper_c", "confirm", "Confirm the verdict by samples in the channel's own autocorrelation, or stop that"),
     ("e", "export", "Export these rows to a file"),
     ("i", "reading", "What was read and set aside"),
     ("question_mark", "help", "Help"),

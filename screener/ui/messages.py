@@ -58,6 +58,27 @@ class Preparing(Message):
 
 
 @dataclass
+class ConfirmingGoesOn(Message):
+    """Samples for the confirmation of a channel are being made."""
+
+    channel: str
+    made: int
+    wanted: int
+
+    def can_replace(self, message: Message) -> bool:
+        """Only the newest counts."""
+        return isinstance(message, ConfirmingGoesOn)
+
+
+@dataclass
+class ConfirmingEnded(Message):
+    """No more samples are made."""
+
+    sentence: str
+    """What is to be said; empty when the result is on its way."""
+
+
+@dataclass
 class BlockLost(Message):
     """A block of channels could not be scored."""
 

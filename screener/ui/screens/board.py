@@ -25,7 +25,7 @@ from screener.ui.widgets.channel_table import ChannelTable
 from screener.ui.widgets.key_line import KeyLine
 from screener.ui.widgets.lines import Line, Lines, plain
 from screener.ui.widgets.plot_panel import PlotPanel
-from screener.ui.widgets.progress import preparing_line, progress_line
+from screener.ui.widgets.progress import confirming_line, preparing_line, progress_line
 from screener.ui.widgets.prompt import Prompt
 
 if TYPE_CHECKING:
@@ -121,6 +121,21 @@ class Board(Screen[None]):
         bar.display = True
         bar.show([preparing_line(event.positions, event.share, self.size.width, unicode=self._unicode)])
 
+    def confirming(self, event: messages.ConfirmingGoesOn) -> None:
+        """Show how many samples are made, unless scoring takes that line."""
+        if not self._feed.is_scoring:
+            bar = self.query_one("#progress", Lines)
+            bar.display = True
+            name, width = shown(event.channel), self.size.width
+            bar.show([confirming_line(name, event.made, event.wanted, width, unicode=self._unicode)])
+
+    def confirming_ended(self, event: messages.ConfirmingEnded) -> None:
+        """No more progress to show."""
+        if not self._feed.is_scoring:
+            self.query_one("#progress").display = False
+        if event.sentence:
+            self._say(event.sentence)
+
     def scoring_ended(self, event: messages.ScoringEnded) -> None:
         """No more progress to show; nothing is said of a run that was finished before."""
         bar = self.query_one("#progress")
@@ -157,6 +172,7 @@ class Board(Screen[None]):
 
             self._results = with_decisions(self._results, event.decisions)
             self._show_rows()
+            self._want_plot()
         self._say(event.sentence)
 
     def action_turn_family(self, by: int) -> None:

@@ -24,6 +24,8 @@ run order, lag, histogram, all families
   u t x l       decide: use as it is, use transformed, leave out, look again; the letter stands beside the verdict
   d  a          take the decision back; add a note
   z  y          undo, and do again; every act is in the run file at once, with its time and user
+  C             confirm the verdict: 2,000 samples in the channel's own autocorrelation, step, clipping and gaps, from \
+its table; again stops; the result stands under the plot and in the run file
   e             export the rows as filtered and sorted here; .md and .html are reports with plots
   i             how the table was read: columns set aside, remarks
   Ctrl+P        all actions by name
@@ -65,8 +67,7 @@ CAUTIONS = (
     "and clusters.",
     "With very many readings small departures are flagged; look at the distance off the line before acting.",
     "Coarse steps, clipping, drift and readings that follow each other in time lower r by themselves. Critical values "
-    "against the normal allow for steps and for following in time; those of other families and of clipped channels "
-    "hold for independent, unrounded, complete readings.",
+    "allow for that, as far as it could be found; the textbook ones (--plain) do not.",
     "Among many channels some are flagged by chance; the line under the title says how many to expect.",
     "Figures for safety, health or regulated characteristics need the governing standard, local codes, and licensed or "
     "qualified practice; this screen does not replace them.",

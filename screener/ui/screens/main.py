@@ -139,6 +139,12 @@ class MainScreen(Board):
         if channel is not None:
             self._ask(NOTE, "Note:", "" if self._marked else channel["note"] or "")
 
+    def action_confirm(self) -> None:
+        """Confirm the verdict on the channel under the cursor, or stop confirming."""
+        channel = self._table.channel
+        if channel is not None and self._opened is not None:
+            self._feed.confirm(self._opened.facts, self._opened.plan, channel["position"])
+
     def action_undo(self) -> None:
         """Take back the last decision or note."""
         self._feed.act(acts.undone)

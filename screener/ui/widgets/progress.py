@@ -25,6 +25,12 @@ def preparing_line(positions: str, share: float, width: int, *, unicode: bool) -
     return [*_bar(share, width, unicode=unicode), (told, PLAIN)]
 
 
+def confirming_line(channel: str, made: int, wanted: int, width: int, *, unicode: bool) -> Line:
+    """A bar, and how many samples of a channel's own process are made."""
+    told = f" {made:,} of {wanted:,} samples to confirm {channel} (C stops)"
+    return [*_bar(made / wanted, width, unicode=unicode), (told, PLAIN)]
+
+
 def _bar(share: float, width: int, *, unicode: bool) -> Line:
     cells = max(8, int(width * BAR_SHARE))
     filled = int(cells * share)
