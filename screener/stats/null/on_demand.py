@@ -30,7 +30,7 @@ SETTLED = 30
 """Samples with an r as small as the channel's, from which it is not flagged."""
 TAIL_READINGS = 50
 """Samples that a tail is fitted to at least."""
-MOST_WITHOUT_R = 0.5
+MOST_WITHOUT_R = 0.9
 """Share of samples without an r from which a condition is not simulated."""
 COUNTED = 20
 """A quantile is taken from the samples themselves when at least this many lie beyond it."""
