@@ -81,7 +81,7 @@ def build(positions: str, output: Path | None, seed: int, share: float, jobs: in
     from screener.stats.positions import rule_key
 
     rule = rule_key(positions)
-    wanted, folder = {**tasks(rule, seed, share), **matched_tasks(rule, seed)}, null_folder() / "parts"
+    wanted, folder = {**tasks(rule, seed, share), **matched_tasks(rule, seed, share)}, null_folder() / "parts"
     path = output or built_path(rule)
     with _explained():
         path.parent.mkdir(parents=True, exist_ok=True)

@@ -69,12 +69,12 @@ def tasks(rule: str, seed: int, share: float, largest: int | None = None) -> dic
     return made
 
 
-def matched_tasks(rule: str, seed: int) -> dict[str, Task]:
-    """The parts of the matched table of the normal family, by key."""
+def matched_tasks(rule: str, seed: int, share: float) -> dict[str, Task]:
+    """The parts of the matched table of the normal family, by key; a share below 1 simulates less."""
     made: dict[str, Task] = {}
     for n in matched.SIZES:
         for place, coefficient in enumerate(matched.COEFFICIENTS):
-            samples = matched.samples_at(n)
+            samples = max(1000, int(share * matched.samples_at(n)))
             name = f"{rule}-version{NULL_VERSION}-seed{seed}-matched-n{n}-ar{coefficient}-samples{samples}"
             work = n * samples * (1 + len(matched.STEPS)) // 4
             make = partial(_matched_part, n, coefficient, rule, samples, seed)
