@@ -22,7 +22,6 @@ PLOT_KEYS = (
     ("v", "view", "turn_view(1)"),
     ("[ ]", "family", "turn_family(1)"),
     ("utxl", "decide", "help"),
-    ("z", "undo", "undo"),
     ("a", "note", "annotate"),
     ("C", "confirm", "confirm"),
     ("?", "help", "help"),
