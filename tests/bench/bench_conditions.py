@@ -73,14 +73,14 @@ def main() -> None:
         n = sort_in_place(ordered)
         passed, sample = pass_over(readings, ordered, n), sample_ranks(ordered, n)
         lattice = find_lattice(ordered, n, sample)
-        ones = np.ones(n.size)
+        ones, steps = np.ones(n.size), lattice.step / np.nanstd(readings, axis=1)
         room = readings.copy()
         seconds = least(
             {
                 "refill": partial(np.copyto, room, readings),
                 "sort": partial(refill_and_sort, room, readings),
                 "row pass": partial(pass_over, readings, ordered, n),
-                "serial": partial(serial_dependence, passed.resolutions, n, readings),
+                "serial": partial(serial_dependence, passed.resolutions, n, readings, steps),
                 "sample": partial(sample_ranks, ordered, n),
                 "lattice": partial(find_lattice, ordered, n, sample),
                 "clipping": partial(find_clipping, ordered, n, lattice, ones),

@@ -46,9 +46,9 @@ def find_repeats(ordered: FloatArray, n: IntArray, sample: Sample, lattice: Latt
 
 def _commonest(readings: FloatArray, counted: BoolArray, alike: FloatArray) -> FloatArray:
     """The value that most of the sampled readings share, [c]."""
-    place = np.arange(readings.shape[1])
-    start = np.zeros(readings.shape, dtype=np.int64)
-    start[:, 1:] = np.where(np.diff(readings, axis=1) <= alike[:, None], 0, place[1:])
+    place = np.arange(readings.shape[1], dtype=np.int32)
+    start = np.zeros(readings.shape, dtype=np.int32)
+    np.multiply(readings[:, 1:] - readings[:, :-1] > alike[:, None], place[1:], out=start[:, 1:])
     length = np.where(counted, place - np.maximum.accumulate(start, axis=1) + 1, 0)
     last = np.argmax(length, axis=1)[:, None]
     return at_rank(readings, last)[:, 0]

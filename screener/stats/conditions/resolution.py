@@ -98,8 +98,7 @@ def _lattice_of(
     readings: FloatArray, tied: BoolArray, kept: BoolArray, sampled: BoolArray, same: FloatArray
 ) -> tuple[FloatArray, FloatArray]:
     """Step (0 where there is none) and anchor, by the spacings of the kept ones of the readings."""
-    spacing = _spacings(readings, kept)
-    ascending = np.sort(np.where(spacing > same[:, None], spacing, np.nan), axis=1)
+    ascending = np.sort(_spacings(readings, kept, same), axis=1)
     count = np.count_nonzero(~np.isnan(ascending), axis=1)
     step = np.zeros(count.size)
     few = count <= FEW_SPACINGS
@@ -113,17 +112,13 @@ def _lattice_of(
     return np.where(found, step, 0.0), anchor
 
 
-def _spacings(readings: FloatArray, kept: BoolArray) -> FloatArray:
-    """Each kept reading less the kept one before it, float64[C, k]; NaN elsewhere and for the first."""
+def _spacings(readings: FloatArray, kept: BoolArray, same: FloatArray) -> FloatArray:
+    """Each kept reading less the kept one before it, float64[C, k]; NaN elsewhere, and where the two are the same."""
+    before = np.maximum.accumulate(np.where(kept, readings, -np.inf), axis=1)[:, :-1]
     spacing = np.full(readings.shape, np.nan)
-    if np.all(kept):
-        np.subtract(readings[:, 1:], readings[:, :-1], out=spacing[:, 1:])
-        return spacing
-    place = np.where(kept, np.arange(kept.shape[1]), -1)
-    before = np.maximum.accumulate(place, axis=1)[:, :-1]
-    since = readings[:, 1:] - at_rank(readings, np.maximum(before, 0))
-    spacing[:, 1:] = np.where(kept[:, 1:] & (before >= 0), since, np.nan)
-    return spacing
+    np.subtract(readings[:, 1:], before, out=spacing[:, 1:])
+    counts = kept & (spacing > same[:, None]) & (spacing < np.inf)
+    return np.where(counts, spacing, np.nan)
 
 
 def _common_step(ascending: FloatArray, count: IntArray) -> FloatArray:
@@ -158,7 +153,7 @@ def _small_spacing(ascending: FloatArray, count: IntArray) -> FloatArray:
 
 def _middle_kept(readings: FloatArray, kept: BoolArray) -> FloatArray:
     """The middle one of the kept readings of each channel."""
-    rank = np.cumsum(kept, axis=1)
+    rank = np.cumsum(kept, axis=1, dtype=np.int32)
     middle = np.argmax(rank >= (rank[:, -1:] + 1) // 2, axis=1)
     return at_rank(readings, middle[:, None])[:, 0]
 
