@@ -34,7 +34,7 @@ def test_censored_readings_leave_the_others_at_the_published_positions(n: int, c
 
 
 def test_soulen_counts_are_flagged_by_the_textbook_value_and_not_with_their_step() -> None:
-    # NIST/SEMATECH e-Handbook 1.4.2.4.3 prints a PPCC of .975 for these 700 counts, and rejects normality.
+    # NIST/SEMATECH e-Handbook 1.4.2.4.3 prints a PPCC of .975 for these 700 counts.
     readings = series("soulen")[None, :]
     scoring = score(readings, NORMAL, shipped_nulls(), 0.05)
     r = scoring.fits.r[0, 0]

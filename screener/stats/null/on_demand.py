@@ -8,6 +8,7 @@ Carlo; Besag & Clifford 1991, Biometrika 78); one that stays below goes on to th
 from collections.abc import Callable, Iterator
 from dataclasses import replace
 from hashlib import sha256
+from itertools import pairwise
 from threading import Lock
 from typing import Protocol
 
@@ -61,7 +62,7 @@ class SimulatedNulls:
         self._guard = Lock()
 
     def prefix(self, condition: Condition, count: int) -> FloatArray:
-        """ln(1 - r) of the first so many samples, always the same ones. Raises: Cancelled."""
+        """ln(1 - r) of the first so many samples, a batch's end: always the same ones. Raises: Cancelled."""
         with self._guard:
             lock = self._locks.setdefault(condition, Lock())
         with lock:
@@ -77,18 +78,17 @@ class SimulatedNulls:
 
     def _loaded(self, condition: Condition) -> FloatArray:
         kept = None if self._kept is None else self._kept.load(key_of(condition))
-        return np.empty(0) if kept is None else kept
+        whole = kept is not None and kept.size in batch_ends(kept.size)
+        return kept if kept is not None and whole else np.empty(0)
 
     def _longer(self, condition: Condition, held: FloatArray, count: int) -> FloatArray:
-        parts, total = [], 0
-        for number, stop in enumerate(batch_ends(count)):
-            if stop > held.size:
+        parts = [held]
+        for number, (start, end) in enumerate(pairwise([0, *batch_ends(count)])):
+            if end > held.size:
                 if self._cancelled():
                     raise Cancelled
-                parts.append(log_gaps(condition, stop - total, _random(condition, number)))
-            total = stop
-        done = [end for end in batch_ends(count) if end <= held.size]
-        return np.concatenate([held[: done[-1] if done else 0], *parts])
+                parts.append(log_gaps(condition, end - start, _random(condition, number)))
+        return np.concatenate(parts)
 
 
 def key_of(condition: Condition) -> str:
