@@ -6,15 +6,17 @@ from typing import TYPE_CHECKING
 
 from screener.cli.output import tell
 from screener.cli.progress import PAUSE
+from screener.errors import RunFileError
 
 if TYPE_CHECKING:
+    from screener.records import Confirmation
     from screener.runs import RunFile
 
 
-def confirm_and_keep(run: "RunFile", position: int, samples: int) -> None:
-    """Hold the channel against samples of its own process, and keep the result in the run file.
+def confirmed(run: "RunFile", position: int, samples: int) -> "Confirmation":
+    """What samples of the channel's own process say, kept in the run file; told when it cannot be kept there.
 
-    Raises: ScreenerError when that cannot be done.
+    Raises: ScreenerError when the channel cannot be confirmed.
     """
     from screener.runs import RunFile
     from screener.screening.confirmation import confirm
@@ -28,5 +30,9 @@ def confirm_and_keep(run: "RunFile", position: int, samples: int) -> None:
         elif time.monotonic() - told >= PAUSE:
             told = time.monotonic()
             tell(line)
-    with RunFile.open(run.path) as writable:
-        writable.store_confirmation(position, reached.confirmation)
+    try:
+        with RunFile.open(run.path) as writable:
+            writable.store_confirmation(position, reached.confirmation)
+    except RunFileError as error:
+        tell(f"screener: {error}")
+    return reached.confirmation

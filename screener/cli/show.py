@@ -14,7 +14,7 @@ from screener.cli.options import TABLE_OR_RUN, plan_options
 from screener.ui.views import View
 
 if TYPE_CHECKING:
-    from screener.records import Channel
+    from screener.records import Channel, Confirmation
     from screener.runs import RunFile
     from screener.ui.drawing import Drawing
 
@@ -48,7 +48,7 @@ def command(ctx: click.Context, /, path: Path, channel: str, **given: Any) -> No
     A part of the name is enough when no other channel's name holds it.
     """
     from screener.cli.by_file import file_lines
-    from screener.cli.confirming import confirm_and_keep
+    from screener.cli.confirming import confirmed
     from screener.cli.output import put
     from screener.cli.source import exit_code, finished_run
     from screener.stats.families import family_named
@@ -56,11 +56,10 @@ def command(ctx: click.Context, /, path: Path, channel: str, **given: Any) -> No
     against = family_named(given["against"]).name if given["against"] else ""
     with finished_run(ctx, path, given) as run:
         position = _position(run, channel)
-        if given["samples"]:
-            confirm_and_keep(run, position, given["samples"])
+        found = confirmed(run, position, given["samples"]) if given["samples"] else run.confirmation(position)
         results = run.results()
         row = next(results.filter(results["position"] == position).iter_rows(named=True), None)
-        parts: list[Sequence[str]] = [[*_numbers(run, position, row), *_confirmation(run, position)]]
+        parts: list[Sequence[str]] = [[*_numbers(run, position, row), *_confirmation(found)]]
         if given["by"]:
             parts.append(file_lines(run, position))
         if row is not None and row["n"]:
@@ -125,11 +124,10 @@ def _numbers(run: "RunFile", position: int, row: Row | None) -> list[str]:
     ]
 
 
-def _confirmation(run: "RunFile", position: int) -> list[str]:
+def _confirmation(found: "Confirmation | None") -> list[str]:
     """What the last confirmation of the channel said."""
     from screener.ui.confirming import confirmation_words
 
-    found = run.confirmation(position)
     return [confirmation_words(found)] if found is not None else []
 
 

@@ -1,5 +1,7 @@
 """`screener show --confirm`: the result is printed, kept, and printed again without the table."""
 
+import sqlite3
+from contextlib import closing
 from pathlib import Path
 
 from command_line import screener
@@ -30,3 +32,16 @@ def test_without_its_table_a_channel_cannot_be_confirmed_and_the_rest_is_shown(t
     assert (outcome.code, outcome.out, len(outcome.complaints)) == (3, "", 1)
     assert "no such file" in outcome.err
     assert screener("show", run_file, "wait").code == 0
+
+
+def test_a_result_that_cannot_be_kept_is_printed_all_the_same(table: Path, run_file: Path) -> None:
+    assert table.exists()
+    with closing(sqlite3.connect(run_file, isolation_level=None)) as other:
+        other.execute("BEGIN IMMEDIATE")
+        outcome = screener("show", run_file, "wait", "--confirm", "100")
+    assert outcome.code == 0
+    assert "\nBy 100 samples of normal" in outcome.out
+    assert len(outcome.complaints) == 1
+    assert "another program" in outcome.complaints[0]
+    with RunFile.open(run_file, read_only=True) as run:
+        assert run.confirmation(2) is None
