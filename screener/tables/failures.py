@@ -12,10 +12,12 @@ from screener.errors import PlanError, TableError
 from screener.tables.formats import Kind
 from screener.tables.names import visible
 
+ADDRESS = "an address"
+
 
 @contextmanager
-def readable(path: Path, what: str) -> Iterator[None]:
-    """Turns what the reading libraries raise about a file into one sentence.
+def readable(path: Path | str, what: str) -> Iterator[None]:
+    """Turns what the reading libraries raise about a file, or an address, into one sentence.
 
     Raises:
         TableError: something inside could not read the file.
@@ -45,6 +47,8 @@ def _said(error: BaseException, what: str) -> str:
     if what.startswith(Kind.NDJSON) and not isinstance(error, OSError):
         return "every line must be one JSON object, and its values numbers, texts or null."
     first_line = visible((str(error).strip() or type(error).__name__).splitlines()[0])[:200].rstrip(".")
+    if what == ADDRESS:
+        return f"{first_line}. Check the address and the network."
     if '`"' in first_line:
         return "a quotation mark is not closed. Mend the line or remove the mark."
     return f"{first_line}. The file may be damaged or cut off; write it again."

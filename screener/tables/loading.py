@@ -1,5 +1,6 @@
 """One file or address as a raw table, with the fingerprint of exactly what was read."""
 
+import warnings
 from collections.abc import Iterator
 from concurrent.futures import ThreadPoolExecutor
 from dataclasses import dataclass, replace
@@ -10,7 +11,7 @@ import polars as pl
 
 from screener.errors import TableError
 from screener.records import Plan
-from screener.tables.failures import named, readable
+from screener.tables.failures import ADDRESS, named, readable
 from screener.tables.fingerprint import fingerprint
 from screener.tables.formats import Kind, Recognised, recognise
 from screener.tables.instruments import read_hdf5, read_matlab, read_mdf, read_tdms
@@ -113,7 +114,8 @@ def load_address(address: str, plan: Plan, held_bytes: int) -> Loaded:
         TableError: it cannot be read.
     """
     suffix = Path(urlsplit(address).path).suffix.lower()
-    with readable(Path(address), "an address"):
+    with readable(address, ADDRESS), warnings.catch_warnings():
+        warnings.simplefilter("ignore")  # such as that a region was not given
         if suffix in {".parquet", ".arrow", ".ipc", ".feather"}:
             kind = Kind.PARQUET if suffix == ".parquet" else Kind.IPC
             frame = pl.scan_parquet(address, glob=False) if kind is Kind.PARQUET else pl.scan_ipc(address, glob=False)
