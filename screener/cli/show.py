@@ -113,6 +113,8 @@ def _numbers(run: "RunFile", position: int, row: Row | None) -> list[str]:
             f"matched critical r {r_text(row['critical_r'])} for that condition, instead of the textbook "
             f"{r_text(row['plain_critical_r'])}"
         )
+        if "clipped" in row["conditions"] or "detection limit" in row["conditions"]:
+            condition.append("r, location and scale are those of the other readings, at their positions among all")
     sign = "<" if row["r"] < row["critical_r"] else ">="
     return [
         head,
@@ -164,6 +166,7 @@ def _families(drawn: "Drawing") -> list[str]:
     if drawn.closest:
         lines.append(drawn.closest)
     lines.append("location and scale of a family on the log axis are those of ln x")
+    lines.append("families other than the normal and the one held against have textbook critical values")
     if any(fit["extrapolated"] for fit in fits):
         lines.append("* beyond what was simulated: from the fitted tail")
     return lines
