@@ -65,6 +65,25 @@ def test_a_channel_alone_has_the_bits_it_has_among_others() -> None:
         assert np.array_equal(alone[0], together[row], equal_nan=True)
 
 
+def test_a_channel_alone_has_the_bits_it_has_among_others_of_any_n() -> None:
+    rng = np.random.default_rng(4)
+    ordered = np.sort(rng.normal(50.0, 2.0, (40, 300)), axis=1)
+    n = rng.integers(250, 301, 40)
+    ordered[np.arange(300) >= n[:, None]] = np.nan
+    low, high = rng.integers(0, 30, 40), rng.integers(0, 60, 40)
+    together = fit_censored(ordered, n, low, high, FAMILIES, "filliben")
+    assert np.all(together.r[:, 0] > 0.9)
+    for row in range(0, 40, 3):
+        one = slice(row, row + 1)
+        alone = fit_censored(ordered[one], n[one], low[one], high[one], FAMILIES, "filliben")
+        for found, wanted in (
+            (together.r, alone.r),
+            (together.location, alone.location),
+            (together.scale, alone.scale),
+        ):
+            assert np.array_equal(found[row], wanted[0], equal_nan=True)
+
+
 def test_too_few_uncensored_readings_give_no_r() -> None:
     ordered = np.arange(10.0)[None, :]
     assert np.all(np.isnan(fit_censored(ordered, np.array([10]), np.array([4]), np.array([4]), FAMILIES, "filliben").r))

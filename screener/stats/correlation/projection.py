@@ -79,7 +79,7 @@ def carrier(n: int, rule: str) -> Carrier:
 def project(ordered: FloatArray, n: IntArray, rows: IntArray, rule: str, deviations: Deviations) -> Projection:
     """Project the channels `rows` of sorted readings, float64[C, readings], of which the first n >= 3 are finite.
 
-    A deviation must not change the order, and be 0 for the middle reading.
+    A deviation must not change the order.
     """
     counts = n[rows]
     middle = ordered[rows, counts // 2]
@@ -142,25 +142,27 @@ def _align(
     tile: FloatArray,
 ) -> None:
     """Write deviations of the channels `rows` into tile: lower halves left, upper halves right, 0 between and below."""
-    width = tile.shape[1]
-    starts = np.flatnonzero(np.diff(counts, prepend=-1))
+    width, starts = tile.shape[1], np.flatnonzero(np.diff(counts, prepend=-1))
+    ends, in_place = [*starts[1:], rows.size], starts.size == 1 and _side_by_side(rows)
     tile[rows.size :] = 0.0
-    for start, stop in zip(starts, [*starts[1:], rows.size], strict=True):
-        some, size = _taken(ordered, rows[start:stop]), int(counts[start])
-        half = size // 2
-        upper = width - (size - half)
-        if some.base is ordered and starts.size == 1:
+    for start, stop in zip(starts, ends, strict=True):
+        same, size = rows[start:stop], int(counts[start])
+        some = ordered[same[0] : same[-1] + 1] if _side_by_side(same) else ordered[same]
+        half, upper = size // 2, width - (size - size // 2)
+        if in_place:
             deviations(some[:, :half], middle[:, None], tile[:stop, :half])
             deviations(some[:, half:size], middle[:, None], tile[:stop, upper:])
-            tile[:stop, half:upper] = 0.0
-            return
-        tile[start:stop, :half] = some[:, :half]
-        tile[start:stop, half:upper] = middle[start:stop, None]
-        tile[start:stop, upper:] = some[:, half:size]
-    deviations(tile[: rows.size], middle[:, None], tile[: rows.size])
+        else:
+            tile[start:stop, :half] = some[:, :half]
+            tile[start:stop, half:upper] = middle[start:stop, None]
+            tile[start:stop, upper:] = some[:, half:size]
+    if not in_place:
+        deviations(tile[: rows.size], middle[:, None], tile[: rows.size])
+    for start, stop in zip(starts, ends, strict=True):
+        half = int(counts[start]) // 2
+        tile[start:stop, half : width - (int(counts[start]) - half)] = 0.0
 
 
-def _taken(ordered: FloatArray, rows: IntArray) -> FloatArray:
-    """Some channels, in place where they lie side by side in rising order."""
-    first, last = int(rows[0]), int(rows[-1])
-    return ordered[first : last + 1] if last - first == rows.size - 1 else ordered[rows]
+def _side_by_side(rows: IntArray) -> bool:
+    """Whether channels of one n, which come in rising order, have no others between them."""
+    return int(rows[-1]) - int(rows[0]) == rows.size - 1
