@@ -23,10 +23,11 @@ _WIDTHS_TRIED = 3
 _JUDGED_CELLS = 60
 _BLANKS_COUNT = 0.6
 """Blanks separate cells only where nothing else does: they also stand within names and before units."""
+_TIME = r"\d{1,2}:\d{2}(?::\d{2}(?:[.,:]\d+)?)?\s*(?:[AaPp]\.?[Mm]\.?|[A-Z]{1,4}|[+-]\d{2}:?\d{2})?"
 _VALUE = re.compile(
     r"""[<>≤≥]?=?\s*[+−－＋-]?(?:\d[\d.,．，'’\u00a0\u2007\u202f]*(?:[ ]\d{3})*(?:[.,]\d+)?|[.,]\d+)
     (?:[eEdD][+-]?\d+)?\s*(?:%|[°µΩ]?[A-Za-z]{1,3})?
-    |\d{1,4}[-/.]\d{1,2}[-/.]\d{1,4}(?:[ T]+\d{1,2}:\d{2}.*)?|\d{1,2}:\d{2}(?::\d{2}.*)?""",
+    |\d{1,4}[-/.]\d{1,2}[-/.]\d{1,4}(?:[ T]+TIME)?|TIME""".replace("TIME", _TIME),
     re.VERBOSE,
 )
 

@@ -53,6 +53,15 @@ CASES = {
     "separator_told.csv": Case("sep=;\np;q\n" + rows(";"), dialect="semicolon, names in line 2"),
     "separator_told_quoted.csv": Case('"sep=|"\np,x|q\n' + rows("|"), {"p,x": [*P], "q": [*Q]}),
     "tabs_as_said.txt": Case("a,b\tq\n" + rows("\t"), {"a,b": [*P], "q": [*Q]}, plan={"separator": "tab"}),
+    "stamps_and_words.csv": Case(
+        "TimeStamp;p;state;q;state\n"
+        + "".join(
+            f"01.05.2024 10:00:0{k}.123;{row.replace(';', ';GOOD;')};{'BAD' if k == 3 else 'GOOD'}\n"
+            for k, row in enumerate(rows(";", comma=True).split())
+        ),
+        dialect="semicolon, decimal comma",
+        aside=("TimeStamp", "state", "state (2)"),
+    ),
     # decimals and thousands
     "thousands_and_signs.csv": Case(
         "p;q\n−1 234.5;+1\n−12 000.0;+3\n−1 234 567.0;+2\n", {"p": [-1234.5, -12000, -1234567], "q": [1, 3, 2]}
