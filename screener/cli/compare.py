@@ -39,10 +39,12 @@ def command(
     """
     from screener.cli.output import on_terminal, path_text, put, tell
     from screener.runs import RunFile, compared, export_comparison
-    from screener.runs.comparing import sentence
+    from screener.runs.comparing import sentence, unlike
 
     with RunFile.open(_run(old), read_only=True) as before, RunFile.open(_run(new), read_only=True) as now:
-        rows = _sorted(compared(before, now), sort)
+        rows, otherwise = _sorted(compared(before, now), sort), unlike(before, now)
+    if otherwise:
+        tell(f"screener: {otherwise}")
     told = rows if everything else rows.filter(rows["change"] != "same")
     if output is not None:
         export_comparison(told, output)
@@ -50,7 +52,7 @@ def command(
     elif on_terminal() if screen is None else screen:
         from screener.ui.comparison import compare_on_screen
 
-        ctx.exit(compare_on_screen(rows, f"{path_text(old)} -> {path_text(new)}"))
+        ctx.exit(compare_on_screen(rows, f"{path_text(old)} -> {path_text(new)}", otherwise))
     else:
         put([sentence(rows), *([""] if told.height else []), *lines(told.iter_rows(named=True))])
 

@@ -60,6 +60,9 @@ COMPARED: dict[str, type[int] | type[float] | type[str]] = {
 }
 """The columns of a comparison; new ones are appended."""
 
+JUDGED_BY = ("family", "alpha", "control", "positions", "match", "expect", "missing")
+"""Settings of a plan that verdicts depend on."""
+
 _TAKEN = (
     "channel",
     "verdict",
@@ -88,6 +91,18 @@ def compared(before: RunFile, now: RunFile) -> pl.DataFrame:
     p = change_p(rows["difference"].fill_null(np.nan).to_numpy(), rows["error"].fill_null(np.nan).to_numpy())
     rows = rows.with_columns(change_p=pl.Series(p).fill_nan(None), change_q=pl.Series(adjusted_p(p)).fill_nan(None))
     return rows.with_columns(change=_change(now.plan.alpha)).select(_column(name) for name in COMPARED)
+
+
+def unlike(before: RunFile, now: RunFile) -> str:
+    """In what two runs were judged otherwise, so that verdicts may differ by it, in a sentence; empty when alike."""
+    pairs = {name: (getattr(before.plan, name), getattr(now.plan, name)) for name in JUDGED_BY}
+    pairs |= {"version": (before.version, now.version), "null tables": (before.null_version, now.null_version)}
+    told = [f"{name} {_told(old)} and {_told(new)}" for name, (old, new) in pairs.items() if old != new]
+    return f"Not judged alike: {'; '.join(told)}." if told else ""
+
+
+def _told(value: object) -> str:
+    return ", ".join(map(str, value)) or "none" if isinstance(value, tuple) else str(value)
 
 
 def counts(comparison: pl.DataFrame) -> dict[str, int]:

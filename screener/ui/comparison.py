@@ -23,13 +23,13 @@ if TYPE_CHECKING:
     import polars as pl
 
 
-def compare_on_screen(rows: pl.DataFrame, title: str) -> int:
-    """Show the comparison until the user leaves it; the exit code."""
+def compare_on_screen(rows: pl.DataFrame, title: str, notice: str = "") -> int:
+    """Show the comparison, and the notice first, until the user leaves it; the exit code."""
     impossible = refusal(os.environ)
     if impossible:
         raise NoScreenError(impossible)
     end_with_terminal()
-    return ComparisonApp(rows, title).run() or 0
+    return ComparisonApp(rows, title, notice).run() or 0
 
 
 class ComparisonApp(App[int]):
@@ -42,13 +42,13 @@ class ComparisonApp(App[int]):
         Binding("ctrl+z", "suspend_process", "Put in the background", show=False, priority=True),
     ]
 
-    def __init__(self, rows: pl.DataFrame, title: str, *, can: Abilities | None = None) -> None:
+    def __init__(self, rows: pl.DataFrame, title: str, notice: str = "", *, can: Abilities | None = None) -> None:
         super().__init__(ansi_color=True)
         self.register_theme(THEME)
         self.theme = THEME.name
         self.animation_level = "none"
         self._unicode = (can or abilities(os.environ)).unicode
-        self._comparison = ComparisonScreen(rows, title)
+        self._comparison = ComparisonScreen(rows, title, notice)
 
     def get_line_filters(self) -> Sequence[LineFilter]:
         """The library's filters, then ours."""

@@ -9,7 +9,7 @@ import pytest
 
 from screener.records import BlockScores, Channel, Decision, Plan, TableFacts
 from screener.runs import RunFile, compared
-from screener.runs.comparing import COMPARED, by_weight, counts, sentence
+from screener.runs.comparing import COMPARED, by_weight, counts, sentence, unlike
 from tests.runs.synthetic import block, facts, unfitted
 
 N = 100
@@ -79,3 +79,16 @@ def test_decisions_of_both_runs_stand_side_by_side(tmp_path: Path) -> None:
         rows = compared(old, new)
     assert rows.row(0, named=True)["decision_before"] == "leave out"
     assert rows.row(0, named=True)["decision_now"] is None
+
+
+def test_runs_that_were_not_judged_alike_are_told_of(tmp_path: Path) -> None:
+    table: TableFacts = replace(facts(0), channels=(Channel(0, "x"),))
+    with (
+        RunFile.create(tmp_path / "a.run", table, Plan(), version="1", null_version="3") as old,
+        RunFile.create(tmp_path / "b.run", table, Plan(), version="1", null_version="3") as alike,
+        RunFile.create(
+            tmp_path / "c.run", table, Plan(alpha=0.01, missing=("-9",)), version="1", null_version="4"
+        ) as new,
+    ):
+        assert unlike(old, alike) == ""
+        assert unlike(old, new) == "Not judged alike: alpha 0.05 and 0.01; missing none and -9; null tables 3 and 4."

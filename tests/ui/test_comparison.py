@@ -40,6 +40,14 @@ async def test_changes_are_shown_first_and_all_when_asked_for(rows: pl.DataFrame
         await shows(pilot, "53 of 53 channels")
 
 
+async def test_what_is_to_be_known_first_is_shown_until_a_key_is_pressed(rows: pl.DataFrame) -> None:
+    app = ComparisonApp(rows, "a.run -> b.run", "Not judged alike: alpha 0.05 and 0.01.", can=Abilities(unicode=True))
+    async with app.run_test(size=(80, 24)) as pilot:
+        await shows(pilot, "Not judged alike: alpha 0.05 and 0.01.")
+        await pilot.press("3")
+        await shows(pilot, lambda text: "sorted by r before" in text and "Not judged" not in text)
+
+
 async def test_rows_are_sorted_by_number_both_ways(rows: pl.DataFrame) -> None:
     async with app_on(rows).run_test(size=(80, 24)) as pilot:
         await shows(pilot, "heaviest")

@@ -78,7 +78,7 @@ class ComparisonScreen(Screen[None]):
         Binding("q", "quit", "Quit", priority=True),
     ]
 
-    def __init__(self, rows: pl.DataFrame, title: str) -> None:
+    def __init__(self, rows: pl.DataFrame, title: str, notice: str) -> None:
         super().__init__()
         self._all, self._heading = rows, title
         self._sort, self._falling = 0, False
@@ -86,7 +86,7 @@ class ComparisonScreen(Screen[None]):
         self._rows = rows
         self._longest_name = longest_name(rows)
         self._cursor = self._top = 0
-        self._notice = ""
+        self._notice = notice
 
     def compose(self) -> ComposeResult:
         """From top to bottom."""
@@ -143,22 +143,22 @@ class ComparisonScreen(Screen[None]):
         """Sort by a column; by the same once more, the other way."""
         self._falling = number == self._sort and not self._falling
         self._sort = number
-        self._arrange()
+        self._rearrange()
 
     def action_reverse(self) -> None:
         """Turn the order round."""
         self._falling = not self._falling
-        self._arrange()
+        self._rearrange()
 
     def action_flagged_now(self) -> None:
         """Only what is newly flagged, or all."""
         self._flagged_now = not self._flagged_now
-        self._arrange()
+        self._rearrange()
 
     def action_everything(self) -> None:
         """With or without the channels that are the same."""
         self._changes_only = not self._changes_only
-        self._arrange()
+        self._rearrange()
 
     def action_export(self) -> None:
         """Ask for a file name."""
@@ -183,6 +183,11 @@ class ComparisonScreen(Screen[None]):
     @property
     def _height(self) -> int:
         return max(1, self.query_one("#rows").size.height - 1)
+
+    def _rearrange(self) -> None:
+        """As just asked for; the last notice has been read."""
+        self._notice = ""
+        self._arrange()
 
     def _arrange(self) -> None:
         """The rows asked for, in the order asked for, from the first."""
