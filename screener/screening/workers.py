@@ -32,7 +32,7 @@ def thread_workers(jobs: int) -> Iterator[Executor]:
 def bytes_at_work(memory_bytes: int) -> int:
     """The most that the readings of all blocks at work may take together, in a machine with so much memory.
 
-    Scoring takes some four to five times the readings of a block, so this bounds what the workers take.
+    Scoring takes some five to seven times the readings of a block, so this bounds what the workers take.
     """
     return max(AT_WORK_BYTES, memory_bytes // AT_WORK_SHARE)
 
