@@ -57,7 +57,7 @@ def kill_after(process: subprocess.Popen[bytes], run: Path, blocks: int, seconds
     """Kill it so long after it has stored so many more blocks, unless it has ended by then."""
     wanted = spans_done(run) + blocks
     while process.poll() is None and spans_done(run) < wanted:
-        time.sleep(0.01)
+        time.sleep(0.03)
     time.sleep(seconds)
     process.kill()
     process.wait()
@@ -86,7 +86,7 @@ def test_a_run_killed_again_and_again_ends_bit_for_bit_as_an_undisturbed_one(
     run, chance = tmp_path / "killed.run", random.Random(29)
     whole = len(content(undisturbed)["span"])
     reached = [0]
-    while len(reached) < 4 or (reached[-1] < whole - 1 and len(reached) < 12):
+    while len(reached) < 4 or (reached[-1] < whole - 1 and len(reached) < 9):
         # At any moment of the start, when the run file is made or taken up; or soon after a block was stored.
         blocks, seconds = chance.choice([(0, chance.uniform(0.1, 1.0)), (1, chance.uniform(0.0, 0.1))])
         with scoring(table, run) as process:
@@ -109,7 +109,7 @@ def test_two_programs_at_one_run_file_end_as_one_alone_also_when_one_is_killed(
     with scoring(table, run) as first:
         while not is_run_file(run):
             assert first.poll() is None
-            time.sleep(0.01)
+            time.sleep(0.03)
         with scoring(table, run) as second, scoring(table, run) as third:
             kill_after(third, run, 1, 0.05)
             assert (first.wait(), second.wait()) == (0, 0)
