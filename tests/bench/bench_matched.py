@@ -94,7 +94,7 @@ def verdicts(readings: Readings, alpha: float) -> dict[str, int]:
     with tempfile.TemporaryDirectory() as name:
         table, run_path = Path(name) / "normal.parquet", Path(name) / "normal.run"
         pl.DataFrame(readings.T, schema=[f"c{k}" for k in range(len(readings))]).write_parquet(table)
-        for _ in start(table, Plan(alpha=alpha), run_path, jobs=2):
+        for _ in start(table, Plan(alpha=alpha, channels=("c*",)), run_path, jobs=2):
             pass
         with RunFile.open(run_path, read_only=True) as run:
             found = run.results()["verdict"].value_counts()
