@@ -8,7 +8,7 @@ import pytest
 
 from screener.errors import Cancelled
 from screener.screening.kept_samples import KeptSamples
-from screener.stats.families import FAMILIES
+from screener.stats.families import FAMILIES, family_named
 from screener.stats.null.condition import Condition, log_gaps
 from screener.stats.null.on_demand import SimulatedNulls, batch_ends, judged, most_samples, near
 from screener.stats.null.packing import shipped_nulls
@@ -81,6 +81,15 @@ def test_threads_that_need_the_same_condition_get_the_same_samples() -> None:
 def test_simulating_can_be_given_up() -> None:
     with pytest.raises(Cancelled):
         SimulatedNulls(cancelled=lambda: True).prefix(CLIPPED, 250)
+
+
+def test_conditions_in_which_few_samples_can_be_judged_are_simulated_all_the_same() -> None:
+    # At 1.5 standard deviations a step, most samples of 50 have only three distinct readings.
+    readings = np.rint((np.random.default_rng(4).standard_normal((400, 50)) + 0.3) / 1.5) * 1.5
+    scoring = score(40.0 + readings, [family_named("normal")], shipped_nulls(), 0.05)
+    judged_channels = np.array([not reason for reason in scoring.reasons])
+    assert 20 < judged_channels.sum() < 200
+    assert np.mean(scoring.p[judged_channels, 0] < 0.05) < 0.06 + 3 * np.sqrt(0.05 / judged_channels.sum())
 
 
 def test_like_conditions_are_simulated_as_one() -> None:

@@ -30,7 +30,7 @@ BELOW_ALPHA = 50
 SETTLED = 30
 """Samples with an r as small as the channel's, from which it is not flagged."""
 TAIL_READINGS = 50
-"""Samples that a tail is fitted to at least."""
+"""Samples that a tail is fitted to at least, if that is no more than a quarter."""
 MOST_WITHOUT_R = 0.9
 """Share of samples without an r from which a condition is not simulated."""
 COUNTED = 20
@@ -193,7 +193,7 @@ def _quantiles(samples: FloatArray) -> tuple[FloatArray, float, float, float]:
     decreasing = np.sort(samples)[::-1]
     m = decreasing.size
     quantiles = np.interp(SIMULATED_PROBABILITIES, np.arange(1, m + 1) / (m + 1), decreasing)
-    beyond = max(TAIL_READINGS, m // 100)
+    beyond = min(max(TAIL_READINGS, m // 100), m // 4)
     threshold, share = decreasing[beyond], beyond / m
     xi, sigma = fitted_tail(decreasing[:beyond] - threshold, max(0.1, -float(threshold)))
     counted = COUNTED / m <= SIMULATED_PROBABILITIES
