@@ -84,8 +84,8 @@ def test_simulating_can_be_given_up() -> None:
 
 
 def test_conditions_in_which_few_samples_can_be_judged_are_simulated_all_the_same() -> None:
-    # At 1.5 standard deviations a step, most samples of 50 have only three distinct readings.
-    readings = np.rint((np.random.default_rng(4).standard_normal((400, 50)) + 0.3) / 1.5) * 1.5
+    # At 1.9 standard deviations a step, most samples of 50 have only three distinct readings.
+    readings = np.rint((np.random.default_rng(4).standard_normal((400, 50)) + 0.3) / 1.9) * 1.9
     scoring = score(40.0 + readings, [family_named("normal")], shipped_nulls(), 0.05)
     judged_channels = np.array([not reason for reason in scoring.reasons])
     assert 20 < judged_channels.sum() < 200
