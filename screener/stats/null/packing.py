@@ -62,7 +62,7 @@ def tasks(rule: str, seed: int, share: float, largest: int | None = None) -> dic
         made[_plain_key(n)] = Task(name, n * samples, partial(_plain_part, n, rule, samples, seed))
     for family in shaped_families():
         for n in needed(shaped.SIZES, largest):
-            samples = max(4000, int(share * shaped.samples_at(n)))
+            samples = max(4000, int(share * shaped.samples_at(n, family.shape_count)))
             name = f"{stem}-{family.name.replace(' ', '_')}-n{n}-samples{samples}"
             make = partial(_shaped_part, family.name, n, rule, samples, seed)
             made[_shaped_key(family, n)] = Task(name, (n + 200) * samples, make)

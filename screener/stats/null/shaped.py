@@ -36,7 +36,7 @@ SIZES = (5, 7, 10, 14, 20, 28, 40, 60, 90, 140, 220, 350, 600, 1000, 2000, 5000,
 INNER = {1: 21, 2: 11}
 """Tabled places between the edges of the shape grid, in each of one or two coordinates."""
 
-TRUTHS = {1: 21, 2: 9}
+TRUTHS = {1: 21, 2: 13}
 """True shapes simulated, in each coordinate."""
 
 ANCHORS = (0.01, 0.05, 0.2, 0.5, 0.8, 0.95)
@@ -53,9 +53,9 @@ FLOOR = 0.002
 """Probabilities below this are read from the fitted tail."""
 
 
-def samples_at(n: int) -> int:
-    """Samples simulated at n, over all true shapes."""
-    return int(min(210_000, max(12_000, 5e8 // n)))
+def samples_at(n: int, shapes: int) -> int:
+    """Samples simulated at n, over all true shapes; twice as many for two shapes, which have more of them."""
+    return shapes * int(min(210_000, max(12_000, 5e8 // n)))
 
 
 @dataclass(frozen=True, slots=True)
