@@ -1,7 +1,6 @@
 """Confirming a channel by a key: progress, result, stopping."""
 
 import math
-from collections.abc import Iterator
 from pathlib import Path
 
 import numpy as np
@@ -18,48 +17,54 @@ from screener.ui.confirming import confirmation_lines, confirmation_words
 from screener.ui.source import Source
 
 
-@pytest.fixture
-def scored(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> Iterator[Path]:
-    """The run file of a table of three normal channels."""
+@pytest.fixture(autouse=True)
+def in_a_folder_of_its_own(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.chdir(tmp_path)
-    readings = np.random.default_rng(1).normal(size=(8_000, 3))
+
+
+def scored(rows: int) -> Path:
+    """The run file of a table of three normal channels."""
+    readings = np.random.default_rng(1).normal(size=(rows, 3))
     pl.DataFrame(readings, schema=["a", "b", "c"]).write_parquet("t.parquet")
     for _ in start(Path("t.parquet"), Plan(), jobs=1):
         pass
-    yield Path("t.run")
+    return Path("t.run")
 
 
 def screen_on(run: Path) -> ScreenerApp:
     return ScreenerApp(Source(run.name, None, run), can=Abilities(unicode=True))
 
 
-async def test_the_key_confirms_the_channel_and_the_result_stands_under_its_plot(scored: Path) -> None:
-    async with screen_on(scored).run_test(size=(140, 45)) as pilot:
+async def test_the_key_confirms_the_channel_and_the_result_stands_under_its_plot() -> None:
+    run_file = scored(2_000)
+    async with screen_on(run_file).run_test(size=(140, 45)) as pilot:
         await shows(pilot, "1 of 3 channels")
         await pilot.press("down", "C")
-        await shows(pilot, "samples to confirm b (C stops)")
         # Under the plot and, as a notice, under the table.
         await shows(pilot, lambda text: text.count("By 2,000 samples of normal") == 2 and "C stops" not in text)
         await pilot.press("down")
         await shows(pilot, lambda text: "By 2,000 samples" not in text and "3 of 3" in text)
-    with RunFile.open(scored, read_only=True) as run:
+    with RunFile.open(run_file, read_only=True) as run:
         assert [run.confirmation(k) is not None for k in range(3)] == [False, True, False]
 
 
-async def test_the_key_again_stops_and_nothing_is_kept(scored: Path) -> None:
-    async with screen_on(scored).run_test(size=(80, 24)) as pilot:
+async def test_progress_is_shown_and_the_key_again_stops_and_nothing_is_kept() -> None:
+    # So many readings that the samples take far longer than the screen takes to show it.
+    run_file = scored(60_000)
+    async with screen_on(run_file).run_test(size=(80, 24)) as pilot:
         await shows(pilot, "1 of 3 channels")
         await pilot.press("C")
-        await shows(pilot, "samples to confirm a")
+        await shows(pilot, "of 2,000 samples to confirm a (C stops)")
         await pilot.press("C")
         await shows(pilot, lambda text: "Stopped confirming; nothing was kept." in text and "C stops" not in text)
-    with RunFile.open(scored, read_only=True) as run:
+    with RunFile.open(run_file, read_only=True) as run:
         assert run.confirmation(0) is None
 
 
-async def test_without_the_table_a_sentence_says_so_and_the_screen_stays(scored: Path) -> None:
+async def test_without_the_table_a_sentence_says_so_and_the_screen_stays() -> None:
+    run_file = scored(2_000)
     Path("t.parquet").unlink()
-    async with screen_on(scored).run_test(size=(80, 24)) as pilot:
+    async with screen_on(run_file).run_test(size=(80, 24)) as pilot:
         await shows(pilot, "1 of 3 channels")
         await pilot.press("C")
         await shows(pilot, "Couldn't read 't.parquet'")
