@@ -20,12 +20,16 @@ from threadpoolctl import threadpool_limits
 from screener.records import Channel, Span, TableFacts
 from screener.stats.correlation import fit_families
 from screener.stats.families import FAMILIES
+from screener.stats.null.on_demand import SimulatedNulls
 from screener.stats.null.packing import shipped_nulls
 from screener.stats.ordering import sort_in_place
 from screener.stats.scoring import score
 from screener.tables import spans
 
 Readings = NDArray[np.float64]
+
+SIMULATED = SimulatedNulls()
+"""What was simulated for one block serves the others, as in a run."""
 
 
 def least(works: dict[str, Callable[[Readings], object]], readings: Readings, rounds: int = 7) -> dict[str, float]:
@@ -55,7 +59,7 @@ def correlate(readings: Readings) -> object:
 
 def score_all(readings: Readings) -> object:
     """Sort, correlate, critical values, p and plot points."""
-    return score(readings, FAMILIES, shipped_nulls(), 0.05)
+    return score(readings, FAMILIES, shipped_nulls(), 0.05, simulated=SIMULATED)
 
 
 def score_in_blocks(readings: Readings) -> None:
