@@ -1,15 +1,15 @@
 """Critical values and p of channels in their own condition, in place of the textbook ones."""
 
-from collections.abc import Iterator
+from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, fields, replace
-from typing import TypeVar
 
 import numpy as np
 from numpy.typing import NDArray
 
 from screener.stats.censoring import as_if_clipped, censoring_of, refit
 from screener.stats.conditions import Conditions
-from screener.stats.correlation import Fits
+from screener.stats.correlation import Fits, no_fits
+from screener.stats.families import Family
 from screener.stats.families.family import FloatArray
 from screener.stats.found import Found
 from screener.stats.null.condition import Condition
@@ -132,6 +132,20 @@ class Matching:
         return np.asarray(tabled - level(self.simulated, plain, self.alpha), dtype=np.float64)
 
 
+def textbook(fits: Fits, n: NDArray[np.int64], families: Sequence[Family], nulls: Nulls, alpha: float) -> Judgement:
+    """The textbook judgement of C channels, of n[C] readings."""
+    critical, p = np.full_like(fits.r, np.nan), np.full_like(fits.r, np.nan)
+    judgement = Judgement(critical, p, np.zeros(fits.r.shape, dtype=np.bool_))
+    for column, family in enumerate(families):
+        fitted = np.flatnonzero(~np.isnan(fits.r[:, column]))
+        if fitted.size:
+            null, row = nulls.rows(family, n[fitted], fits.steps[fitted, column])
+            critical[fitted, column] = null.critical(alpha)[row]
+            p[fitted, column] = null.p_against(fits.r[fitted, column], row, alpha)
+            judgement.extrapolated[fitted, column] = p[fitted, column] < null.floor[row]
+    return judgement
+
+
 def judged_in_doubt(
     matching: Matching, judgement: Judgement, held: IntArray, judge: BoolArray, ordered: FloatArray
 ) -> Conditions:
@@ -141,35 +155,38 @@ def judged_in_doubt(
     and judged without the readings there, if it is not flagged then.
     """
     matching.into(judgement, held, judge)
-    conditions, each = matching.found.conditions, np.arange(held.size)
-    normal = np.array([family.name == TABLED_FAMILY for family in matching.found.families])
-    flagged = judge & (judgement.p[each, held] < matching.alpha) & normal[held]
-    doubtful = np.flatnonzero(flagged & ((conditions.perhaps_low > 0) | (conditions.perhaps_high > 0)))
+    found, each = matching.found, np.arange(held.size)
+    doubt = (found.conditions.perhaps_low > 0) | (found.conditions.perhaps_high > 0)
+    normal = np.array([family.name == TABLED_FAMILY for family in found.families])[held]
+    doubtful = np.flatnonzero(judge & doubt & normal & (judgement.p[each, held] < matching.alpha))
     if doubtful.size == 0:
-        return conditions
-    clipped = as_if_clipped(conditions, doubtful)
-    censoring = censoring_of(clipped, ordered)
-    doubtful = doubtful[~censoring.most[doubtful]]
-    fits, second = _copied(matching.found.fits), _copied(judgement)
-    refit(fits, ordered, censoring, doubtful, matching.found.families, matching.nulls.rule)
-    only = np.isin(each, doubtful)
-    found = replace(matching.found, fits=fits, conditions=clipped, censoring=censoring)
-    replace(matching, found=found).into(second, held, only)
-    cleared = doubtful[second.p[doubtful, held[doubtful]] >= matching.alpha]
-    _put_rows(fits, matching.found.fits, cleared)
-    _put_rows(second, judgement, cleared)
-    return as_if_clipped(conditions, cleared)
+        return found.conditions
+    cleared = _cleared(matching, doubtful, found.families[int(held[doubtful[0]])], ordered)
+    conditions = as_if_clipped(found.conditions, cleared)
+    censoring = censoring_of(conditions, ordered)
+    refit(found.fits, ordered, censoring, cleared, found.families, matching.nulls.rule)
+    plain = textbook(_rows(found.fits, cleared), conditions.n[cleared], found.families, matching.nulls, matching.alpha)
+    for field in fields(judgement):
+        getattr(judgement, field.name)[cleared] = getattr(plain, field.name)
+    again = replace(matching, found=replace(found, conditions=conditions, censoring=censoring))
+    again.into(judgement, held, np.isin(each, cleared))
+    return conditions
 
 
-Arrays = TypeVar("Arrays", Fits, Judgement)
+def _cleared(matching: Matching, doubtful: IntArray, family: Family, ordered: FloatArray) -> IntArray:
+    """The channels among doubtful ones that are not flagged against the one family if their ends are rails."""
+    conditions = as_if_clipped(matching.found.conditions, doubtful)
+    censoring = censoring_of(conditions, ordered)
+    some = doubtful[~censoring.most[doubtful]]
+    fits, channels = no_fits(conditions.n.size, 1), conditions.n.size
+    refit(fits, ordered, censoring, some, [family], matching.nulls.rule)
+    alone = Judgement(np.full((channels, 1), np.nan), np.full((channels, 1), np.nan), np.zeros((channels, 1), np.bool_))
+    only = np.isin(np.arange(channels), some)
+    found = Found([family], fits, conditions, censoring, matching.nulls.rule)
+    replace(matching, found=found).into(alone, np.zeros(channels, dtype=np.int64), only)
+    return np.asarray(some[alone.p[some, 0] >= matching.alpha], dtype=np.int64)
 
 
-def _copied(arrays: Arrays) -> Arrays:
-    """The same arrays again."""
-    return replace(arrays, **{field.name: getattr(arrays, field.name).copy() for field in fields(arrays)})
-
-
-def _put_rows(source: Arrays, into: Arrays, rows: IntArray) -> None:
-    """Write the rows of some channels into other arrays."""
-    for field in fields(into):
-        getattr(into, field.name)[rows] = getattr(source, field.name)[rows]
+def _rows(fits: Fits, channels: IntArray) -> Fits:
+    """The fits of some channels."""
+    return replace(fits, **{field.name: getattr(fits, field.name)[channels] for field in fields(fits)})

@@ -12,7 +12,7 @@ from screener.stats.correlation import Fits, fit_families, held_within
 from screener.stats.families import Family
 from screener.stats.families.family import FloatArray
 from screener.stats.found import Found
-from screener.stats.matching import TABLED_FAMILY, Judgement, Matching, judged_in_doubt
+from screener.stats.matching import TABLED_FAMILY, Judgement, Matching, judged_in_doubt, textbook
 from screener.stats.null.condition import FEWEST_DISTINCT
 from screener.stats.null.nulls import Nulls
 from screener.stats.null.on_demand import SimulatedNulls
@@ -84,7 +84,7 @@ def score(
     judge = np.array([not reason for reason in reasons], dtype=np.bool_)
     if match:
         refit(fits, ordered, censoring, np.flatnonzero(judge & censoring.some), families, nulls.rule)
-    plain = _against_null(fits, n, families, nulls, alpha)
+    plain = textbook(fits, n, families, nulls, alpha)
     judgement = Judgement(plain.critical_r.copy(), plain.p.copy(), plain.extrapolated.copy())
     if match:
         found = Found(families, fits, conditions, censoring, nulls.rule)
@@ -170,19 +170,3 @@ def _reason(ordered: FloatArray, n: int) -> str:
     if n < FEWEST:
         return f"too few readings: {n}, at least {FEWEST} are needed"
     return f"constant: all {n} readings are {ordered[0]:g}"
-
-
-def _against_null(
-    fits: Fits, n: NDArray[np.int64], families: Sequence[Family], nulls: Nulls, alpha: float
-) -> Judgement:
-    """The textbook judgement of C channels, of n[C] readings."""
-    critical, p = np.full_like(fits.r, np.nan), np.full_like(fits.r, np.nan)
-    judgement = Judgement(critical, p, np.zeros(fits.r.shape, dtype=np.bool_))
-    for column, family in enumerate(families):
-        fitted = np.flatnonzero(~np.isnan(fits.r[:, column]))
-        if fitted.size:
-            null, row = nulls.rows(family, n[fitted], fits.steps[fitted, column])
-            critical[fitted, column] = null.critical(alpha)[row]
-            p[fitted, column] = null.p_against(fits.r[fitted, column], row, alpha)
-            judgement.extrapolated[fitted, column] = p[fitted, column] < null.floor[row]
-    return judgement

@@ -147,3 +147,12 @@ def test_compressed_halves_keep_sums_with_smooth_functions_of_rank(width: int) -
 def test_aligned_columns_hold_every_n_with_little_to_spare() -> None:
     for n in (3, 64, 65, 100, 1000, 99_999, 1_000_000):
         assert n <= class_size(n) <= max(64, 1.07 * n + 2)
+
+
+@pytest.mark.parametrize("n", [60_000, 100_000])
+def test_a_long_channel_alone_has_the_bits_it_has_among_others(n: int) -> None:
+    readings = np.sort(20.0 + np.random.default_rng(n).standard_normal((6, n)), axis=1)
+    together = fit_families(readings, np.full(6, n), PLAIN, "filliben").r
+    for row in range(6):
+        alone = fit_families(readings[row : row + 1].copy(), np.array([n]), PLAIN, "filliben").r
+        assert np.array_equal(alone[0], together[row])

@@ -112,8 +112,8 @@ def _squares(tile: FloatArray) -> FloatArray:
 
 def tile_rows(width: int) -> int:
     """Channels compressed at a time: as many as fit in the cache when short, fewer when long, so that memory stays
-    bounded."""
-    return max(2, min(LONGEST_TILE, TILE_READINGS // width))
+    bounded. A power of two: rows that are left over in a matrix product are summed in another order than the others."""
+    return 1 << (max(2, min(LONGEST_TILE, TILE_READINGS // width)).bit_length() - 1)
 
 
 def _classes(counts: IntArray) -> Iterator[IntArray]:
