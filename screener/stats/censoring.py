@@ -7,7 +7,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from screener.stats.conditions import Conditions
-from screener.stats.correlation import Fits, fit_censored
+from screener.stats.correlation import Fits, fit_censored, held_within
 from screener.stats.families import Family
 from screener.stats.families.family import FloatArray
 
@@ -76,3 +76,10 @@ def refit(
         found = fit_censored(ordered[some], n, low, high, families, rule)
         for field in fields(fits):
             getattr(fits, field.name)[some] = getattr(found, field.name)
+
+
+def distinct_uncensored(ordered: FloatArray, censoring: Censoring, channels: IntArray) -> IntArray:
+    """How many distinct readings some channels, int64[K], have beside the censored ones, [K]."""
+    n, low, high = censoring.n[channels], censoring.low[channels], censoring.high[channels]
+    changes = np.diff(held_within(ordered[channels], n, low, high), axis=1) > 0.0
+    return np.asarray(1 + np.count_nonzero(changes, axis=1), dtype=np.int64)

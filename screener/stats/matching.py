@@ -6,13 +6,13 @@ from dataclasses import dataclass, fields, replace
 import numpy as np
 from numpy.typing import NDArray
 
-from screener.stats.censoring import as_if_clipped, censoring_of, refit
+from screener.stats.censoring import as_if_clipped, censoring_of, distinct_uncensored, refit
 from screener.stats.conditions import Conditions
 from screener.stats.correlation import Fits, no_fits
 from screener.stats.families import Family
 from screener.stats.families.family import FloatArray
 from screener.stats.found import Found
-from screener.stats.null.condition import Condition
+from screener.stats.null.condition import FEWEST_DISTINCT, Condition
 from screener.stats.null.matched import SIZES, within_table
 from screener.stats.null.nulls import Nulls
 from screener.stats.null.on_demand import SimulatedNulls, judged, level, near, sufficient
@@ -152,7 +152,7 @@ def judged_in_doubt(
     """Judge channels, and say their conditions as it turns out.
 
     Where too few readings tell whether an extreme value is a rail, a channel that would be flagged is called clipped,
-    and judged without the readings there, if it is not flagged then.
+    and judged without the readings there, if it is not flagged then or cannot be judged without them.
     """
     matching.into(judgement, held, judge)
     found, each = matching.found, np.arange(held.size)
@@ -174,17 +174,21 @@ def judged_in_doubt(
 
 
 def _cleared(matching: Matching, doubtful: IntArray, family: Family, ordered: FloatArray) -> IntArray:
-    """The channels among doubtful ones that are not flagged against the one family if their ends are rails."""
+    """The channels among doubtful ones that are not flagged against the one family if their ends are rails.
+
+    Those with too little between their ends to be judged are among them.
+    """
     conditions = as_if_clipped(matching.found.conditions, doubtful)
     censoring = censoring_of(conditions, ordered)
-    some = doubtful[~censoring.most[doubtful]]
+    enough = ~censoring.most[doubtful] & (distinct_uncensored(ordered, censoring, doubtful) >= FEWEST_DISTINCT)
+    some = doubtful[enough]
     fits, channels = no_fits(conditions.n.size, 1), conditions.n.size
     refit(fits, ordered, censoring, some, [family], matching.nulls.rule)
     alone = Judgement(np.full((channels, 1), np.nan), np.full((channels, 1), np.nan), np.zeros((channels, 1), np.bool_))
     only = np.isin(np.arange(channels), some)
     found = Found([family], fits, conditions, censoring, matching.nulls.rule)
     replace(matching, found=found).into(alone, np.zeros(channels, dtype=np.int64), only)
-    return np.asarray(some[alone.p[some, 0] >= matching.alpha], dtype=np.int64)
+    return np.concatenate([some[alone.p[some, 0] >= matching.alpha], doubtful[~enough]])
 
 
 def _rows(fits: Fits, channels: IntArray) -> Fits:

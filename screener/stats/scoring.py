@@ -6,9 +6,9 @@ from dataclasses import dataclass, replace
 import numpy as np
 from numpy.typing import NDArray
 
-from screener.stats.censoring import Censoring, censoring_of, refit
+from screener.stats.censoring import Censoring, censoring_of, distinct_uncensored, refit
 from screener.stats.conditions import Conditions, conditions_of, find_conditions
-from screener.stats.correlation import Fits, fit_families, held_within
+from screener.stats.correlation import Fits, fit_families
 from screener.stats.families import Family
 from screener.stats.families.family import FloatArray
 from screener.stats.found import Found
@@ -90,6 +90,8 @@ def score(
         found = Found(families, fits, conditions, censoring, nulls.rule)
         matching = Matching(found, nulls, simulated or SimulatedNulls(), alpha)
         conditions = judged_in_doubt(matching, judgement, _held(held, families, n.size), judge, ordered)
+        if conditions is not found.conditions:
+            reasons = _reasons(ordered, n, scored, conditions, censoring_of(conditions, ordered))
     return Scoring(
         n=n,
         missing=readings.shape[1] - n,
@@ -129,8 +131,7 @@ def _reasons(
     """Why each channel is not scored; empty where it is."""
     reasons = [""] * n.size
     coarse = np.flatnonzero(scored & (conditions.step_in_sd >= COARSE))
-    uncensored = held_within(ordered[coarse], n[coarse], censoring.low[coarse], censoring.high[coarse])
-    distinct = 1 + np.count_nonzero(np.diff(uncensored, axis=1) > 0.0, axis=1)
+    distinct = distinct_uncensored(ordered, censoring, coarse)
     for channel, count in zip(coarse[distinct < FEWEST_DISTINCT], distinct[distinct < FEWEST_DISTINCT], strict=True):
         reasons[channel] = f"only {count} distinct readings, at least {FEWEST_DISTINCT} are needed"
     for channel in np.flatnonzero(scored & (censoring.most | (conditions.stuck > 0.5 * n))):
