@@ -38,8 +38,10 @@ COUNTED = 20
 LARGEST_SIMULATED = 20_000
 """Channels of more readings are held against samples of so many: what is left of 1 - r after rounding goes down with n
 as the table says, and hardly changes its form."""
-RATIOS = {"n": 1.15, "censored": 1.1, "step": 1.2, "tau": 1.2, "scale": 1.15}
+RATIOS = {"n": 1.15, "censored": 1.07, "step": 1.2, "coarse step": 1.05, "tau": 1.2, "scale": 1.15}
 """Ratio of the neighbouring values at which conditions are simulated."""
+COARSE = 0.15
+"""Steps from which rounding adds to the scatter of r, not to its mean alone."""
 SIMULATED_PROBABILITIES: FloatArray = np.concatenate(
     [[0.001, 0.002, 0.005, 0.01, 0.015, 0.02, 0.03, 0.04, 0.05, 0.07], np.arange(0.1, 0.96, 0.05), [0.98, 0.99]]
 )
@@ -128,7 +130,7 @@ def near(condition: Condition) -> Condition:
         n=int(n),
         low=low,
         high=high,
-        step=_nearest(condition.step, "step") if condition.step else 0.0,
+        step=_nearest(condition.step, "coarse step" if condition.step >= COARSE else "step") if condition.step else 0.0,
         tau=_nearest(condition.tau, "tau"),
     )
 
