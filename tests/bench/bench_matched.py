@@ -4,7 +4,7 @@
 
 Tables of normal channels (rounded, following themselves in time, clipped at the top) are written as Parquet, screened
 as a run is, and verdicts are read from the run file. A channel that is not scored is counted apart; shares are of the
-scored. `!` marks shares outside .6 to 1.2 alpha.
+scored. `!` marks shares outside .6 to 1.2 alpha (.5 to 1.4 alpha below alpha = 2 %).
 """
 
 import argparse
@@ -85,8 +85,14 @@ def cell(make: Series, n: int, step: float, clipped: float, given: argparse.Name
             counts[verdict] += count
     scored = counts["flagged"] + counts["clear"]
     share = counts["flagged"] / max(scored, 1)
-    off = scored > 0 and not 0.6 * given.alpha <= share <= 1.2 * given.alpha
+    low, high = limits(given.alpha)
+    off = scored > 0 and not low <= share <= high
     return f"{100 * share:.1f}{'!' if off else ' '}({100 * counts['not scored'] / given.channels:.0f})", off
+
+
+def limits(alpha: float) -> tuple[float, float]:
+    """Between which the flagged share is held."""
+    return (0.5 * alpha, 1.4 * alpha) if alpha < 0.02 else (0.6 * alpha, 1.2 * alpha)
 
 
 def verdicts(readings: Readings, alpha: float) -> dict[str, int]:
@@ -125,7 +131,8 @@ def main() -> None:
         for name, make in OTHER_SERIES.items():
             row = [cell(make, n, step, 0.0, given) for step in (0.0, 0.25)]
             print(f"n = {n:,}, {name}: unrounded {row[0][0]}, step 0.25 sd {row[1][0]}", flush=True)
-    print(f"{missed} of {cells} cells outside {60 * given.alpha:g} to {120 * given.alpha:g} %")
+    low, high = limits(given.alpha)
+    print(f"{missed} of {cells} cells outside {100 * low:g} to {100 * high:g} %")
 
 
 def first_order(coefficient: float) -> Series:
