@@ -30,13 +30,14 @@ an unclipped normal channel; the greater one where the counts inside do not tell
 FEWEST_BEYOND = 1.0
 """Readings that an unclipped normal channel would have beyond, without which there is nothing to miss."""
 PERHAPS = 1.0
-"""Log likelihood from which it may be so."""
+"""Log likelihood from which it may be so, and by which a channel cut off may at most be likelier."""
 FEWEST_COUNTED = 20
 """Readings whose counts at lattice values are compared with a normal channel's."""
 BELL = 3.0
 """Log likelihood by which the counts inside are those of a normal rather than a uniform channel."""
-PLACES, STRAIGHT = 9, 3.0
-"""Places between the ends where the normal line is checked, and how far it may be off, in standard errors."""
+PLACES, STRAIGHT, HARDLY_STRAIGHT = 9, 3.0, 4.0
+"""Places between the ends where the normal line is checked, and how far it may be off, in standard errors; how far if
+it only may be so."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -66,15 +67,17 @@ def find_clipping(ordered: FloatArray, n: IntArray, lattice: Lattice, inflation:
     where = np.flatnonzero(rounded & (n >= FEWEST_COUNTED))
     perhaps_low, perhaps_high = np.zeros_like(low), np.zeros_like(high)
     if where.size:
-        heap_low, heap_high, bell, step = _heaps(ordered, n, lattice, inflation, where)
-        enough = np.where(bell >= BELL, CLIPPED, np.where(bell >= 0.0, SURELY, np.inf))
+        heaps = _heaps(ordered, n, lattice, inflation, where)
+        enough = np.where(heaps.bell >= BELL, CLIPPED, np.where(heaps.bell >= 0.0, SURELY, np.inf))
         # The finer the lattice, the more values there are of which the extreme one may happen to be the fullest.
-        enough += np.log(1.0 / np.clip(step, 1e-6, 1.0))
-        low[where] |= heap_low >= enough
-        high[where] |= heap_high >= enough
-        belled = bell >= np.where(n[where] < FEW_READINGS * np.sqrt(inflation[where]), 0.0, BELL)
-        perhaps_low[where] = (heap_low >= PERHAPS) & belled
-        perhaps_high[where] = (heap_high >= PERHAPS) & belled
+        enough += np.log(1.0 / np.clip(heaps.step, 1e-6, 1.0))
+        straight = heaps.off <= STRAIGHT
+        low[where] |= straight & (heaps.low >= enough) & (heaps.over_cut_low >= 0.0)
+        high[where] |= straight & (heaps.high >= enough) & (heaps.over_cut_high >= 0.0)
+        belled = heaps.bell >= np.where(n[where] < FEW_READINGS * np.sqrt(inflation[where]), 0.0, BELL)
+        hardly_off = belled & (heaps.off <= HARDLY_STRAIGHT)
+        perhaps_low[where] = hardly_off & (heaps.low >= PERHAPS) & (heaps.over_cut_low >= -PERHAPS)
+        perhaps_high[where] = hardly_off & (heaps.high >= PERHAPS) & (heaps.over_cut_high >= -PERHAPS)
     varied = (n > 0) & (at_low < n)
     return Clipping(
         np.where(low & varied, at_low, 0),
@@ -112,14 +115,27 @@ def _piled(at: IntArray, beside: IntArray, inflation: FloatArray) -> BoolArray:
     return piled
 
 
-def _heaps(
-    ordered: FloatArray, n: IntArray, lattice: Lattice, inflation: FloatArray, where: IntArray
-) -> tuple[FloatArray, FloatArray, FloatArray, FloatArray]:
-    """By how much clipping is likelier than not, at either end of the channels at `where`, and a normal channel than a
-    uniform one by the counts inside, and the step in standard deviations of the normal channel, each [K].
+@dataclass(frozen=True, slots=True)
+class _Heaps:
+    """How K channels agree with a rounded normal channel that is clipped; log likelihood ratios are minus infinity
+    where an end cannot be looked at."""
 
-    Minus infinity where the counts inside are not those of a rounded normal channel.
-    """
+    off: FloatArray
+    """[K] the farthest that the counts inside are from those of a normal channel, in standard errors."""
+    bell: FloatArray
+    """[K] log likelihood ratio of normal over uniform, by the counts inside."""
+    step: FloatArray
+    """[K] in standard deviations of that normal channel."""
+    low: FloatArray
+    """[K] log likelihood ratio of clipped over complete, by the readings at the least value and none below it."""
+    high: FloatArray
+    over_cut_low: FloatArray
+    """[K] log likelihood ratio of clipped over cut off: without the readings that would lie below."""
+    over_cut_high: FloatArray
+
+
+def _heaps(ordered: FloatArray, n: IntArray, lattice: Lattice, inflation: FloatArray, where: IntArray) -> _Heaps:
+    """How the channels at `where` agree with clipped normal ones."""
     count, step = n[where].astype(np.float64), lattice.step[where]
     least = ordered[where, 0] + 0.5 * step
     values = np.rint((ordered[where, n[where] - 1] - ordered[where, 0]) / step) - 1
@@ -133,29 +149,26 @@ def _heaps(
     slope, at_zero = _line(place, score, weight)
     fitted = ndtr(at_zero[:, None] + slope[:, None] * place)
     error = np.sqrt(np.maximum(line * (1.0 - line) * inflation[where, None] / count[:, None], 1e-300))
-    straight = np.all(~usable | (np.abs(line - fitted) <= STRAIGHT * error), axis=1) & (values >= 2) & (slope > 0)
+    off = np.max(np.where(usable, np.abs(line - fitted) / error, 0.0), axis=1)
+    off[(values < 2) | (slope <= 0)] = np.inf
     independent = count / np.sqrt(inflation[where])
-    at_low, at_high = independent * share[:, 0], independent * (1.0 - share[:, -1])
-    heap_low = _heap(at_low, independent, score[:, 0], slope)
-    heap_high = _heap(at_high, independent, -score[:, -1], slope)
-    return (
-        np.where(straight & usable[:, 0], heap_low, -np.inf),
-        np.where(straight & usable[:, -1], heap_high, -np.inf),
-        _bell(independent, share, fitted, place),
-        slope,
-    )
+    low, cut_low = _heap(share[:, 0], independent, score[:, 0], slope)
+    high, cut_high = _heap(1.0 - share[:, -1], independent, -score[:, -1], slope)
+    low[~usable[:, 0]] = high[~usable[:, -1]] = -np.inf
+    return _Heaps(off, _bell(independent, share, fitted, place), slope, low, high, cut_low, cut_high)
 
 
-def _heap(at: FloatArray, independent: FloatArray, inner: FloatArray, slope: FloatArray) -> FloatArray:
-    """Log likelihood ratio of clipped over unclipped for `at` readings at an extreme value and none beyond it, [C].
+def _heap(
+    share: FloatArray, independent: FloatArray, inner: FloatArray, slope: FloatArray
+) -> tuple[FloatArray, FloatArray]:
+    """Log likelihood ratios of clipped over complete, and over cut off, of an extreme value that holds a share, [K].
 
-    The value's inner limit lies at that standard normal score. Minus infinity where a truncated channel, without the
-    readings beyond, is likelier still.
+    The value's inner limit lies at that standard normal score.
     """
     beyond = independent * ndtr(inner - slope)
     inside = np.maximum(independent * ndtr(inner) - beyond, 1e-300)
-    ratio = at * np.log1p(beyond / inside)
-    return np.asarray(np.where((ratio >= beyond) & (beyond >= FEWEST_BEYOND), ratio, -np.inf), dtype=np.float64)
+    ratio = independent * share * np.log1p(beyond / inside)
+    return np.where(beyond >= FEWEST_BEYOND, ratio, -np.inf), ratio - beyond
 
 
 def _bell(independent: FloatArray, share: FloatArray, fitted: FloatArray, place: FloatArray) -> FloatArray:
