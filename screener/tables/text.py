@@ -204,10 +204,12 @@ def _layout_remarks(layout: Layout) -> Iterator[str]:
         what = "reads like those below" if layout.words else "holds only numbers"
         yield f"The first line {what}: it was read as readings, and the columns are called by their place."
     if layout.doubt:
-        read = "before decimals" if layout.decimal_comma else "between thousands"
-        other = "." if layout.decimal_comma else ","
+        sign, name = (",", "comma") if "," in layout.doubt else (".", "point")
+        decimal = "," if layout.decimal_comma else "."
+        read = "before decimals" if sign == decimal else "between thousands"
+        other = "." if decimal == "," else ","
         yield (
-            f"The comma in cells such as {layout.doubt!r} was read as standing {read}; "
+            f"The {name} in cells such as {layout.doubt!r} was read as standing {read}; "
             f"--decimal={other} reads it the other way."
         )
 

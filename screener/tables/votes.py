@@ -38,7 +38,9 @@ def decimal_vote(cells: Iterable[str], *, separator: str) -> DecimalVote:
     if votes[","] != votes["."]:
         return DecimalVote(votes[","] > votes["."])
     if "," not in doubts or "." in doubts or votes[","]:
-        return DecimalVote(comma=False, doubt=doubts.get(",", ""))
+        # Where cells are separated by semicolons, a point often groups thousands.
+        point = "" if separator != ";" or votes["."] else doubts.get(".", "")
+        return DecimalVote(comma=False, doubt=doubts.get(",", point))
     return DecimalVote(separator != ",", doubts[","])
 
 

@@ -87,6 +87,11 @@ CASES = {
         {"p": [1.234, 2.345, 3.0], "q": [1, 3, 2]},
         remark="--decimal=. reads it the other way",
     ),
+    "point_in_doubt.csv": Case(
+        "p;q\n1.234;1\n2.345;3\n3.000;2\n",
+        {"p": [1.234, 2.345, 3.0], "q": [1, 3, 2]},
+        remark="--decimal=, reads it the other way",
+    ),
     "comma_as_said.csv": Case(
         "p;q\n1,234;1\n2,345;3\n3,000;2\n", {"p": [1234, 2345, 3000], "q": [1, 3, 2]}, plan={"decimal": "."}
     ),
