@@ -83,8 +83,8 @@ def _ready(
         nulls,
         plan.alpha,
         simulated=simulated,
-        below=channel.below,
-        above=channel.above,
+        below=0 if block.below is None else int(block.below[0]),
+        above=0 if block.above is None else int(block.above[0]),
     )
     if isinstance(ready, str):
         raise ScreenerError(f"Couldn't confirm channel {channel.name!r}: it is not scored ({ready}).")
