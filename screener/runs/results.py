@@ -69,7 +69,8 @@ def read_fits(connection: sqlite3.Connection, position: int) -> pl.DataFrame:
     A channel that is not scored has neither critical values nor p.
     """
     rows = connection.execute(_FITS, (position,)).fetchall()
-    return _frame(rows, {**FIT_COLUMNS, "extrapolated": int}).cast({"extrapolated": pl.Boolean})
+    fits = _frame(rows, {**FIT_COLUMNS, "extrapolated": int}).cast({"extrapolated": pl.Boolean})
+    return fits.with_columns(extrapolated=pl.col("extrapolated") & pl.col("p").is_not_null())
 
 
 def read_reason(connection: sqlite3.Connection, position: int) -> str:
