@@ -45,7 +45,7 @@ class Found:
             low=int(self.censoring.low[channel]),
             high=int(self.censoring.high[channel]),
             step=self._step_in_unit(channel, column),
-            tau=float(self.tau[channel]),
+            tau=float(self.conditions.tau_4[channel]) if self.conditions.serial[channel] else 1.0,
         )
 
     def _step_in_unit(self, channel: int, column: int) -> float:

@@ -160,8 +160,7 @@ def judged(nulls: SimulatedNulls, condition: Condition, log_gap: FloatArray, alp
     """
     taken = np.zeros(log_gap.size, dtype=np.int64)
     open_ = np.arange(log_gap.size)
-    ends = list(batch_ends(most_samples(alpha)))
-    for end in ends:
+    for end in batch_ends(most_samples(alpha)):
         samples = nulls.prefix(condition, end)
         taken[open_] = end
         reached = np.count_nonzero(samples >= log_gap[open_, None], axis=1)
@@ -186,7 +185,10 @@ def _rows(samples: list[FloatArray]) -> NullRows:
 
 
 def sufficient(nulls: SimulatedNulls, condition: Condition) -> bool:
-    """Whether most samples in a condition have an r at all; readings rounded to below 0 have no logarithm."""
+    """Whether enough samples in a condition have an r at all.
+
+    Those rounded to a few values have none, nor those rounded to below 0 and held against a family on the log axis.
+    """
     return bool(np.mean(np.isnan(nulls.prefix(condition, FIRST_BATCH))) < MOST_WITHOUT_R)
 
 
