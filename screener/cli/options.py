@@ -60,7 +60,7 @@ PLAN_OPTIONS = (
         "--match/--plain",
         default=DEFAULTS.match,
         show_default=True,
-        help="Critical values of a channel in its own condition (rounded, serial), or the textbook ones.",
+        help="Critical values of a channel in its own condition (rounded, clipped, serial), or the textbook ones.",
     ),
     click.option("--seed", type=int, default=DEFAULTS.seed, show_default=True, help="Seed of everything random."),
 )

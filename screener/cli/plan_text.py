@@ -17,7 +17,7 @@ MEANINGS = {
     "alpha": "Share of channels truly of their family that is flagged by chance.",
     "control": 'A flag means: r below its critical value ("each"), or q below alpha ("fdr").',
     "positions": "Plotting positions: a rule's name or a number.",
-    "match": "true: the critical value of a channel in its own condition (rounded, serial); false: the textbook one.",
+    "match": "true: critical values for the condition of a channel (rounded, clipped, serial); false: textbook ones.",
     "seed": "Seed of everything random.",
     "channels": "Names of the columns to screen, * and ? standing for any text and any sign; none means all.",
     "skip": "Names of columns to leave aside.",

@@ -113,7 +113,7 @@ def _numbers(run: "RunFile", position: int, row: Row | None) -> list[str]:
             f"matched critical r {r_text(row['critical_r'])} for that condition, instead of the textbook "
             f"{r_text(row['plain_critical_r'])}"
         )
-        if "clipped" in row["conditions"] or "detection limit" in row["conditions"]:
+        if any(word in (row["conditions"] or "") for word in ("clipped", "detection limit")):
             condition.append("r, location and scale are those of the other readings, at their positions among all")
     sign = "<" if row["r"] < row["critical_r"] else ">="
     return [
